@@ -1,0 +1,5 @@
+"""Run the command line with ``python -m matchup``."""
+
+from matchup.cli.main import run
+
+run()

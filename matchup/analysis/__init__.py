@@ -1,0 +1,1 @@
+"""From model to results: chains, blows, windows. Knows of no optimiser."""

@@ -1,0 +1,180 @@
+"""Blows: from strikes (stage, hammer, cushion, stroke) to set, stresses and energies."""
+
+from __future__ import annotations
+
+import math
+import os
+from concurrent.futures import ThreadPoolExecutor
+from dataclasses import dataclass
+from typing import NamedTuple
+
+import numpy as np
+
+from matchup.analysis.chain import Chains, head_rows, set_quake
+from matchup.wave.layout import COLUMNS, DIVERGED, ENDED, LANES, Blows, Flags, Floats, Integers
+from matchup.wave.march import march
+
+LONGEST_BLOW = 2.0
+"""A blow that has not come to rest by then is an error. [s]"""
+AUDIT_LIMIT = 0.02
+"""Largest energy unaccounted for over the ram's energy; beyond it a blow is an error. [-]"""
+GROUPS_PER_TASK = 8
+_AT = {name: column for column, name in enumerate(COLUMNS)}
+
+
+class Strikes(NamedTuple):
+    """Blows to compute, as columns.
+
+    Parameters
+    ----------
+    stage, hammer : (blows,) int64 array
+        Rows of ``chains.stages`` and ``chains.hammers``; the pile must not run there.
+    stiffness, restitution : (blows,) float64 array
+        Pile cushion. [N/m], [-]
+    stroke : (blows,) float64 array
+        [m]
+    hammer_stiffness, hammer_restitution : (blows,) float64 array or None
+        Hammer cushion in place of the hammer's own; NaN keeps that. [N/m], [-]
+    """
+
+    stage: Integers
+    hammer: Integers
+    stiffness: Floats
+    restitution: Floats
+    stroke: Floats
+    hammer_stiffness: Floats | None = None
+    hammer_restitution: Floats | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Struck:
+    """Results of a batch of blows, as columns of equal length.
+
+    Parameters
+    ----------
+    set : (blows,) float64 array
+        Set of the blow. [m]
+    compression, tension : (blows,) float64 array
+        Largest stresses in the pile, both positive. [Pa]
+    transferred : (blows,) float64 array
+        Largest work done on the pile head. [J]
+    balance : (blows,) float64 array
+        Energy unaccounted for over the ram's energy at impact. [-]
+    sound : (blows,) bool array
+        Whether the blow ended, stayed finite and passed its energy audit.
+    raw : (blows, columns) float64 array
+        As in `matchup.wave.layout.COLUMNS`.
+    envelope : (blows or 0, nodes, 2) float64 array
+        Largest and smallest force at the nodes. [N]
+    trace : (steps or 0, 4) float64 array
+        Of the first blow; as in `matchup.wave.march.march`.
+    """
+
+    set: Floats
+    compression: Floats
+    tension: Floats
+    transferred: Floats
+    balance: Floats
+    sound: Flags
+    raw: Floats
+    envelope: Floats
+    trace: Floats
+
+    def why_unsound(self, row: int) -> str:
+        """Return what is wrong with blow `row`."""
+        status = int(self.raw[row, _AT["status"]])
+        if status == DIVERGED:
+            return "the computation diverged"
+        if status != ENDED:
+            return f"the blow had not come to rest after {LONGEST_BLOW:g} s"
+        return (
+            f"the energy audit is off by {100 * self.balance[row]:.1f} % of the ram's energy, "
+            f"more than {100 * AUDIT_LIMIT:g} %"
+        )
+
+
+def strike(
+    chains: Chains,
+    strikes: Strikes,
+    detail: bool = False,
+    least_steps: int = 0,
+    workers: int | None = None,
+) -> Struck:
+    """Compute a batch of blows.
+
+    Parameters
+    ----------
+    detail : bool
+        Keep the envelope of every blow, and the trace of the first.
+    least_steps : int
+        March on at least so many steps, for testing the ending rule.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+
+    Notes
+    -----
+    A blow's result depends neither on the batch it is in nor on the number of workers.
+    """
+    head, substeps = head_rows(chains, *strikes[1:])
+    ground = np.ascontiguousarray(chains.ground_of[strikes.stage, strikes.hammer])
+    blows = Blows(ground, substeps, head)
+    order = _groups(substeps)
+    count = strikes.stroke.size
+    longest = max(math.ceil(LONGEST_BLOW / chains.bar.step), 2 * least_steps)
+    out = np.zeros((count, len(COLUMNS)))
+    envelope = np.zeros((count if detail else 0, chains.depth.size, 2))
+    trace = np.zeros((longest if detail else 0, 4))
+
+    def run(first: int, last: int) -> None:
+        march(
+            chains.bar,
+            chains.grounds,
+            blows,
+            order,
+            (first, last),
+            (least_steps, longest),
+            out,
+            envelope,
+            trace if first == 0 else trace[:0],
+        )
+
+    size = LANES * GROUPS_PER_TASK
+    spans = [(first, min(first + size, order.size)) for first in range(0, order.size, size)]
+    workers = workers or os.cpu_count() or 1
+    if workers == 1 or len(spans) == 1:
+        for first, last in spans:
+            run(first, last)
+    else:
+        with ThreadPoolExecutor(workers) as pool:
+            list(pool.map(lambda span: run(*span), spans))
+    return _results(chains, strikes, out, envelope, trace)
+
+
+def _groups(substeps: Integers) -> Integers:
+    """Return the rows in groups of `LANES` with equal sub-steps, short groups filled up."""
+    order: list[Integers] = []
+    for kind in np.unique(substeps):
+        rows = np.flatnonzero(substeps == kind)
+        missing = -rows.size % LANES
+        order.append(np.concatenate((rows, np.repeat(rows[-1:], missing))))
+    return np.concatenate(order).astype(np.int64) if order else np.empty(0, np.int64)
+
+
+def _results(
+    chains: Chains, strikes: Strikes, out: Floats, envelope: Floats, trace: Floats
+) -> Struck:
+    quakes = np.array([set_quake(stage)[0] for stage in chains.stages])[strikes.stage]
+    balance = out[:, _AT["balance"]]
+    sound = (out[:, _AT["status"]] == ENDED) & (np.abs(balance) <= AUDIT_LIMIT)
+    steps = int(out[0, _AT["steps"]]) if trace.size else 0
+    return Struck(
+        np.maximum(out[:, _AT["toe_most"]] - quakes, 0.0),
+        out[:, _AT["peak_stress"]],
+        out[:, _AT["tension_stress"]],
+        out[:, _AT["passed_most"]],
+        balance,
+        sound,
+        out,
+        envelope,
+        trace[:steps],
+    )

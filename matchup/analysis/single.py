@@ -1,0 +1,192 @@
+"""One blow in full."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from matchup.analysis.blow import Strikes, strike
+from matchup.analysis.chain import build_chains, enough_segments, pile_contact, set_quake
+from matchup.errors import AnalysisError
+from matchup.model.cushion import Cushion
+from matchup.model.hammer import Hammer
+from matchup.model.job import Job
+from matchup.model.stage import Stage
+from matchup.wave.layout import COLUMNS, Floats
+
+
+@dataclass(frozen=True, slots=True)
+class Envelope:
+    """Largest stresses along the pile.
+
+    Parameters
+    ----------
+    distance : (nodes,) float64 array
+        From the head. [m]
+    compression, tension : (nodes,) float64 array
+        Both positive. [Pa]
+    """
+
+    distance: Floats
+    compression: Floats
+    tension: Floats
+
+
+@dataclass(frozen=True, slots=True)
+class Trace:
+    """Head and toe against time, each value the mean over one time step.
+
+    Parameters
+    ----------
+    time : (steps,) float64 array
+        Middle of the step, from impact. [s]
+    head_force, head_velocity : (steps,) float64 array
+        [N], [m/s]
+    toe_displacement : (steps,) float64 array
+        At the end of the step, from the unstressed soil. [m]
+    """
+
+    time: Floats
+    head_force: Floats
+    head_velocity: Floats
+    toe_displacement: Floats
+
+
+@dataclass(frozen=True, slots=True)
+class Blow:
+    """One blow and all that is needed to judge it.
+
+    Parameters
+    ----------
+    hammer : Hammer
+    stage : Stage
+    cushion : Cushion or None
+    wear : str
+    stroke, impact_velocity : float
+        [m], [m/s]
+    blow_energy, transferred : float
+        Ram weight times stroke, and the largest work done on the pile head. [J]
+    set, toe_most : float
+        Set, and the toe's largest displacement from the unstressed soil. [m]
+    set_rule : str
+        Which quake was taken off.
+    compression, tension : float
+        Largest stresses, both positive. [Pa]
+    compression_at, tension_at : float
+        Where they occur, from the head. [m]
+    compression_use, tension_use : float
+        As fractions of the limits. [-]
+    head_force : float
+        Largest. [N]
+    ram_velocity : float
+        Of the ram at the end, negative upwards. [m/s]
+    balance : float
+        Energy unaccounted for over the ram's energy at impact. [-]
+    segments : int
+    time_step, duration : float
+        [s]
+    envelope : Envelope
+    trace : Trace
+    """
+
+    hammer: Hammer
+    stage: Stage
+    cushion: Cushion | None
+    wear: str
+    stroke: float
+    impact_velocity: float
+    blow_energy: float
+    transferred: float
+    set: float
+    toe_most: float
+    set_rule: str
+    compression: float
+    tension: float
+    compression_at: float
+    tension_at: float
+    compression_use: float
+    tension_use: float
+    head_force: float
+    ram_velocity: float
+    balance: float
+    segments: int
+    time_step: float
+    duration: float
+    envelope: Envelope
+    trace: Trace
+
+
+def compute_blow(
+    job: Job, stage: Stage, hammer: Hammer, cushion: Cushion | None, wear: str, stroke: float
+) -> Blow:
+    """Compute one blow.
+
+    Raises
+    ------
+    AnalysisError
+        If the pile runs under its weight, or the blow did not end, diverged or failed its energy
+        audit.
+    """
+    segments = enough_segments(job.pile, cushion is not None)
+    chains = build_chains(job.pile, [stage], [hammer], job.analysis, segments)
+    what = f"{hammer.name} at stage {stage.name!r}, stroke {stroke:.3g} m"
+    if chains.ground_of[0, 0] < 0:
+        raise AnalysisError(
+            f"{what}: the pile runs; pile, helmet and what stands on it weigh more than the "
+            f"resistance of {stage.resistance / 1e3:.0f} kN, so there is no blow to compute"
+        )
+    spring = cushion.spring(wear) if cushion else pile_contact(job.pile)
+    first = np.zeros(1, np.int64)
+    struck = strike(
+        chains,
+        Strikes(
+            first,
+            first,
+            np.array([spring.stiffness]),
+            np.array([spring.restitution]),
+            np.array([stroke]),
+        ),
+        detail=True,
+        workers=1,
+    )
+    if not struck.sound[0]:
+        raise AnalysisError(f"{what}: {struck.why_unsound(0)}")
+    raw = dict(zip(COLUMNS, struck.raw[0], strict=True))
+    area = job.pile.section.area
+    step = chains.bar.step
+    steps = np.arange(struck.trace.shape[0], dtype=np.float64)
+    compression, tension = float(raw["peak_stress"]), float(raw["tension_stress"])
+    return Blow(
+        hammer=hammer,
+        stage=stage,
+        cushion=cushion,
+        wear=wear,
+        stroke=stroke,
+        impact_velocity=hammer.impact_velocity(stroke),
+        blow_energy=hammer.blow_energy(stroke),
+        transferred=float(raw["passed_most"]),
+        set=float(struck.set[0]),
+        toe_most=float(raw["toe_most"]),
+        set_rule=set_quake(stage)[1],
+        compression=compression,
+        tension=tension,
+        compression_at=float(chains.depth[int(raw["peak_node"])]),
+        tension_at=float(chains.depth[int(raw["tension_node"])]),
+        compression_use=compression / job.limits.compression,
+        tension_use=tension / job.limits.tension,
+        head_force=float(raw["force_most"]),
+        ram_velocity=float(raw["ram_velocity"]),
+        balance=float(raw["balance"]),
+        segments=segments,
+        time_step=step,
+        duration=float(raw["steps"]) * step,
+        envelope=Envelope(
+            chains.depth,
+            np.maximum(struck.envelope[0, :, 0], 0.0) / area,
+            np.maximum(-struck.envelope[0, :, 1], 0.0) / area,
+        ),
+        trace=Trace(
+            (steps + 0.5) * step, struck.trace[:, 0], struck.trace[:, 1], struck.trace[:, 2]
+        ),
+    )

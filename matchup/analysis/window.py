@@ -1,0 +1,338 @@
+"""Windows: the strokes that reach the set and break no limit, for many cells at once.
+
+A cell is one stage, hammer and pile cushion. Strokes lie on the hammer's own settings; a stroke
+that can be set freely is planned in whole centimetres from the least stroke, since nobody sets it
+finer. Stresses must also hold at 2 % more and less stroke than planned.
+
+The set grows with the stroke, so the least stroke that reaches it is found by bracketing, all cells
+in step. Tension need not grow with the stroke: from there on strokes are scanned upwards, close
+enough that the 2 % on either side leave no gap between them.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import NamedTuple
+
+import numpy as np
+
+from matchup.analysis.rig import Rig
+from matchup.model.hammer import Hammer
+from matchup.wave.layout import Flags, Floats, Integers
+
+FREE_STROKE_STEP = 0.01
+"""Steps in which a freely set stroke is planned. [m]"""
+STROKE_TOLERANCE = 0.02
+"""Stresses must also hold at so much more and less stroke than planned. [-]"""
+SCAN_RATIO = 1.04
+"""Ratio of strokes in a scan: their tolerances touch."""
+TESTED = (1.0, 1.0 - STROKE_TOLERANCE, 1.0 + STROKE_TOLERANCE)
+
+RUNS, UNSOUND, NO_SET, COMPRESSION, TENSION, OPEN = range(6)
+"""State of a cell: the pile runs; a blow could not be trusted; the set is not reached at full
+stroke; which limit breaks at every stroke that reaches the set; a window is open."""
+
+
+class Cells(NamedTuple):
+    """Combinations to look at, as columns of equal length: places in a `Rig`."""
+
+    stage: Integers
+    hammer: Integers
+    cushion: Integers
+
+
+class Demands(NamedTuple):
+    """What a blow must meet.
+
+    Parameters
+    ----------
+    set_needed : (stages,) float64 array
+        Least set, reserve included. [m]
+    compression, tension : float
+        Largest stresses, reserve taken off. [Pa]
+    """
+
+    set_needed: Floats
+    compression: float
+    tension: float
+
+
+def job_demands(rig: Rig) -> Demands:
+    """Return the demands of the rig's job, its reserve kept back."""
+    job = rig.job
+    keep = job.search.reserve
+    return Demands(
+        np.array([(1 + keep) * stage.set_needed for stage in job.stages]),
+        (1 - keep) * job.limits.compression,
+        (1 - keep) * job.limits.tension,
+    )
+
+
+def settings(hammer: Hammer) -> Floats:
+    """Return the strokes [m] that can be planned, from the least in steps, and the largest."""
+    step = hammer.stroke_step or FREE_STROKE_STEP
+    span = hammer.stroke_max - hammer.stroke_min
+    whole = math.floor(span / step + 1e-9)
+    strokes: Floats = hammer.stroke_min + step * np.arange(whole + 1, dtype=np.float64)
+    if hammer.stroke_max - strokes[-1] > 1e-6:
+        return np.concatenate((strokes, [hammer.stroke_max]))
+    strokes[-1] = hammer.stroke_max
+    return strokes
+
+
+@dataclass(frozen=True, slots=True)
+class Windows:
+    """The window of each cell, as columns of equal length.
+
+    Where no window is open, `low` is the stroke that explains it: the largest one if the set is
+    not reached, else the least one that reaches the set.
+
+    Parameters
+    ----------
+    cells : Cells
+    state : (cells,) int64 array
+    low : (cells,) float64 array
+        Lowest stroke of the window. [m]
+    set : (cells,) float64 array
+        Least set over the wear states at `low`. [m]
+    compression, tension : (cells,) float64 array
+        Largest stresses over the wear states and the stroke tolerance at `low`. [Pa]
+    lifted : (cells,) bool array
+        Whether tension closes the least stroke that reaches the set, and a window opens above.
+    """
+
+    cells: Cells
+    state: Integers
+    low: Floats
+    set: Floats
+    compression: Floats
+    tension: Floats
+    lifted: Flags
+
+
+class WindowFinder:
+    """Finds windows on one rig.
+
+    Parameters
+    ----------
+    rig : Rig
+    demands : Demands
+    """
+
+    def __init__(self, rig: Rig, demands: Demands):
+        self.rig = rig
+        self.demands = demands
+        self.strokes = [settings(hammer) for hammer in rig.job.hammers]
+        self._last = np.array([strokes.size - 1 for strokes in self.strokes])
+        self._table = np.full((len(self.strokes), int(self._last.max()) + 1), np.nan)
+        for row, strokes in enumerate(self.strokes):
+            self._table[row, : strokes.size] = strokes
+
+    def setting_numbers(self, hammer: Integers, strokes: Floats) -> Integers:
+        """Return the setting numbers of strokes that are settings."""
+        return np.array(
+            [
+                np.searchsorted(self.strokes[h], s - 1e-9)
+                for h, s in zip(hammer, strokes, strict=True)
+            ],
+            np.int64,
+        )
+
+    def last_settings(self, hammer: Integers) -> Integers:
+        """Return the numbers of the largest strokes."""
+        return np.asarray(self._last[hammer])
+
+    def sets(self, cells: Cells, at: Integers) -> tuple[Floats, Flags]:
+        """Return the least set over the wear states at setting number `at`, and soundness."""
+        stroke = self._table[cells.hammer, at]
+        least = np.full(at.size, np.inf)
+        sound = np.ones(at.size, bool)
+        for wear in range(len(self.rig.wears)):
+            answers = self.rig.answer(
+                cells.stage, cells.hammer, cells.cushion, np.full(at.size, wear), stroke
+            )
+            least = np.minimum(least, answers.set)
+            sound &= answers.sound
+        return least, sound
+
+    def stresses(self, cells: Cells, at: Integers) -> tuple[Floats, Floats, Flags]:
+        """Return the largest stresses over wear states and stroke tolerance, and soundness."""
+        stroke = self._table[cells.hammer, at]
+        wears = len(self.rig.wears)
+        kinds = [(wear, factor) for wear in range(wears) for factor in TESTED]
+        tiled = [np.tile(column, len(kinds)) for column in cells]
+        wear = np.repeat([wear for wear, _ in kinds], at.size)
+        factor = np.repeat([factor for _, factor in kinds], at.size)
+        answers = self.rig.answer(
+            tiled[0], tiled[1], tiled[2], wear, np.tile(stroke, len(kinds)) * factor
+        )
+        shape = (len(kinds), at.size)
+        return (
+            answers.compression.reshape(shape).max(axis=0),
+            answers.tension.reshape(shape).max(axis=0),
+            np.asarray(answers.sound.reshape(shape).all(axis=0)),
+        )
+
+    def find(self, cells: Cells) -> Windows:
+        """Return the lowest stroke of each cell's window, or why there is none."""
+        count = cells.stage.size
+        state = np.full(count, OPEN)
+        state[self.rig.chains.ground_of[cells.stage, cells.hammer] < 0] = RUNS
+        at = self._last[cells.hammer].copy()
+        reached = np.zeros(count)
+        alive = np.flatnonzero(state == OPEN)
+        if alive.size:
+            at[alive], reached[alive], state[alive] = self._reach_set(
+                _take(cells, alive), at[alive]
+            )
+        compression = np.full(count, np.nan)
+        tension = np.full(count, np.nan)
+        alive = np.flatnonzero((state == OPEN) | (state == NO_SET))
+        if alive.size:
+            compression[alive], tension[alive], sound = self.stresses(
+                _take(cells, alive), at[alive]
+            )
+            state[alive[~sound]] = UNSOUND
+        self._close(state, compression, tension)
+        closed = state == TENSION
+        self._scan_above(cells, state, at, reached, compression, tension)
+        low = self._table[cells.hammer, at]
+        lifted = closed & (state == OPEN)
+        return Windows(cells, state, low, reached, compression, tension, lifted)
+
+    def _close(self, state: Integers, compression: Floats, tension: Floats) -> None:
+        """Close open cells whose stresses break a limit, by the limit that breaks the most."""
+        use_compression = compression / self.demands.compression
+        use_tension = tension / self.demands.tension
+        broken = (state == OPEN) & (np.maximum(use_compression, use_tension) > 1)
+        state[broken] = np.where(use_compression >= use_tension, COMPRESSION, TENSION)[broken]
+
+    def _reach_set(self, cells: Cells, last: Integers) -> tuple[Integers, Floats, Integers]:
+        """Return the least setting that reaches the set, the set there, and the state.
+
+        Bracketing on whole setting numbers: the set grows with the stroke, nearly in a straight
+        line, so the next guess is where the line through both ends of the bracket meets the
+        needed set, kept inside the bracket; every third guess halves it.
+        """
+        count = last.size
+        needed = self.demands.set_needed[cells.stage]
+        state = np.full(count, OPEN)
+        low = np.zeros(count, np.int64)
+        high = last.copy()
+        set_low, sound_low = self.sets(cells, low)
+        set_high, sound_high = self.sets(cells, high)
+        state[set_high < needed] = NO_SET
+        state[~(sound_low & sound_high)] = UNSOUND
+        at_once = set_low >= needed
+        high[at_once] = low[at_once]
+        set_high[at_once] = set_low[at_once]
+        rounds = 0
+        while True:
+            open_ = np.flatnonzero((state == OPEN) & (high - low > 1))
+            if not open_.size:
+                return high, set_high, state
+            rounds += 1
+            span = high[open_] - low[open_]
+            share = (needed[open_] - set_low[open_]) / (set_high[open_] - set_low[open_])
+            if rounds % 3 == 0:
+                share[:] = 0.5
+            guess = low[open_] + np.clip(np.ceil(share * span).astype(np.int64), 1, span - 1)
+            found, sound = self.sets(_take(cells, open_), guess)
+            state[open_[~sound]] = UNSOUND
+            enough = found >= needed[open_]
+            high[open_[enough]], set_high[open_[enough]] = guess[enough], found[enough]
+            low[open_[~enough]], set_low[open_[~enough]] = guess[~enough], found[~enough]
+
+    def scan_settings(self, hammer: int, first: int) -> Integers:
+        """Return the settings above `first` whose tolerances leave no gap, up to the largest."""
+        strokes = self.strokes[hammer]
+        picked = []
+        at = first
+        while at < strokes.size - 1:
+            farthest = np.searchsorted(strokes, strokes[at] * SCAN_RATIO, side="right") - 1
+            at = max(at + 1, int(farthest))
+            picked.append(at)
+        return np.array(picked, np.int64)
+
+    def _scan_above(
+        self,
+        cells: Cells,
+        state: Integers,
+        at: Integers,
+        reached: Floats,
+        compression: Floats,
+        tension: Floats,
+    ) -> None:
+        """Look for a window above the least stroke where only tension breaks there.
+
+        Compression grows with the stroke, so a cell that breaks it stays closed; tension may fall
+        again. All arrays are modified in place where a window is found.
+        """
+        waiting = {
+            int(i): list(self.scan_settings(int(cells.hammer[i]), int(at[i])))
+            for i in np.flatnonzero(state == TENSION)
+            if compression[i] <= self.demands.compression
+        }
+        while waiting := {i: ahead for i, ahead in waiting.items() if ahead}:
+            rows = np.array(list(waiting))
+            here = np.array([ahead.pop(0) for ahead in waiting.values()])
+            some = _take(cells, rows)
+            squeezed, pulled, sound = self.stresses(some, here)
+            found, _ = self.sets(some, here)
+            for k, i in enumerate(rows):
+                if not sound[k] or squeezed[k] > self.demands.compression:
+                    waiting.pop(int(i))
+                elif pulled[k] <= self.demands.tension:
+                    waiting.pop(int(i))
+                    state[i], at[i], reached[i] = OPEN, here[k], found[k]
+                    compression[i], tension[i] = squeezed[k], pulled[k]
+
+    def tops(self, cells: Cells, lows: Floats) -> Floats:
+        """Return the highest stroke of open windows, scanned upwards from their lowest.
+
+        Parameters
+        ----------
+        cells : Cells
+        lows : (cells,) float64 array
+            Lowest strokes, as found by `find`. [m]
+
+        Returns
+        -------
+        (cells,) float64 array
+            [m]
+        """
+        tops = np.full(lows.size, np.nan)
+        firsts = self.setting_numbers(cells.hammer, lows)
+        best = {i: int(first) for i, first in enumerate(firsts)}
+        waiting = {
+            i: list(self.scan_settings(int(cells.hammer[i]), first)) for i, first in best.items()
+        }
+        closed: dict[int, int] = {}
+        while waiting := {i: ahead for i, ahead in waiting.items() if ahead}:
+            here = {i: ahead.pop(0) for i, ahead in waiting.items()}
+            for i, fine in zip(here, self._fits(cells, here), strict=True):
+                if fine:
+                    best[i] = here[i]
+                else:
+                    closed[i] = here[i]
+                    waiting.pop(i)
+        while between := {i: (best[i] + closed[i]) // 2 for i in closed if closed[i] - best[i] > 1}:
+            for i, fine in zip(between, self._fits(cells, between), strict=True):
+                (best if fine else closed)[i] = between[i]
+        for i, setting in best.items():
+            tops[i] = self.strokes[int(cells.hammer[i])][setting]
+        return tops
+
+    def _fits(self, cells: Cells, settings_at: dict[int, int]) -> Sequence[bool]:
+        """Return whether stresses hold at a setting of each cell."""
+        rows = np.array(list(settings_at))
+        at = np.array(list(settings_at.values()))
+        squeezed, pulled, sound = self.stresses(_take(cells, rows), at)
+        fine = sound & (squeezed <= self.demands.compression) & (pulled <= self.demands.tension)
+        return [bool(value) for value in fine]
+
+
+def _take(cells: Cells, rows: Integers) -> Cells:
+    return Cells(cells.stage[rows], cells.hammer[rows], cells.cushion[rows])

@@ -1,0 +1,57 @@
+"""``matchup blow``."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Annotated
+
+from cyclopts import Parameter
+
+from matchup.cli.show import Common, screen_width, show_document, tell, write_file
+
+
+def blow(
+    job: Annotated[Path, Parameter(help="Job file.")],
+    *,
+    hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
+    stroke: Annotated[str | None, Parameter(help='With its unit: "0.6 m".')] = None,
+    cushion: Annotated[str | None, Parameter(help="Material of the pile cushion.")] = None,
+    sheets: Annotated[int | None, Parameter(help="Number of sheets.")] = None,
+    thickness: Annotated[str | None, Parameter(help='Instead of sheets: "150 mm".')] = None,
+    wear: Annotated[str | None, Parameter(help="new (default) or worn.")] = None,
+    stage: Annotated[str | None, Parameter(help="Default: the last, the target.")] = None,
+    best: Annotated[
+        bool, Parameter(negative="", help="Stroke and cushion of the hammer's best plan.")
+    ] = False,
+    traces: Annotated[
+        bool, Parameter(negative="", help="With stresses along the pile and time histories.")
+    ] = False,
+    common: Common = Common(),  # noqa: B008 - frozen
+) -> int:
+    """Compute one blow in detail."""
+    from matchup import api
+
+    result = api.blow(
+        job,
+        hammer,
+        stroke,
+        stage=stage,
+        cushion=cushion,
+        sheets=sheets,
+        thickness=thickness,
+        wear=wear,
+        best=best,
+    )
+    if common.csv:
+        write_file(common.csv, result.trace_table(common.display).to_csv())
+        tell(common, f"wrote {common.csv}")
+    if common.json:
+        show_document(result.to_dict(traces))
+        return 0
+    width = screen_width()
+    print(result.to_text(common.display, width))
+    if traces:
+        for table in (result.envelope_table(common.display), result.trace_table(common.display)):
+            print()
+            print(table.to_text(width))
+    return 0

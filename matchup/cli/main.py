@@ -1,0 +1,68 @@
+"""The command `matchup`: names the commands and turns what happened into an exit status."""
+
+from __future__ import annotations
+
+import os
+import sys
+from collections.abc import Sequence
+
+from cyclopts import App, CycloptsError
+
+from matchup import __version__
+from matchup.cli.show import show_problems
+from matchup.errors import InputError, MatchupError, Problem
+
+WRONG_USAGE = 2
+INTERRUPTED = 130
+
+app = App(
+    name="matchup",
+    help=(
+        "Match hammer, cushion and pile: find for every hammer of your catalogue the stroke and "
+        "pile cushion that reach the target set at least energy within stress limits.\n\n"
+        "Exit status: 0 yes, 1 an input or an analysis is at fault, 2 wrong usage, 3 the answer "
+        "is no."
+    ),
+    version=f"matchup {__version__}",
+    help_format="plaintext",
+    suppress_keyboard_interrupt=False,
+)
+# Named as text, so that solver and readers load only when their command runs.
+app.command("matchup.cli.rank:rank", help="Rank every hammer of the job's catalogue.")
+app.command("matchup.cli.blow:blow", help="Compute one blow in detail.")
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run the command line and return its exit status.
+
+    Parameters
+    ----------
+    arguments : sequence of str or None
+        Without the program's name; None takes them from the system.
+    """
+    words = list(sys.argv[1:] if arguments is None else arguments)
+    try:
+        status = app(words, exit_on_error=False, print_error=True, result_action="return_value")
+        sys.stdout.flush()
+        return status if isinstance(status, int) else 0
+    except CycloptsError:
+        return WRONG_USAGE
+    except InputError as error:
+        show_problems(error.problems, "--json" in words)
+        return 1
+    except MatchupError as error:
+        problem = Problem(None, None, "", str(error), "")
+        show_problems([problem], "--json" in words)
+        return 1
+    except KeyboardInterrupt:
+        print("stopped", file=sys.stderr)
+        return INTERRUPTED
+    except BrokenPipeError:
+        # The reader has gone; keep the interpreter from complaining while it shuts down.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return 0
+
+
+def run() -> None:
+    """Run as a program."""
+    sys.exit(main())

@@ -1,0 +1,82 @@
+"""Everything that the commands print, and the files that they write."""
+
+from __future__ import annotations
+
+import json
+import shutil
+import sys
+from collections.abc import Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Annotated, Literal
+
+from cyclopts import Parameter
+
+from matchup.errors import InputError, Problem
+
+WIDEST = 100
+
+
+@Parameter(name="*")
+@dataclass(frozen=True)
+class Common:
+    """Options that all commands share."""
+
+    json: Annotated[bool, Parameter(negative="", help="One JSON document on stdout.")] = False
+    csv: Annotated[Path | None, Parameter(help="Write the table to this file.")] = None
+    display: Annotated[
+        Literal["metric", "us"] | None, Parameter(help="Units of the output; default: the job's.")
+    ] = None
+    workers: Annotated[int | None, Parameter(help="Threads; default: all processors.")] = None
+    quiet: Annotated[bool, Parameter(negative="", help="No messages on stderr.")] = False
+
+
+def screen_width() -> int:
+    """Return the width for tables: the terminal's, at most `WIDEST`; a file gets the widest."""
+    if not sys.stdout.isatty():
+        return WIDEST
+    return max(40, min(WIDEST, shutil.get_terminal_size((WIDEST, 24)).columns))
+
+
+def show_document(document: object) -> None:
+    """Print one JSON document."""
+    print(json.dumps(document, indent=1, ensure_ascii=False, allow_nan=False))
+
+
+def show_problems(problems: Sequence[Problem], as_json: bool) -> None:
+    """Print problems: on stderr for people, as the document on stdout for scripts."""
+    if as_json:
+        show_document({"problems": [problem.as_dict() for problem in problems]})
+        return
+    for problem in problems:
+        print(problem, file=sys.stderr)
+    if len(problems) > 1:
+        print(f"{len(problems)} problems found.", file=sys.stderr)
+
+
+def tell(common: Common, text: str) -> None:
+    """Print a message on stderr unless the user wants none."""
+    if not common.quiet:
+        print(text, file=sys.stderr)
+
+
+def write_file(path: Path, text: str) -> None:
+    """Write a text file whole or not at all.
+
+    Raises
+    ------
+    InputError
+        If it can't be written.
+    """
+    part = path.with_name(path.name + ".part")
+    try:
+        part.write_text(text, encoding="utf-8", newline="")
+        part.replace(path)
+    except OSError as error:
+        part.unlink(missing_ok=True)
+        why = error.strerror or str(error)
+        problem = Problem(str(path), None, "--csv", "must be a file that can be written", why)
+        raise InputError([problem]) from None
+    except BaseException:
+        part.unlink(missing_ok=True)
+        raise

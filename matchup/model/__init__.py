@@ -1,0 +1,1 @@
+"""What a job is made of: frozen dataclasses in SI units that check themselves."""

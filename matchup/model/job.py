@@ -1,0 +1,129 @@
+"""A job: everything that one run needs, in SI units."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from matchup.model.cushion import CushionSpace, HammerCushion
+from matchup.model.hammer import Hammer
+from matchup.model.limits import StressLimits
+from matchup.model.pile import Pile
+from matchup.model.rules import Rules
+from matchup.model.stage import Stage
+
+OBJECTIVES = ("energy", "time")
+DAMPINGS = ("smith", "viscous")
+
+
+@dataclass(frozen=True, slots=True)
+class Search:
+    """How the best option is chosen.
+
+    Parameters
+    ----------
+    objective : str
+        ``energy``: least blow energy at the target stage; ``time``: fastest penetration there.
+    reserve : float
+        Share kept back from set and limits, in [0, 1). [-]
+    seed : int
+        Of every random choice.
+    """
+
+    objective: str = "energy"
+    reserve: float = 0.0
+    seed: int = 7
+
+    def __post_init__(self) -> None:
+        rules = Rules("search")
+        rules.one_of("objective", self.objective, OBJECTIVES)
+        rules.must(0 <= self.reserve < 1, "reserve", "must be >= 0 and < 1", self.reserve)
+        rules.must(self.seed >= 0, "seed", "must be >= 0", self.seed)
+        rules.close()
+
+
+@dataclass(frozen=True, slots=True)
+class Analysis:
+    """How a blow is computed.
+
+    Parameters
+    ----------
+    gravity : bool
+        Whether weight acts, with a static start before the blow.
+    damping : str
+        ``smith`` (on the static reaction at the moment) or ``viscous`` (on the ultimate one).
+    """
+
+    gravity: bool = True
+    damping: str = "smith"
+
+    def __post_init__(self) -> None:
+        rules = Rules("analysis")
+        rules.one_of("damping", self.damping, DAMPINGS)
+        rules.close()
+
+
+@dataclass(frozen=True, slots=True)
+class Job:
+    """A job.
+
+    Parameters
+    ----------
+    title : str
+    hammers : tuple of Hammer
+        In catalogue order, each with its helmet.
+    pile : Pile
+    cushions : CushionSpace or None
+        Allowed pile cushions; None for a helmet that sits on the pile.
+    hammer_cushions : tuple of HammerCushion
+        Alternatives to the hammers' own; empty for those alone.
+    stages : tuple of Stage
+        In driving order; the last one is the target.
+    limits : StressLimits
+    search : Search
+    analysis : Analysis
+    display : str
+        ``metric`` or ``us``: units of tables.
+    file : str or None
+        The job file as the user named it.
+    notices : tuple of str
+        What the readers noticed and did not refuse.
+    """
+
+    title: str
+    hammers: tuple[Hammer, ...]
+    pile: Pile
+    cushions: CushionSpace | None
+    stages: tuple[Stage, ...]
+    limits: StressLimits
+    hammer_cushions: tuple[HammerCushion, ...] = ()
+    search: Search = Search()
+    analysis: Analysis = Analysis()
+    display: str = "metric"
+    file: str | None = None
+    notices: tuple[str, ...] = ()
+
+    def __post_init__(self) -> None:
+        rules = Rules("job")
+        rules.one_of("display", self.display, ("metric", "us"))
+        rules.must(bool(self.hammers), "hammers", "must hold at least one hammer", "none")
+        rules.must(bool(self.stages), "stages", "must hold at least one stage", "none")
+        for name, items in (("hammers", self.hammers), ("stages", self.stages)):
+            names = [item.name for item in items]
+            twice = sorted({n for n in names if names.count(n) > 1})
+            rules.must(not twice, name, "must have different names", ", ".join(twice))
+        for stage in self.stages:
+            rules.must(
+                not stage.penetration > self.pile.length,
+                f"stages.{stage.name}.penetration",
+                "must be at most the pile's length",
+                stage.penetration,
+                "length",
+            )
+        for hammer in self.hammers:
+            rules.must(
+                hammer.helmet_mass is not None,
+                "helmet.mass",
+                "must be given for hammers whose catalogue row names no helmet",
+                f"none for {hammer.name}",
+            )
+        rules.close()

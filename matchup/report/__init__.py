@@ -1,0 +1,1 @@
+"""Results as people and scripts see them. Computes no engineering value."""

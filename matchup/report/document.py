@@ -1,0 +1,154 @@
+"""Results as the JSON documents that scripts read: fixed names, fixed units, absent is null."""
+
+from __future__ import annotations
+
+import math
+
+from matchup.analysis.single import Blow
+from matchup.model.cushion import Cushion
+from matchup.model.job import Job
+from matchup.report.sentences import reason
+from matchup.report.shown import Units
+from matchup.search.option import Cure, Option, StagePlan
+
+
+def number(value: float | None, scale: float = 1.0) -> float | None:
+    """Return a number times `scale`, or None where it is absent or not finite."""
+    return None if value is None or not math.isfinite(value) else float(value) * scale
+
+
+def cushion_document(cushion: Cushion | None) -> dict[str, object] | None:
+    """Return a pile cushion."""
+    if cushion is None:
+        return None
+    return {
+        "material": cushion.material.name,
+        "sheets": cushion.sheets,
+        "thickness_mm": 1e3 * cushion.thickness,
+    }
+
+
+def hammer_cushion(option: Option) -> str:
+    """Return an option's hammer cushion in words."""
+    return option.stack.hammer.text if option.stack.hammer else option.hammer.cushion_text
+
+
+def cure_document(cure: Cure | None) -> dict[str, object] | None:
+    """Return what would let a failing hammer drive the pile."""
+    if cure is None:
+        return None
+    return {
+        "cushion": cushion_document(cure.stack.pile) if cure.stack else None,
+        "ram_mass_kg": number(cure.ram_mass),
+        "ram_within_limits": cure.ram_within if cure.ram_mass else None,
+        "set_within_limits_mm": number(cure.set_within, 1e3),
+    }
+
+
+def blows_per_25cm(set_: float) -> float | None:
+    """Return the blow count; None where the pile does not move."""
+    return 0.25 / set_ if set_ > 0 else None
+
+
+def option_document(option: Option, job: Job, units: Units, place: int | None) -> dict[str, object]:
+    """Return an option of a ranking, or the nearest miss of a hammer that fails."""
+    plan = option.failing or option.target
+    return {
+        "rank": place,
+        "hammer": option.hammer.name,
+        "verdict": option.verdict,
+        "governs": option.governs,
+        "reason": reason(option, job, units),
+        "cushion": cushion_document(option.stack.pile),
+        "hammer_cushion": hammer_cushion(option),
+        "stroke_m": number(plan.stroke),
+        "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
+        "schedule": [_stage_document(stage_plan) for stage_plan in option.plans],
+        "set_mm": number(plan.set, 1e3),
+        "blows_per_25cm": blows_per_25cm(plan.set),
+        "blow_energy_kJ": number(plan.blow_energy, 1e-3),
+        "transferred_energy_kJ": number(plan.transferred, 1e-3),
+        "peak_compression_MPa": number(max(p.compression for p in option.plans), 1e-6),
+        "compression_use": number(option.compression_use),
+        "peak_tension_MPa": number(max(p.tension for p in option.plans), 1e-6),
+        "tension_use": number(option.tension_use),
+        "blow_rate_per_min": number(plan.blow_rate, 60),
+        "blows_total": None,
+        "drive_minutes": None,
+        "runner_up": (
+            None
+            if option.runner_up is None
+            else option_document(option.runner_up, job, units, None)
+        ),
+        "certificate": option.certificate or None,
+        "reach_ratio": number(option.reach),
+        "reach_is_open": option.reach_is_open,
+        "cure": cure_document(option.cure),
+    }
+
+
+def _stage_document(plan: StagePlan) -> dict[str, object]:
+    return {
+        "stage": plan.stage.name,
+        "case": plan.stage.case or None,
+        "penetration_m": plan.stage.penetration,
+        "verdict": plan.verdict,
+        "stroke_m": number(plan.stroke),
+        "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
+        "set_needed_mm": 1e3 * plan.stage.set_needed,
+        "set_mm": number(plan.set, 1e3),
+        "blows_per_25cm": blows_per_25cm(plan.set),
+        "compression_use": number(plan.compression_use),
+        "tension_use": number(plan.tension_use),
+    }
+
+
+def blow_document(blow: Blow, traces: bool = False) -> dict[str, object]:
+    """Return one blow; with `traces` also the envelope along the pile and the time histories."""
+    document: dict[str, object] = {
+        "schema_version": 1,
+        "hammer": blow.hammer.name,
+        "stage": blow.stage.name,
+        "case": blow.stage.case or None,
+        "cushion": cushion_document(blow.cushion),
+        "wear": blow.wear if blow.cushion else None,
+        "stroke_m": blow.stroke,
+        "impact_velocity_m_s": blow.impact_velocity,
+        "blow_energy_kJ": blow.blow_energy / 1e3,
+        "transferred_energy_kJ": blow.transferred / 1e3,
+        "set_mm": 1e3 * blow.set,
+        "set_rule": blow.set_rule,
+        "set_needed_mm": 1e3 * blow.stage.set_needed,
+        "blows_per_25cm": blows_per_25cm(blow.set),
+        "toe_displacement_max_mm": 1e3 * blow.toe_most,
+        "peak_compression_MPa": blow.compression / 1e6,
+        "peak_compression_at_m": blow.compression_at,
+        "peak_tension_MPa": blow.tension / 1e6,
+        "peak_tension_at_m": blow.tension_at,
+        "compression_use": blow.compression_use,
+        "tension_use": blow.tension_use,
+        "head_force_peak_kN": blow.head_force / 1e3,
+        "ram_rebound_velocity_m_s": -blow.ram_velocity,
+        "energy_balance_error": blow.balance,
+        "duration_ms": 1e3 * blow.duration,
+        "segments": blow.segments,
+        "time_step_us": 1e6 * blow.time_step,
+    }
+    if traces:
+        envelope, trace = blow.envelope, blow.trace
+        document["envelope"] = [
+            {"distance_m": x, "compression_MPa": c / 1e6, "tension_MPa": t / 1e6}
+            for x, c, t in zip(
+                envelope.distance.tolist(),
+                envelope.compression.tolist(),
+                envelope.tension.tolist(),
+                strict=True,
+            )
+        ]
+        document["trace"] = {
+            "time_ms": (1e3 * trace.time).tolist(),
+            "head_force_kN": (trace.head_force / 1e3).tolist(),
+            "head_velocity_m_s": trace.head_velocity.tolist(),
+            "toe_displacement_mm": (1e3 * trace.toe_displacement).tolist(),
+        }
+    return document

@@ -1,0 +1,126 @@
+"""One blow as text."""
+
+from __future__ import annotations
+
+from matchup.analysis.single import Blow
+from matchup.model.job import Job
+from matchup.report.sentences import CAUTION, basis
+from matchup.report.shown import Units
+from matchup.report.table import Column, Table, wrapped
+
+
+def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
+    """Return one blow for a terminal: what it does to pile and ground, then how far to trust it."""
+    on = "" if blow.cushion is None else f" on {units.cushion(blow.cushion)} ({blow.wear})"
+    enough = "reached" if blow.set >= blow.stage.set_needed else "not reached"
+    head = (
+        f"{blow.hammer.name}, stroke {units.text(blow.stroke, 'stroke')}{on}, "
+        f"stage {blow.stage.name!r}: set {units.text(blow.set, 'set')} "
+        f"({units.text(blow.stage.set_needed, 'set')} needed: {enough})."
+    )
+    count = units.blow_count(blow.set)
+    rows = [
+        ("set", units.text(blow.set, "set"), f"largest toe displacement less {blow.set_rule}"),
+        (
+            f"blow count per {units.counted}",
+            "-" if count is None else f"{count:.0f}",
+            "",
+        ),
+        (
+            "largest toe displacement",
+            units.text(blow.toe_most, "set"),
+            "from the unstressed soil",
+        ),
+        (
+            "peak compression",
+            units.text(blow.compression, "stress"),
+            f"{100 * blow.compression_use:.0f} % of the limit, "
+            f"{units.text(blow.compression_at, 'length')} from the head",
+        ),
+        (
+            "peak tension",
+            units.text(blow.tension, "stress"),
+            f"{100 * blow.tension_use:.0f} % of the limit, "
+            f"{units.text(blow.tension_at, 'length')} from the head",
+        ),
+        ("peak head force", units.text(blow.head_force, "force"), ""),
+        ("blow energy", units.text(blow.blow_energy, "energy"), "ram weight times stroke"),
+        (
+            "transferred energy",
+            units.text(blow.transferred, "energy"),
+            f"{100 * blow.transferred / blow.blow_energy:.0f} % of it reaches the pile",
+        ),
+        (
+            "impact velocity",
+            f"{units.value(blow.impact_velocity, 'velocity'):.2f} {units.unit('velocity')}",
+            f"efficiency {100 * blow.hammer.efficiency:.0f} %",
+        ),
+        (
+            "energy audit",
+            f"{100 * blow.balance:+.2f} %",
+            "unaccounted for, of the ram's energy at impact",
+        ),
+        (
+            "computed with",
+            f"{blow.segments} segments",
+            f"step {1e6 * blow.time_step:.0f} us, over {1e3 * blow.duration:.0f} ms",
+        ),
+    ]
+    columns = (
+        Column("what", "what"),
+        Column("value", "value"),
+        Column("remark", "remark", wrap=60),
+    )
+    parts = [wrapped(head, width), Table(columns, tuple(rows)).to_text(width)]
+    lines = [*basis(job, units), CAUTION]
+    parts.append("\n".join(wrapped(line, width, "  ") for line in lines))
+    return "\n\n".join(parts)
+
+
+def envelope_table(blow: Blow, units: Units) -> Table:
+    """Return the largest stresses along the pile."""
+    stress, length = units.unit("stress"), units.unit("length")
+    columns = (
+        Column(units.key("distance", "length"), f"from head\n{length}", 2),
+        Column(units.key("compression", "stress"), f"compression\n{stress}", 2),
+        Column(units.key("tension", "stress"), f"tension\n{stress}", 2),
+    )
+    envelope = blow.envelope
+    rows = tuple(
+        (
+            units.value(float(x), "length"),
+            units.value(float(c), "stress"),
+            units.value(float(t), "stress"),
+        )
+        for x, c, t in zip(envelope.distance, envelope.compression, envelope.tension, strict=True)
+    )
+    return Table(columns, rows)
+
+
+def trace_table(blow: Blow, units: Units) -> Table:
+    """Return head and toe against time."""
+    columns = (
+        Column("time_ms", "time\nms", 3),
+        Column(units.key("head_force", "force"), f"head force\n{units.unit('force')}", 1),
+        Column(
+            units.key("head_velocity", "velocity"), f"head velocity\n{units.unit('velocity')}", 3
+        ),
+        Column(units.key("toe_displacement", "set"), f"toe displacement\n{units.unit('set')}", 3),
+    )
+    trace = blow.trace
+    rows = tuple(
+        (
+            1e3 * float(time),
+            units.value(float(force), "force"),
+            units.value(float(velocity), "velocity"),
+            units.value(float(toe), "set"),
+        )
+        for time, force, velocity, toe in zip(
+            trace.time,
+            trace.head_force,
+            trace.head_velocity,
+            trace.toe_displacement,
+            strict=True,
+        )
+    )
+    return Table(columns, rows)

@@ -1,0 +1,1 @@
+"""Choosing: cushions, plans, options, the ranking."""

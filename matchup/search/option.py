@@ -1,0 +1,214 @@
+"""What a search answers: plans, options and the ranking. Plain data in SI units."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass, field
+
+from matchup.model.cushion import Stack
+from matchup.model.hammer import Hammer
+from matchup.model.job import Job
+from matchup.model.stage import Stage
+
+DRIVES = "drives"
+REDUCED = "drives with reduced stroke"
+NOT_REACHED = "does not reach the set"
+REFUSES = "refuses"
+OVER_TENSION = "overstresses in tension"
+OVER_COMPRESSION = "overstresses in compression"
+PILE_RUNS = "pile runs"
+NOT_ANALYSED = "could not be analysed"
+
+VERDICTS = (
+    NOT_ANALYSED,
+    PILE_RUNS,
+    OVER_COMPRESSION,
+    OVER_TENSION,
+    REFUSES,
+    NOT_REACHED,
+    REDUCED,
+    DRIVES,
+)
+"""Worst news first."""
+CAN_DRIVE = (DRIVES, REDUCED)
+
+
+@dataclass(frozen=True, slots=True)
+class StagePlan:
+    """The stroke planned at one stage, and what it does.
+
+    Where a stage fails, the stroke is the one that explains it: the largest if the set is not
+    reached, else the least that reaches the set.
+
+    Parameters
+    ----------
+    stage : Stage
+    stroke : float
+        [m]
+    low : float
+        Lowest stroke of the window. [m]
+    top : float or None
+        Highest stroke of the window; None where it was not looked for. [m]
+    set : float
+        Least over the wear states. [m]
+    compression, tension : float
+        Largest over the wear states and at 2 % more and less stroke. [Pa]
+    compression_use, tension_use : float
+        The same as fractions of the limits. [-]
+    blow_energy, transferred : float
+        Ram weight times stroke, and the least over the wear states of what reaches the pile. [J]
+    blow_rate : float or None
+        At this stroke; None where the catalogue does not say. [1/s]
+    verdict : str
+        Of this stage alone; `DRIVES` where its window is open.
+    lifted : bool
+        Whether tension closes the least stroke that reaches the set, and a window opens above.
+    why : str
+        What went wrong where the verdict is `NOT_ANALYSED`.
+    """
+
+    stage: Stage
+    stroke: float
+    low: float
+    top: float | None
+    set: float
+    compression: float
+    tension: float
+    compression_use: float
+    tension_use: float
+    blow_energy: float
+    transferred: float
+    blow_rate: float | None
+    verdict: str
+    lifted: bool = False
+    why: str = ""
+
+    @property
+    def set_share(self) -> float:
+        """Set over needed set [-]."""
+        return self.set / self.stage.set_needed
+
+    @property
+    def speed(self) -> float | None:
+        """Penetration speed [m/s]; None where the blow rate is not known."""
+        return None if self.blow_rate is None else self.blow_rate * self.set
+
+    @property
+    def shortfall(self) -> float:
+        """How far the stage is from working: the largest excess over what is needed [-]."""
+        if self.verdict in (PILE_RUNS, NOT_ANALYSED):
+            return math.inf
+        short = self.stage.set_needed / self.set if self.set > 0 else 1e9
+        return max(short, self.compression_use, self.tension_use) - 1
+
+
+@dataclass(frozen=True, slots=True)
+class Cure:
+    """What would let a failing hammer drive the pile, each found by the solver.
+
+    Parameters
+    ----------
+    stack : Stack or None
+        The thinnest cushions beyond the allowed range that would do.
+    stack_looked : bool
+        Whether thicker cushions were looked at.
+    ram_mass : float or None
+        Least ram mass that would reach the set at the same largest stroke and cushions. [kg]
+    ram_within : bool
+        Whether that ram would also stay within the stress limits.
+    set_within : float or None
+        Largest set within the stress limits, with the nearest miss's cushions. [m]
+    """
+
+    stack: Stack | None = None
+    stack_looked: bool = False
+    ram_mass: float | None = None
+    ram_within: bool = False
+    set_within: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Option:
+    """The best plan of one hammer, or its nearest miss.
+
+    Parameters
+    ----------
+    hammer : Hammer
+    verdict : str
+        One of `VERDICTS`.
+    governs : str
+        ``set``, ``compression``, ``tension``, ``stroke range``, ``refusal`` or ``weight``.
+    stack : Stack
+        Cushions.
+    plans : tuple of StagePlan
+        In the order of the stages; for a miss only those looked at until one failed.
+    failing : StagePlan or None
+        The stage that fails.
+    runner_up : Option or None
+        A softer cushion of the same hammer that costs little more energy.
+    certificate : str
+        What certifies that this is the hammer's best plan.
+    reach : float or None
+        Largest resistance that the hammer still overcomes within the limits at the needed set, with
+        these cushions, over the target stage's; None where it was not looked for. [-]
+    reach_is_open : bool
+        Whether `reach` is only as far as was looked: the true one is larger.
+    cure : Cure or None
+        What would let a failing hammer drive the pile.
+    """
+
+    hammer: Hammer
+    verdict: str
+    governs: str
+    stack: Stack
+    plans: tuple[StagePlan, ...]
+    failing: StagePlan | None = None
+    runner_up: Option | None = None
+    certificate: str = ""
+    reach: float | None = None
+    reach_is_open: bool = False
+    cure: Cure | None = None
+
+    @property
+    def drives(self) -> bool:
+        """Whether the hammer can drive the pile."""
+        return self.verdict in CAN_DRIVE
+
+    @property
+    def target(self) -> StagePlan:
+        """The plan of the target stage."""
+        return self.plans[-1]
+
+    @property
+    def compression_use(self) -> float:
+        """Worst over the stages [-]."""
+        return max(plan.compression_use for plan in self.plans)
+
+    @property
+    def tension_use(self) -> float:
+        """Worst over the stages [-]."""
+        return max(plan.tension_use for plan in self.plans)
+
+
+@dataclass(frozen=True)
+class Ranking:
+    """All hammers of a job, best first, and why the others fail.
+
+    Parameters
+    ----------
+    job : Job
+    options : tuple of Option
+        Those that drive, best first.
+    rejected : tuple of Option
+        The others, nearest miss first.
+    analyses : int
+        Blows computed.
+    runtime : float
+        [s]
+    """
+
+    job: Job
+    options: tuple[Option, ...]
+    rejected: tuple[Option, ...]
+    analyses: int
+    runtime: float = field(compare=False)

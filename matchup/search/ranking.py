@@ -1,0 +1,42 @@
+"""The ranking: every hammer of a job, best first."""
+
+from __future__ import annotations
+
+import time
+
+from matchup.analysis.rig import Rig
+from matchup.model.job import Job
+from matchup.search.cure import find_cures
+from matchup.search.option import Option, Ranking
+from matchup.search.plan import Planner, plan_cost
+from matchup.search.reach import find_reach
+
+
+def rank_hammers(job: Job, workers: int | None = None) -> Ranking:
+    """Return the ranking of a job's hammers.
+
+    Parameters
+    ----------
+    job : Job
+    workers : int or None
+        Threads; None takes as many as there are processors. The answer does not depend on it.
+    """
+    started = time.perf_counter()
+    rig = Rig(job, workers)
+    options = Planner(rig).options()
+    options, blows_for_reach = find_reach(job, options, workers)
+    options, blows_for_cures = find_cures(job, options, workers)
+    driving = [option for option in options if option.drives]
+    failing = [option for option in options if not option.drives]
+    return Ranking(
+        job=job,
+        options=tuple(sorted(driving, key=lambda o: plan_cost(o.target, job.search.objective))),
+        rejected=tuple(sorted(failing, key=_shortfall)),
+        analyses=rig.spent + blows_for_reach + blows_for_cures,
+        runtime=time.perf_counter() - started,
+    )
+
+
+def _shortfall(option: Option) -> float:
+    assert option.failing is not None
+    return option.failing.shortfall

@@ -1,0 +1,79 @@
+"""Reach: how much more resistance a choice survives."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import replace
+
+import numpy as np
+
+from matchup.analysis.rig import Rig
+from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
+from matchup.model.job import Job
+from matchup.model.stage import Stage
+from matchup.search.option import NOT_ANALYSED, PILE_RUNS, Option
+
+FINENESS = 1.02
+"""Resistances looked at lie so far apart, as a ratio. [-]"""
+LOWEST, HIGHEST = 0.2, 4.0
+"""Ratios to the stage's resistance between which the reach is looked for. [-]"""
+
+
+def scaled(stage: Stage, ratio: float) -> Stage:
+    """Return a stage with the same distribution of `ratio` times the resistance."""
+    return replace(
+        stage, name=f"{stage.name} x {ratio:.4f}", shaft=ratio * stage.shaft, toe=ratio * stage.toe
+    )
+
+
+def find_reach(
+    job: Job, options: Sequence[Option], workers: int | None = None
+) -> tuple[list[Option], int]:
+    """Give each option the largest resistance that it overcomes within the limits.
+
+    The target stage's resistance, shaft and toe alike, is scaled in steps of 2 %; the largest step
+    with an open window is found by bisection, for all hammers at once, each with its own cushions.
+    Where a hammer fails, the ratio lies below 1.
+
+    Returns
+    -------
+    options : list of Option
+    spent : int
+        Blows computed.
+    """
+    whole = [o for o in options if o.verdict not in (NOT_ANALYSED, PILE_RUNS)]
+    if not whole:
+        return list(options), 0
+    below = int(np.floor(np.log(LOWEST) / np.log(FINENESS)))
+    above = int(np.ceil(np.log(HIGHEST) / np.log(FINENESS)))
+    ratios = FINENESS ** np.arange(below, above + 1)
+    stages = tuple(scaled(job.stages[-1], float(ratio)) for ratio in ratios)
+    hammers = tuple(option.hammer for option in whole)
+    rig = Rig(replace(job, stages=stages, hammers=hammers), workers)
+    finder = WindowFinder(rig, job_demands(rig))
+    stack = np.array([rig.stacks.index(option.stack) for option in whole])
+
+    def is_open(at: np.ndarray, rows: np.ndarray) -> np.ndarray:
+        return finder.find(Cells(at, rows, stack[rows])).state == OPEN
+
+    # Resistance number -1 stands for less than the lowest; the one past the end for more.
+    low = np.full(len(whole), -1)
+    high = np.full(len(whole), ratios.size)
+    for row, option in enumerate(whole):
+        (low if option.drives else high)[row] = -below
+    while (rows := np.flatnonzero(high - low > 1)).size:
+        middle = (low[rows] + high[rows]) // 2
+        fits = is_open(middle, rows)
+        low[rows[fits]] = middle[fits]
+        high[rows[~fits]] = middle[~fits]
+    found = {
+        option.hammer.name: (float(ratios[at]) if at >= 0 else None, bool(at == ratios.size - 1))
+        for option, at in zip(whole, low, strict=True)
+    }
+    return [_with_reach(option, found.get(option.hammer.name)) for option in options], rig.spent
+
+
+def _with_reach(option: Option, found: tuple[float | None, bool] | None) -> Option:
+    if found is None:
+        return option
+    return replace(option, reach=found[0], reach_is_open=found[1])

@@ -1,0 +1,137 @@
+"""Fill the lanes of a group with the state at the moment of impact."""
+
+from __future__ import annotations
+
+from matchup.wave.laws import clipped, compiled, larger
+from matchup.wave.layout import (
+    ABOVE,
+    BELOW,
+    BLOCK,
+    DOWN,
+    DRAG,
+    FORCE_2,
+    HALF,
+    HEAD_BLOCK,
+    HELMET_KICK,
+    HELMET_WEIGHT,
+    HELMET_X,
+    LANES,
+    LARGEST_2,
+    LEAST,
+    LEAST_ALL,
+    LOADING_1,
+    LOADING_2,
+    PEAK,
+    PEAK_ALL,
+    RAM_KICK,
+    RAM_V,
+    RAM_WEIGHT,
+    RAM_X,
+    SMITH,
+    SPRING,
+    STRENGTH,
+    STRETCH,
+    TOE_DRAG,
+    TOE_HALF,
+    TOE_MOST,
+    TOE_MOST_ALL,
+    TOE_SMITH,
+    TOE_STRENGTH,
+    TOE_VISCOUS,
+    TOE_X,
+    UNLOADING_1,
+    UNLOADING_2,
+    UP,
+    VISCOUS,
+    WEIGHT,
+    Bar,
+    Blows,
+    Floats,
+    Grounds,
+    Integers,
+)
+
+
+@compiled
+def fill_lanes(bar: Bar, grounds: Grounds, blows: Blows, rows: Integers, state: Floats) -> None:
+    """Write pile, soil and hammer of the blows `rows` into `state`, modified in place.
+
+    At rest each segment carries a constant force, held by two equal waves; shaft and toe springs
+    carry what the displacement at rest asks of them; the pile cushion carries the helmet.
+    """
+    state[:] = 0.0
+    for lane in range(LANES):
+        ground = blows.ground[rows[lane]]
+        _fill_head(blows.head[rows[lane]], 0.5 * bar.step / blows.substeps[rows[lane]], state, lane)
+        _fill_nodes(bar, grounds, ground, state, lane)
+        _fill_toe(bar, grounds, ground, state, lane)
+
+
+@compiled
+def _fill_head(head: Floats, half_step: float, state: Floats, lane: int) -> None:
+    ram, velocity, loading_1, unloading_1, helmet, loading_2, unloading_2 = head[:7]
+    state[RAM_V + lane] = velocity
+    state[RAM_KICK + lane] = half_step / ram
+    state[HELMET_KICK + lane] = half_step / helmet
+    state[RAM_WEIGHT + lane] = head[7]
+    state[HELMET_WEIGHT + lane] = head[8]
+    state[LOADING_1 + lane] = loading_1
+    state[UNLOADING_1 + lane] = unloading_1
+    state[LOADING_2 + lane] = loading_2
+    state[UNLOADING_2 + lane] = unloading_2
+    state[FORCE_2 + lane] = head[8]
+    state[LARGEST_2 + lane] = head[8] / loading_2
+    state[HELMET_X + lane] = head[8] / loading_2
+    state[RAM_X + lane] = head[8] / loading_2
+
+
+@compiled
+def _fill_nodes(bar: Bar, grounds: Grounds, ground: int, state: Floats, lane: int) -> None:
+    nodes = bar.weight.size
+    settlement = grounds.settlement[ground]
+    for i in range(nodes):
+        at = HEAD_BLOCK + i * BLOCK + lane
+        strength = grounds.strength[ground, i]
+        damping = grounds.damping[ground, i]
+        spring = clipped(grounds.stiffness[ground, i] * settlement[i], -strength, strength)
+        state[at + WEIGHT] = bar.weight[i]
+        state[at + HALF] = 0.5 * bar.step * grounds.stiffness[ground, i]
+        state[at + STRENGTH] = strength
+        state[at + SPRING] = spring
+        state[at + SMITH] = damping if grounds.smith else 0.0
+        state[at + VISCOUS] = 0.0 if grounds.smith else damping * strength
+        state[at + DRAG] = damping * (spring if grounds.smith else strength)
+        if i > 0:
+            force = bar.impedance[i - 1] / bar.step * (settlement[i - 1] - settlement[i])
+            state[at + ABOVE] = bar.impedance[i - 1]
+            state[at + DOWN] = 0.5 * force
+            state[at + PEAK] = force
+            state[at + LEAST] = force
+        if i < nodes - 1:
+            force = bar.impedance[i] / bar.step * (settlement[i] - settlement[i + 1])
+            state[at + BELOW] = bar.impedance[i]
+            state[at + UP] = 0.5 * force
+            state[at + PEAK] = larger(force, state[at + PEAK])
+            state[at + LEAST] = force if i == 0 else min(force, state[at + LEAST])
+        state[at + PEAK_ALL] = state[at + PEAK]
+        state[at + LEAST_ALL] = state[at + LEAST]
+
+
+@compiled
+def _fill_toe(bar: Bar, grounds: Grounds, ground: int, state: Floats, lane: int) -> None:
+    nodes = bar.weight.size
+    at = HEAD_BLOCK + nodes * BLOCK + lane
+    stiffness, strength, damping = grounds.toe[ground]
+    settlement = grounds.settlement[ground, nodes - 1]
+    stretch = min(stiffness * settlement, strength)
+    touches = stretch > 0.0
+    state[at + STRETCH] = stretch
+    state[at + TOE_X] = settlement
+    state[at + TOE_MOST] = settlement
+    state[at + TOE_MOST_ALL] = settlement
+    state[at + TOE_HALF] = 0.5 * bar.step * stiffness
+    state[at + TOE_STRENGTH] = strength
+    state[at + TOE_SMITH] = damping if grounds.smith else 0.0
+    state[at + TOE_VISCOUS] = 0.0 if grounds.smith else damping * strength
+    if touches:
+        state[at + TOE_DRAG] = damping * (stretch if grounds.smith else strength)
