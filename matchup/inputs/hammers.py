@@ -126,7 +126,7 @@ def _hammer(
 def _cushion(
     table: RawTable, record: Record, materials: Sequence[CushionMaterial], findings: Findings
 ) -> tuple[Spring | None, str]:
-    """Return a row's hammer cushion, by name, thickness and area or by stiffness and restitution."""
+    """Return a row's hammer cushion and its description."""
     by_name = ("hammer_cushion", "hammer_cushion_thickness", "hammer_cushion_area")
     by_spring = ("hammer_cushion_stiffness", "hammer_cushion_restitution")
     given = set(record.values)

@@ -34,13 +34,13 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
         (
             "peak compression",
             units.text(blow.compression, "stress"),
-            f"{100 * blow.compression_use:.0f} % of the limit, "
+            f"{100 * blow.compression_use:.0f}% of the limit, "
             f"{units.text(blow.compression_at, 'length')} from the head",
         ),
         (
             "peak tension",
             units.text(blow.tension, "stress"),
-            f"{100 * blow.tension_use:.0f} % of the limit, "
+            f"{100 * blow.tension_use:.0f}% of the limit, "
             f"{units.text(blow.tension_at, 'length')} from the head",
         ),
         ("peak head force", units.text(blow.head_force, "force"), ""),
@@ -48,7 +48,7 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
         (
             "transferred energy",
             units.text(blow.transferred, "energy"),
-            f"{100 * blow.transferred / blow.blow_energy:.0f} % of it reaches the pile",
+            f"{100 * blow.transferred / blow.blow_energy:.0f}% of it reaches the pile",
         ),
         (
             "impact velocity",

@@ -75,9 +75,9 @@ def _uses(plan: StagePlan, job: Job, units: Units) -> str:
     compression = units.text(plan.compression, "stress")
     tension = units.text(plan.tension, "stress")
     return (
-        f", with {compression} in compression ({100 * plan.compression_use:.0f} % of the limit of "
+        f", with {compression} in compression ({100 * plan.compression_use:.0f}% of the limit of "
         f"{units.text(job.limits.compression, 'stress')}) and {tension} in tension "
-        f"({100 * plan.tension_use:.0f} % of {units.text(job.limits.tension, 'stress')})"
+        f"({100 * plan.tension_use:.0f}% of {units.text(job.limits.tension, 'stress')})"
     )
 
 

@@ -8,11 +8,11 @@ import textwrap
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from tabulate import DataRow, Line, TableFormat, tabulate
+from tabulate import DataRow, TableFormat, tabulate
 
 NARROW = TableFormat(
     lineabove=None,
-    linebelowheader=Line("", "-", " ", ""),
+    linebelowheader=None,
     linebetweenrows=None,
     linebelow=None,
     headerrow=DataRow("", " ", ""),
@@ -20,6 +20,7 @@ NARROW = TableFormat(
     padding=0,
     with_header_hide=None,
 )
+"""One space between columns: eleven of them have to fit 100 characters."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,17 +75,21 @@ class Table:
 
     def _render(self, columns: Sequence[int]) -> str:
         picked = [self.columns[i] for i in columns]
+        header = _lines([column.header for column in picked], at_bottom=True)
         body = [
-            [_cell(row[i], column) for i, column in zip(columns, picked, strict=True)]
+            line
             for row in self.rows
+            for line in _lines([_cell(row[i], c) for i, c in zip(columns, picked, strict=True)])
         ]
-        return tabulate(
-            body,
-            headers=[column.header for column in picked],
+        text = tabulate(
+            header + body,
             tablefmt=NARROW,
             disable_numparse=True,
             colalign=["left" if column.digits is None else "right" for column in picked],
         )
+        lines = [line.rstrip() for line in text.splitlines()]
+        lines.insert(len(header), "-" * max(map(len, lines)))
+        return "\n".join(lines)
 
     def to_csv(self) -> str:
         """Return the table as CSV with plain numbers; absent values are empty."""
@@ -99,6 +104,17 @@ class Table:
         """Return the rows as dictionaries."""
         keys = [column.key for column in self.columns]
         return [dict(zip(keys, row, strict=True)) for row in self.rows]
+
+
+def _lines(cells: Sequence[str], at_bottom: bool = False) -> list[list[str]]:
+    """Return the lines that a row of cells with line breaks takes up."""
+    split = [cell.split("\n") for cell in cells]
+    height = max(map(len, split))
+    if at_bottom:
+        full = [[""] * (height - len(lines)) + lines for lines in split]
+    else:
+        full = [lines + [""] * (height - len(lines)) for lines in split]
+    return [list(line) for line in zip(*full, strict=True)]
 
 
 def _cell(value: object, column: Column) -> str:

@@ -119,7 +119,7 @@ def _heavier(
     spent = 0
     while (rows := np.flatnonzero(high - low > 1)).size:
         middle = (low[rows] + high[rows]) // 2
-        finder, cells = _with_rams(job, [failing[r] for r in rows], factors[middle], workers)
+        finder, cells = _with_rams(job, [failing[int(r)] for r in rows], factors[middle], workers)
         enough = _reaches(finder, cells)
         spent += finder.rig.spent
         high[rows[enough]] = middle[enough]
@@ -127,11 +127,13 @@ def _heavier(
     cures = {option.hammer.name: Cure() for option in failing}
     found = np.flatnonzero(high <= count)
     if found.size:
-        finder, cells = _with_rams(job, [failing[r] for r in found], factors[high[found]], workers)
+        finder, cells = _with_rams(
+            job, [failing[int(r)] for r in found], factors[high[found]], workers
+        )
         fits = finder.find(cells).state == OPEN
         spent += finder.rig.spent
         for row, within in zip(found, fits, strict=True):
-            hammer = failing[row].hammer
+            hammer = failing[int(row)].hammer
             mass = hammer.ram_mass * float(factors[high[row]])
             cures[hammer.name] = Cure(ram_mass=mass, ram_within=bool(within))
     return cures, spent

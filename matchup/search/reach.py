@@ -12,6 +12,7 @@ from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
 from matchup.model.job import Job
 from matchup.model.stage import Stage
 from matchup.search.option import NOT_ANALYSED, PILE_RUNS, Option
+from matchup.wave.layout import Flags, Integers
 
 FINENESS = 1.02
 """Resistances looked at lie so far apart, as a ratio. [-]"""
@@ -53,8 +54,8 @@ def find_reach(
     finder = WindowFinder(rig, job_demands(rig))
     stack = np.array([rig.stacks.index(option.stack) for option in whole])
 
-    def is_open(at: np.ndarray, rows: np.ndarray) -> np.ndarray:
-        return finder.find(Cells(at, rows, stack[rows])).state == OPEN
+    def is_open(at: Integers, rows: Integers) -> Flags:
+        return np.asarray(finder.find(Cells(at, rows, stack[rows])).state == OPEN)
 
     # Resistance number -1 stands for less than the lowest; the one past the end for more.
     low = np.full(len(whole), -1)
