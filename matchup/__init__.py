@@ -17,19 +17,33 @@ from typing import TYPE_CHECKING, Any
 from matchup.errors import AnalysisError, InputError, MatchupError
 
 if TYPE_CHECKING:
-    from matchup.api import BlowResult, RankingResult, blow, load_job, rank
+    from matchup.api import (
+        BlowResult,
+        CheckResult,
+        RankingResult,
+        WindowResult,
+        blow,
+        check,
+        load_job,
+        rank,
+        window,
+    )
 
 __version__ = "0.1.0"
 __all__ = [
     "AnalysisError",
     "BlowResult",
+    "CheckResult",
     "InputError",
     "MatchupError",
     "RankingResult",
+    "WindowResult",
     "__version__",
     "blow",
+    "check",
     "load_job",
     "rank",
+    "window",
 ]
 
 

@@ -14,21 +14,41 @@ from typing import TYPE_CHECKING
 from matchup.analysis.single import Blow, compute_blow
 from matchup.errors import InputError, Problem
 from matchup.inputs import load_job
+from matchup.model.hammer import Hammer
 from matchup.model.job import Job
-from matchup.model.selection import Selected, Selection, select
+from matchup.model.selection import Selected, Selection, pick_hammer, select
 from matchup.report.document import blow_document
+from matchup.report.mapped import map_document, map_table, map_text
 from matchup.report.one_blow import blow_text, envelope_table, trace_table
-from matchup.report.ranked import options_table, ranking_document, ranking_text
+from matchup.report.ranked import (
+    check_document,
+    check_text,
+    options_table,
+    ranking_document,
+    ranking_text,
+    schedule_table,
+)
 from matchup.report.shown import Units
 from matchup.report.table import Table
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers
+from matchup.search.stroke_map import StrokeMap, map_strokes
 from matchup.units import UnitError, parse_quantity
 
 if TYPE_CHECKING:
     import pandas as pd
 
-__all__ = ["BlowResult", "RankingResult", "blow", "load_job", "rank"]
+__all__ = [
+    "BlowResult",
+    "CheckResult",
+    "RankingResult",
+    "WindowResult",
+    "blow",
+    "check",
+    "load_job",
+    "rank",
+    "window",
+]
 
 JobLike = Job | str | os.PathLike[str]
 
@@ -62,7 +82,7 @@ class RankingResult:
         """Return every hammer as a row of a tidy data frame, in the units its columns name."""
         import pandas as pd
 
-        documents = self.to_dict()
+        documents = ranking_document(self.ranking, self.units())
         rows = []
         for group in ("options", "rejected"):
             for document in documents[group]:  # type: ignore[attr-defined]
@@ -87,6 +107,78 @@ class RankingResult:
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data."""
         return ranking_document(self.ranking, self.units(display))
+
+    def _repr_html_(self) -> str:
+        return f"<pre>{html.escape(self.to_text())}</pre>"
+
+    def __str__(self) -> str:
+        return self.to_text()
+
+
+@dataclass(frozen=True)
+class CheckResult(RankingResult):
+    """The answer for one hammer: a ranking of that hammer alone, told as yes or no."""
+
+    @property
+    def can(self) -> bool:
+        """Whether the hammer can drive the pile."""
+        return bool(self.options)
+
+    @property
+    def option(self) -> Option:
+        """The hammer's best plan, or its nearest miss."""
+        return (*self.options, *self.rejected)[0]
+
+    def to_text(self, display: str | None = None, width: int = 100) -> str:
+        """Return the answer as it is printed."""
+        return check_text(self.ranking, self.units(display), width)
+
+    def to_csv(self, display: str | None = None) -> str:
+        """Return what the hammer does at every stage as CSV."""
+        return schedule_table((self.option,), self.units(display)).to_csv()
+
+    def to_dict(self, display: str | None = None) -> dict[str, object]:
+        """Return the JSON document as plain data."""
+        return check_document(self.ranking, self.units(display))
+
+
+@dataclass(frozen=True)
+class WindowResult:
+    """Stroke against cushion for one hammer.
+
+    Parameters
+    ----------
+    map : StrokeMap
+    """
+
+    map: StrokeMap
+
+    @property
+    def is_open(self) -> bool:
+        """Whether any stroke works on any cushion."""
+        return self.map.is_open
+
+    def units(self, display: str | None = None) -> Units:
+        """Return the display units: the job's, or ``metric`` or ``us``."""
+        return Units(display or self.map.job.display)
+
+    def to_frame(self) -> pd.DataFrame:
+        """Return every cell as a row of a data frame."""
+        import pandas as pd
+
+        return pd.DataFrame(map_table(self.map, self.units()).to_records())
+
+    def to_text(self, display: str | None = None, width: int = 100) -> str:
+        """Return the map as it is printed."""
+        return map_text(self.map, self.units(display), width)
+
+    def to_csv(self, display: str | None = None) -> str:
+        """Return every cell as CSV."""
+        return map_table(self.map, self.units(display)).to_csv()
+
+    def to_dict(self) -> dict[str, object]:
+        """Return the JSON document as plain data."""
+        return map_document(self.map)
 
     def _repr_html_(self) -> str:
         return f"<pre>{html.escape(self.to_text())}</pre>"
@@ -130,6 +222,10 @@ class BlowResult:
         """Return the blow as it is printed."""
         return blow_text(self.blow, self.job, self.units(display), width)
 
+    def to_csv(self, display: str | None = None) -> str:
+        """Return head and toe against time as CSV."""
+        return self.trace_table(display).to_csv()
+
     def to_dict(self, traces: bool = False) -> dict[str, object]:
         """Return the JSON document as plain data."""
         return blow_document(self.blow, traces)
@@ -161,6 +257,53 @@ def rank(job: JobLike, workers: int | None = None, seed: int | None = None) -> R
     if seed is not None:
         job = replace(job, search=replace(job.search, seed=seed))
     return RankingResult(rank_hammers(job, workers))
+
+
+def check(job: JobLike, hammer: str | None = None, workers: int | None = None) -> CheckResult:
+    """Answer whether one hammer can drive the pile, and if not, what stops it.
+
+    Parameters
+    ----------
+    job : Job or path
+    hammer : str or None
+        Name; may be left out where the job has one hammer.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+
+    Raises
+    ------
+    InputError
+        If the job or the selection has problems.
+    """
+    job = _job(job)
+    alone = replace(job, hammers=(_hammer(job, hammer),))
+    return CheckResult(rank_hammers(alone, workers))
+
+
+def window(
+    job: JobLike,
+    hammer: str | None = None,
+    stage: str | None = None,
+    workers: int | None = None,
+) -> WindowResult:
+    """Map stroke against cushion for one hammer: where it works, and what stops it.
+
+    Parameters
+    ----------
+    job : Job or path
+    hammer, stage : str or None
+        Names; the stage that is not named is the target.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+
+    Raises
+    ------
+    InputError
+        If the job or the selection has problems.
+    """
+    job = _job(job)
+    chosen = select(replace(job, cushions=None), Selection(hammer, stage))
+    return WindowResult(map_strokes(job, chosen.hammer, chosen.stage, workers))
 
 
 def blow(
@@ -214,6 +357,14 @@ def blow(
 
 def _job(job: JobLike) -> Job:
     return job if isinstance(job, Job) else load_job(job)
+
+
+def _hammer(job: Job, name: str | None) -> Hammer:
+    problems: list[Problem] = []
+    hammer = pick_hammer(job, name, problems)
+    if hammer is None:
+        raise InputError(problems)
+    return hammer
 
 
 def _quantity(

@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from typing import NamedTuple
 
 import numpy as np
+
 from matchup.analysis.blow import Strikes, Struck, strike
 from matchup.analysis.chain import Chains, build_chains, enough_segments, pile_contact
 from matchup.model.cushion import Cushion, CushionMaterial, Spring
@@ -23,7 +24,7 @@ from matchup.wave.layout import COLUMNS, LANES, Bar, Blows, Grounds
 from matchup.wave.march import march
 
 STIFF = 1e4
-"""Contact stiffness over ``Z**2 / M`` that stands for "ram directly on the rod"; see `bare_head`."""
+"""Contact stiffness over ``Z**2 / M`` that stands for a ram directly on the rod: `bare_head`."""
 GLUED = 1e6
 """Stiffness over ``Z**2 / M`` of a spring that holds a helmet on the rod."""
 
@@ -58,7 +59,7 @@ class Head:
         )
 
     def substeps(self, step: float, accuracy: float = 0.1) -> int:
-        """Return how many sub-steps keep sub-step times largest circular frequency at `accuracy`."""
+        """Return how many sub-steps keep sub-step times largest frequency at `accuracy`."""
         k1, k2 = self.k1 / self.e1**2, self.k2 / self.e2**2
         frequency = math.sqrt((k1 + k2) / self.helmet + k1 / self.ram)
         return max(1, math.ceil(step * frequency / accuracy))

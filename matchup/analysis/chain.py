@@ -160,7 +160,7 @@ class Chains:
     grounds : Grounds
         One row for each stage and static load.
     ground_of : (stages, hammers) int64 array
-        Row of `grounds`; -1 where the weight exceeds the resistance and the pile runs.
+        Row of `grounds`; -1 where the weight, ram included, exceeds the resistance: the pile runs.
     hammers : tuple of Hammer
     stages : tuple of Stage
     gravity : float
@@ -212,7 +212,9 @@ def build_chains(
                 if settlement is not None:
                     settlements.append(settlement)
                     of_row.append(s)
-            ground_of[s, h] = rows[key]
+            # A ram heavier than what is left of the resistance would push the pile on without end.
+            on_top = load + gravity * hammer.ram_mass + bar.weight.sum()
+            ground_of[s, h] = -1 if on_top >= stage.resistance and gravity else rows[key]
     nodes = depth.size
     strength = np.array([strengths[s] for s in of_row]).reshape(-1, nodes)
     quake = np.array([stages[s].shaft_quake for s in of_row]).reshape(-1, 1)

@@ -133,7 +133,7 @@ def compute_blow(
     what = f"{hammer.name} at stage {stage.name!r}, stroke {stroke:.3g} m"
     if chains.ground_of[0, 0] < 0:
         raise AnalysisError(
-            f"{what}: the pile runs; pile, helmet and what stands on it weigh more than the "
+            f"{what}: the pile runs; pile, helmet, ram and what stands on it weigh more than the "
             f"resistance of {stage.resistance / 1e3:.0f} kN, so there is no blow to compute"
         )
     spring = cushion.spring(wear) if cushion else pile_contact(job.pile)

@@ -146,16 +146,13 @@ class WindowFinder:
 
     def sets(self, cells: Cells, at: Integers) -> tuple[Floats, Flags]:
         """Return the least set over the wear states at setting number `at`, and soundness."""
-        stroke = self._table[cells.hammer, at]
         least = np.full(at.size, np.inf)
-        sound = np.ones(at.size, bool)
+        all_sound = np.ones(at.size, bool)
         for wear in range(len(self.rig.wears)):
-            answers = self.rig.answer(
-                cells.stage, cells.hammer, cells.cushion, np.full(at.size, wear), stroke
-            )
-            least = np.minimum(least, answers.set)
-            sound &= answers.sound
-        return least, sound
+            found, sound = self._sets_worn(cells, wear, at)
+            least = np.minimum(least, found)
+            all_sound &= sound
+        return least, all_sound
 
     def stresses(self, cells: Cells, at: Integers) -> tuple[Floats, Floats, Flags]:
         """Return the largest stresses over wear states and stroke tolerance, and soundness."""
@@ -210,40 +207,65 @@ class WindowFinder:
         state[broken] = np.where(use_compression >= use_tension, COMPRESSION, TENSION)[broken]
 
     def _reach_set(self, cells: Cells, last: Integers) -> tuple[Integers, Floats, Integers]:
-        """Return the least setting that reaches the set, the set there, and the state.
+        """Return the least setting that reaches the set in every wear state, the set, the state.
 
-        Bracketing on whole setting numbers: the set grows with the stroke, nearly in a straight
-        line, so the next guess is where the line through both ends of the bracket meets the
-        needed set, kept inside the bracket; every third guess halves it.
+        Wear state by wear state, each from where the one before got to: nearly always one of them
+        decides, and the others take a single blow to confirm it.
         """
-        count = last.size
+        at = np.zeros(last.size, np.int64)
+        state = np.full(last.size, OPEN)
+        for wear in range(len(self.rig.wears)):
+            rows = np.flatnonzero(state == OPEN)
+            if rows.size:
+                at[rows], state[rows] = self._bracket(
+                    _take(cells, rows), wear, at[rows], last[rows]
+                )
+        reached, sound = self.sets(cells, at)
+        state[~sound] = UNSOUND
+        return at, reached, state
+
+    def _bracket(
+        self, cells: Cells, wear: int, low: Integers, last: Integers
+    ) -> tuple[Integers, Integers]:
+        """Return the least setting from `low` to `last` that reaches the set in one wear state.
+
+        The set grows with the stroke, nearly in a straight line, so the next guess is where the
+        line through both ends of the bracket meets the needed set, kept inside the bracket; every
+        third guess halves it.
+        """
         needed = self.demands.set_needed[cells.stage]
-        state = np.full(count, OPEN)
-        low = np.zeros(count, np.int64)
-        high = last.copy()
-        set_low, sound_low = self.sets(cells, low)
-        set_high, sound_high = self.sets(cells, high)
-        state[set_high < needed] = NO_SET
-        state[~(sound_low & sound_high)] = UNSOUND
+        state = np.full(low.size, OPEN)
+        low, high = low.copy(), last.copy()
+        set_low, sound = self._sets_worn(cells, wear, low)
+        state[~sound] = UNSOUND
         at_once = set_low >= needed
         high[at_once] = low[at_once]
-        set_high[at_once] = set_low[at_once]
+        set_high = set_low.copy()
+        rows = np.flatnonzero((state == OPEN) & ~at_once)
+        if rows.size:
+            set_high[rows], sound = self._sets_worn(_take(cells, rows), wear, high[rows])
+            state[rows[set_high[rows] < needed[rows]]] = NO_SET
+            state[rows[~sound]] = UNSOUND
         rounds = 0
-        while True:
-            open_ = np.flatnonzero((state == OPEN) & (high - low > 1))
-            if not open_.size:
-                return high, set_high, state
+        while (rows := np.flatnonzero((state == OPEN) & (high - low > 1))).size:
             rounds += 1
-            span = high[open_] - low[open_]
-            share = (needed[open_] - set_low[open_]) / (set_high[open_] - set_low[open_])
+            span = high[rows] - low[rows]
+            share = (needed[rows] - set_low[rows]) / (set_high[rows] - set_low[rows])
             if rounds % 3 == 0:
                 share[:] = 0.5
-            guess = low[open_] + np.clip(np.ceil(share * span).astype(np.int64), 1, span - 1)
-            found, sound = self.sets(_take(cells, open_), guess)
-            state[open_[~sound]] = UNSOUND
-            enough = found >= needed[open_]
-            high[open_[enough]], set_high[open_[enough]] = guess[enough], found[enough]
-            low[open_[~enough]], set_low[open_[~enough]] = guess[~enough], found[~enough]
+            guess = low[rows] + np.clip(np.ceil(share * span).astype(np.int64), 1, span - 1)
+            found, sound = self._sets_worn(_take(cells, rows), wear, guess)
+            state[rows[~sound]] = UNSOUND
+            enough = found >= needed[rows]
+            high[rows[enough]], set_high[rows[enough]] = guess[enough], found[enough]
+            low[rows[~enough]], set_low[rows[~enough]] = guess[~enough], found[~enough]
+        return high, state
+
+    def _sets_worn(self, cells: Cells, wear: int, at: Integers) -> tuple[Floats, Flags]:
+        """Return the set in one wear state at setting number `at`, and soundness."""
+        stroke = self._table[cells.hammer, at]
+        answers = self.rig.answer(*cells, np.full(at.size, wear), stroke)
+        return answers.set, answers.sound
 
     def scan_settings(self, hammer: int, first: int) -> Integers:
         """Return the settings above `first` whose tolerances leave no gap, up to the largest."""

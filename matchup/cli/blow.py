@@ -7,7 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import Common, screen_width, show_document, tell, write_file
+from matchup.cli.show import Common, screen_width, show_document, show_result
 
 
 def blow(
@@ -42,16 +42,11 @@ def blow(
         wear=wear,
         best=best,
     )
-    if common.csv:
-        write_file(common.csv, result.trace_table(common.display).to_csv())
-        tell(common, f"wrote {common.csv}")
-    if common.json:
+    if common.json and traces:
         show_document(result.to_dict(traces))
         return 0
-    width = screen_width()
-    print(result.to_text(common.display, width))
+    show_result(result, common)
     if traces:
         for table in (result.envelope_table(common.display), result.trace_table(common.display)):
-            print()
-            print(table.to_text(width))
+            print(f"\n{table.to_text(screen_width())}")
     return 0

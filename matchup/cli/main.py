@@ -29,6 +29,8 @@ app = App(
 )
 # Named as text, so that solver and readers load only when their command runs.
 app.command("matchup.cli.rank:rank", help="Rank every hammer of the job's catalogue.")
+app.command("matchup.cli.check:check", help="Can this hammer drive this pile, and if not, why?")
+app.command("matchup.cli.window:window", help="Stroke against cushion: where it works.")
 app.command("matchup.cli.blow:blow", help="Compute one blow in detail.")
 
 

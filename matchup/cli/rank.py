@@ -7,9 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import Common, screen_width, show_document, tell, write_file
-
-NO_HAMMER_CAN = 3
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, show_result
 
 
 def rank(
@@ -22,11 +20,5 @@ def rank(
     from matchup import api
 
     result = api.rank(job, workers=common.workers, seed=seed)
-    if common.csv:
-        write_file(common.csv, result.to_csv(common.display))
-        tell(common, f"wrote {common.csv}")
-    if common.json:
-        show_document(result.to_dict(common.display))
-    else:
-        print(result.to_text(common.display, screen_width()))
-    return 0 if result.options else NO_HAMMER_CAN
+    show_result(result, common)
+    return 0 if result.options else THE_ANSWER_IS_NO

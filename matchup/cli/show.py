@@ -8,13 +8,15 @@ import sys
 from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Annotated, Literal
+from typing import Annotated, Literal, Protocol
 
 from cyclopts import Parameter
 
 from matchup.errors import InputError, Problem
 
 WIDEST = 100
+THE_ANSWER_IS_NO = 3
+"""Exit status of a command that ran, and whose answer is no."""
 
 
 @Parameter(name="*")
@@ -52,6 +54,30 @@ def show_problems(problems: Sequence[Problem], as_json: bool) -> None:
         print(problem, file=sys.stderr)
     if len(problems) > 1:
         print(f"{len(problems)} problems found.", file=sys.stderr)
+
+
+class Showable(Protocol):
+    """A result that knows how to show itself."""
+
+    def to_text(self, display: str | None, width: int) -> str:
+        """Return what is printed."""
+
+    def to_csv(self, display: str | None) -> str:
+        """Return the table for a file."""
+
+    def to_dict(self) -> dict[str, object]:
+        """Return the JSON document."""
+
+
+def show_result(result: Showable, common: Common) -> None:
+    """Write and print a result as the user asked for it."""
+    if common.csv:
+        write_file(common.csv, result.to_csv(common.display))
+        tell(common, f"wrote {common.csv}")
+    if common.json:
+        show_document(result.to_dict())
+    else:
+        print(result.to_text(common.display, screen_width()))
 
 
 def tell(common: Common, text: str) -> None:

@@ -11,6 +11,20 @@ from matchup.report.sentences import reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, StagePlan
 
+SCHEMA_VERSION = 1
+
+
+def limits_document(job: Job) -> dict[str, object]:
+    """Return the stress limits and their sources."""
+    limits = job.limits
+    return {
+        "compression_MPa": limits.compression / 1e6,
+        "tension_MPa": limits.tension / 1e6,
+        "compression_rule": limits.compression_text,
+        "tension_rule": limits.tension_text,
+        "warnings": list(limits.warnings),
+    }
+
 
 def number(value: float | None, scale: float = 1.0) -> float | None:
     """Return a number times `scale`, or None where it is absent or not finite."""
@@ -106,7 +120,7 @@ def _stage_document(plan: StagePlan) -> dict[str, object]:
 def blow_document(blow: Blow, traces: bool = False) -> dict[str, object]:
     """Return one blow; with `traces` also the envelope along the pile and the time histories."""
     document: dict[str, object] = {
-        "schema_version": 1,
+        "schema_version": SCHEMA_VERSION,
         "hammer": blow.hammer.name,
         "stage": blow.stage.name,
         "case": blow.stage.case or None,

@@ -11,7 +11,7 @@ from matchup.report.table import Column, Table, wrapped
 
 def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
     """Return one blow for a terminal: what it does to pile and ground, then how far to trust it."""
-    on = "" if blow.cushion is None else f" on {units.cushion(blow.cushion)} ({blow.wear})"
+    on = "" if blow.cushion is None else f" on {units.cushion_words(blow.cushion)} ({blow.wear})"
     enough = "reached" if blow.set >= blow.stage.set_needed else "not reached"
     head = (
         f"{blow.hammer.name}, stroke {units.text(blow.stroke, 'stroke')}{on}, "

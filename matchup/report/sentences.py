@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from matchup.model.cushion import Stack
 from matchup.model.job import Job
 from matchup.report.shown import Units
 from matchup.search.option import (
@@ -10,7 +11,9 @@ from matchup.search.option import (
     OVER_COMPRESSION,
     OVER_TENSION,
     PILE_RUNS,
+    REDUCED,
     REFUSES,
+    Cure,
     Option,
     Ranking,
     StagePlan,
@@ -27,58 +30,92 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
     options = ranking.options
     count = len(options) + len(ranking.rejected)
     if not options:
-        return f"None of the {count} hammers can drive this pile within the limits."
+        hammers = "the hammer" if count == 1 else f"none of the {count} hammers"
+        return f"{hammers} can drive this pile within the limits."
     best = options[0]
-    can = f"{len(options)} of {count} hammers" if len(options) > 1 else f"1 of {count} hammers"
-    cushion = "" if best.stack.pile is None else f" on {units.cushion(best.stack.pile)}"
+    objective = "fastest" if ranking.job.search.objective == "time" else "least energy"
     return (
-        f"{can} can drive this pile within the limits; least energy: {best.hammer.name} at "
-        f"{units.text(best.target.stroke, 'stroke')}{cushion}, "
-        f"{units.text(best.target.blow_energy, 'energy')} a blow."
+        f"{len(options)} of {count} hammers can drive this pile within the limits; {objective}: "
+        f"{best.hammer.name} at {units.text(best.target.stroke, 'stroke')}"
+        f"{on_stack(best.stack, units)}, {units.text(best.target.blow_energy, 'energy')} a blow."
     )
 
 
+def on_stack(stack: Stack, units: Units) -> str:
+    """Return cushions in words, to stand behind a stroke."""
+    words = "" if stack.pile is None else f" on {units.cushion_words(stack.pile)}"
+    return words + ("" if stack.hammer is None else f" under {stack.hammer.text}")
+
+
 def reason(option: Option, job: Job, units: Units) -> str:
-    """Return in one sentence what an option does, or why the hammer fails."""
+    """Return in one sentence what an option does, or why the hammer fails and what would help."""
     plan = option.failing or option.target
-    at = f"stage {plan.stage.name!r}"
+    at = f"at stage {plan.stage.name!r} " if len(job.stages) > 1 else ""
     stroke = units.text(plan.stroke, "stroke")
-    cushion = "" if option.stack.pile is None else f" on {units.cushion(option.stack.pile)}"
-    of_many = "" if option.stack.pile is None else ", the nearest of the cushions"
+    on = on_stack(option.stack, units)
     needed = units.text(plan.stage.set_needed, "set")
     if option.verdict == PILE_RUNS:
         resistance = units.text(plan.stage.resistance, "force")
         return (
-            f"at {at} pile, helmet and what stands on it weigh more than the {resistance} of "
+            f"{at}pile, helmet, ram and what stands on it weigh more than the {resistance} of "
             "resistance"
         )
     if option.verdict == NOT_ANALYSED:
-        return f"at {at}{cushion}: {plan.why}"
+        return f"{at}{plan.why}{on}"
     if option.verdict in (NOT_REACHED, REFUSES):
-        extra = _uses(plan, job, units) if max(plan.compression_use, plan.tension_use) > 1 else ""
-        return (
-            f"at {at} its full stroke of {stroke}{cushion}{of_many}, gives a set of "
-            f"{units.text(plan.set, 'set')} where {needed} is needed{extra}"
+        text = (
+            f"{at}full stroke of {stroke}{on} gives a set of {units.text(plan.set, 'set')} where "
+            f"{needed} is needed, with {_uses(plan)}"
         )
-    if option.verdict in (OVER_COMPRESSION, OVER_TENSION):
-        return (
-            f"at {at} the set of {needed} needs a stroke of {stroke}{cushion}{of_many}"
-            f"{_uses(plan, job, units)}"
+    elif option.verdict in (OVER_COMPRESSION, OVER_TENSION):
+        text = f"{at}a set of {needed} needs {stroke}{on}, with {_uses(plan)}"
+    else:
+        text = (
+            f"{at}a set of {units.text(plan.set, 'set')} ({needed} needed) at {stroke}{on}, with "
         )
+        text += _uses(plan) + _held_back(option, units)
+    return text + _cured(option.cure, option, units)
+
+
+def _uses(plan: StagePlan) -> str:
     return (
-        f"at {at} a set of {units.text(plan.set, 'set')} ({needed} needed) at {stroke}{cushion}"
-        f"{_uses(plan, job, units)}"
+        f"{100 * plan.compression_use:.0f}% of the compression limit and "
+        f"{100 * plan.tension_use:.0f}% of the tension limit"
     )
 
 
-def _uses(plan: StagePlan, job: Job, units: Units) -> str:
-    compression = units.text(plan.compression, "stress")
-    tension = units.text(plan.tension, "stress")
-    return (
-        f", with {compression} in compression ({100 * plan.compression_use:.0f}% of the limit of "
-        f"{units.text(job.limits.compression, 'stress')}) and {tension} in tension "
-        f"({100 * plan.tension_use:.0f}% of {units.text(job.limits.tension, 'stress')})"
-    )
+def _held_back(option: Option, units: Units) -> str:
+    """Return the stages whose stroke must stay below the target's, in words."""
+    if option.verdict != REDUCED:
+        return ""
+    held = [
+        f"{units.text(plan.top, 'stroke')} at {plan.stage.name!r}"
+        for plan in option.plans
+        if plan.top is not None and plan.top < option.target.stroke
+    ]
+    return f"; stroke at most {', '.join(held)}"
+
+
+def _cured(cure: Cure | None, option: Option, units: Units) -> str:
+    """Return what would help, in words."""
+    if cure is None:
+        return ""
+    words = []
+    if cure.stack is not None:
+        words.append(f"{units.cushion_words(cure.stack.pile)} would do")
+    elif cure.stack_looked:
+        words.append("no cushion up to twice the thickest allowed helps")
+    if cure.set_within is not None:
+        words.append(f"within the limits the set is {units.text(cure.set_within, 'set')}")
+    if cure.ram_mass is not None:
+        within = "" if cure.ram_within else ", though not within the stress limits"
+        words.append(
+            f"a ram of {units.text(cure.ram_mass, 'mass')} in place of "
+            f"{units.text(option.hammer.ram_mass, 'mass')} would reach it{within}"
+        )
+    elif option.verdict in (NOT_REACHED, REFUSES):
+        words.append("no ram up to eight times as heavy would reach it")
+    return "; " + "; ".join(words) if words else ""
 
 
 def basis(job: Job, units: Units) -> list[str]:
@@ -90,12 +127,7 @@ def basis(job: Job, units: Units) -> list[str]:
         f"({limits.tension_text})."
     ]
     lines += [f"Warning: {text}." for text in limits.warnings]
-    notes: dict[str, list[str]] = {}
-    for note in job.pile.notes:
-        notes.setdefault(note, [])
-    for stage in job.stages:
-        for note in stage.notes:
-            notes.setdefault(note, []).append(stage.name)
+    notes = dict.fromkeys([*job.pile.notes, *(note for s in job.stages for note in s.notes)])
     if notes:
         lines.append("Taken by default: " + "; ".join(notes) + ".")
     lines += [f"Notice: {text.rstrip('.')}." for text in job.notices]

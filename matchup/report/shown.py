@@ -67,8 +67,17 @@ class Units:
         """Return a column key with its unit: ``set_mm``."""
         return f"{name}_{self.unit(quantity)}".replace("/", "_per_").replace("-", "_")
 
+    def cushion_words(self, cushion: Cushion | None) -> str:
+        """Return a cushion as part of a sentence."""
+        if cushion is None:
+            return "no pile cushion"
+        if cushion.sheets:
+            plural = "" if cushion.sheets == 1 else "s"
+            return f"{cushion.sheets} sheet{plural} of {cushion.material.name}"
+        return f"{self.text(cushion.thickness, 'thickness')} of {cushion.material.name}"
+
     def cushion(self, cushion: Cushion | None) -> str:
-        """Return a cushion in words."""
+        """Return a cushion in a table."""
         if cushion is None:
             return "none"
         if cushion.sheets:

@@ -13,6 +13,8 @@ from dataclasses import dataclass
 
 import numpy as np
 import pytest
+from scipy.integrate import solve_ivp
+
 from matchup.analysis.blow import Strikes, strike
 from matchup.analysis.chain import build_chains
 from matchup.model.cushion import Spring
@@ -20,13 +22,13 @@ from matchup.model.hammer import Hammer
 from matchup.model.job import Analysis
 from matchup.model.pile import Pile, Section
 from matchup.model.stage import Stage
-from scipy.integrate import solve_ivp
 
 GRAVITY = 9.80665
-MASSES = 160
+MASSES = 640
 """Of the pile in the reference."""
 SEGMENTS = 480
-"""Of the pile in the solver; with 240 the figures move by less than 0.1 %."""
+"""Of the pile in the solver; from 240 on set, compression and energy move by less than 0.02 %, tension
+by less than 0.4 %."""
 
 
 @dataclass(frozen=True)
@@ -55,7 +57,7 @@ class Case:
 
 EASY = Case(
     20.0, 0.1225, 35e9, 2450.0, 5000.0, 4.0, Spring(2.5e9, 0.8), 800.0, Spring(2.5e8, 0.5),
-    12.0, 350e3, 250e3, 4e-3, 40e-3,
+    12.0, 350e3, 250e3, 4e-3, 60e-3,
 )  # fmt: skip
 HARD = Case(
     20.0, 0.1225, 35e9, 2450.0, 5000.0, 4.0, Spring(2.5e9, 0.8), 800.0, Spring(4e8, 0.5),
@@ -164,8 +166,6 @@ def reference(case: Case, masses: int = MASSES) -> Figures:
     assert run.success
     pile = run.y[4 : 4 + n]
     inner = stiffness * (pile[:-1] - pile[1:])
-    head = np.diff(run.y[-1]) / np.maximum(np.diff(pile[0]), 1e-12)
-    del head  # the head force is not needed: the first link is half a piece below
     return Figures(pile[-1].max(), inner.max(), -inner.min(), run.y[-1].max())
 
 
@@ -182,7 +182,14 @@ def solver(case: Case, segments: int = SEGMENTS) -> Figures:
     )
     stroke = case.velocity**2 / (2 * GRAVITY)
     hammer = Hammer(
-        "case", "drop", case.ram, 0.1, 5.0, 1.0, helmet_mass=case.helmet, cushion=case.hammer_cushion
+        "case",
+        "drop",
+        case.ram,
+        0.1,
+        5.0,
+        1.0,
+        helmet_mass=case.helmet,
+        cushion=case.hammer_cushion,
     )
     stage = Stage(
         "case",
@@ -214,8 +221,11 @@ def test_the_whole_chain_agrees_with_a_general_solver_of_differential_equations(
     case = CASES[name]
     ours, theirs = solver(case), reference(case)
     set_ours, set_theirs = ours.toe_most - case.toe_quake, theirs.toe_most - case.toe_quake
-    print(name, ours, theirs)
-    assert set_ours == pytest.approx(set_theirs, rel=5e-3, abs=0.01e-3)
-    assert ours.compression == pytest.approx(theirs.compression, rel=1e-2)
-    assert ours.tension == pytest.approx(theirs.tension, rel=2e-2, abs=1e-2 * theirs.compression)
-    assert ours.transferred == pytest.approx(theirs.transferred, rel=2e-3)
+    # Lumped masses smear and spread what waves carry unchanged, and the more so the steeper it is.
+    # From 160 to 320 to 640 masses the reference moved by 0.1 and 0.05 % in set, 0.1 and 0.02 % in
+    # compression, 0.05 and 0.03 % in energy, each time towards the solver; tension, which sits on
+    # the steepest fronts, by 2.1 and 1.7 % in the worst case ("viscous").
+    assert set_ours == pytest.approx(set_theirs, rel=1e-3)
+    assert ours.compression == pytest.approx(theirs.compression, rel=1.5e-3)
+    assert ours.tension == pytest.approx(theirs.tension, rel=1.5e-2)
+    assert ours.transferred == pytest.approx(theirs.transferred, rel=5e-4)

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+
 from matchup.wave.laws import cushion_force
 from tests.chains import Head, hit, soil, uniform_bar
 

@@ -12,11 +12,13 @@ and its step is the travel time of a segment by construction.
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 
 import numpy as np
 import pytest
 from scipy.integrate import solve_ivp
 from scipy.optimize import brentq
+
 from tests.chains import GLUED, Head, bare_head, cushioned_head, hit, soil, uniform_bar
 
 PRINTED = 0.5e-5
@@ -213,9 +215,9 @@ def test_ram_cushion_helmet_on_long_rod_agrees_with_the_table(case):
 # --- rigid mass on a bar with fixed far end -----------------------------------------------------
 
 # mu = striker over bar mass: largest stress at the fixed end, its time, largest stress at the
-# struck end, end of contact; stress in E v0/c, time in L/c. Saint-Venant's problem: S. P. Timoshenko
-# and J. N. Goodier, *Theory of Elasticity*, "Longitudinal impact of bars"; W. C. Young, *Roark's
-# Formulas*. Values by exact delay recursion, so exact.
+# struck end, end of contact; stress in E v0/c, time in L/c. Saint-Venant's problem: S. P.
+# Timoshenko and J. N. Goodier, *Theory of Elasticity*, "Longitudinal impact of bars"; W. C. Young,
+# *Roark's Formulas*. Values by exact delay recursion, so exact.
 FIXED_END_TABLE = {
     1: (2.2707, 3, 2.1353, 3.068),
     2: (2.7358, 3, 2.3679, 4.709),
@@ -251,7 +253,7 @@ def delay_recursion(mu: float):
 
     ends = None
     grid = np.arange(1e-6, 20, 0.01)
-    for a, b in zip(grid, grid[1:], strict=False):
+    for a, b in pairwise(grid):
         if struck(a) > 0 >= struck(b):
             ends = brentq(struck, a, b)
             break
@@ -290,13 +292,14 @@ def test_mass_on_a_bar_with_fixed_far_end_agrees_with_the_table(mu):
     outcome = hit(bar, bare_head(mu, 1.0, 1.0, stiff=1e5), fixed_toe(bar), steps=steps)
     down = 0.5 * (outcome.force + sent_speed(outcome))
     # Behind a front the force falls at 3/mu of itself per L/c at the most. The largest value is
-    # known to one and a half steps behind the front, and each of the (at + 1)/2 meetings of front and
-    # contact spring smears the front by ln(1e5)/1e5 mu (see `bare_head`): 0.35 % in all at mu = 1.
+    # known to one and a half steps behind the front, and each of the (at + 1)/2 meetings of front
+    # and contact spring smears it by ln(1e5)/1e5 mu (see `bare_head`): 0.35 % in all at mu = 1.
     smear = math.log(1e5) / 1e5 * mu
     tolerance = 3 / mu * (1.5 / segments + (at + 1) / 2 * smear)
     assert outcome.envelope[-1, 0] == pytest.approx(fixed, rel=tolerance)
     assert 2 * down.max() == pytest.approx(fixed, rel=tolerance)
-    assert (np.argmax(down) + 0.5) / segments + 1 == pytest.approx(at, abs=2 / segments + (at + 1) / 2 * smear)
+    late = 2 / segments + (at + 1) / 2 * smear
+    assert (np.argmax(down) + 0.5) / segments + 1 == pytest.approx(at, abs=late)
     assert outcome.row["force_most"] == pytest.approx(struck, rel=tolerance)
     # Below 1e-4 is the helmet alone, which the ram leaves behind. At mu = 4 the next front throws
     # the struck end back at the striker at once: the table's end of contact is the first one.

@@ -10,6 +10,7 @@ import math
 
 import numpy as np
 import pytest
+
 from tests.chains import Head, bare_head, cushioned_head, hit, soil, stepped_bar, uniform_bar
 
 # A light ram on soft cushions: ram and helmet have left after 0.37 L/c, before anything is back.
@@ -195,9 +196,7 @@ def test_the_head_record_gives_back_the_resistance_along_the_pile(toe):
     segments = 200
     bar = uniform_bar(segments)
     strengths = {80: 0.03, 120: 0.05, 160: 0.02, segments: 0.04}
-    grounds = soil(
-        bar.weight.size, shaft=strengths, quake=1e-9, toe=(toe / 1e-9, toe, 0.0)
-    )
+    grounds = soil(bar.weight.size, shaft=strengths, quake=1e-9, toe=(toe / 1e-9, toe, 0.0))
     # A heavy ram on a soft cushion pushes smoothly, and every node keeps moving down. The helmet is
     # lighter than in `cushioned_head`: its inertia would show in the head force.
     outcome = hit(bar, Head(20.0, 1.0, 2.0, 2e-7, 5e4), grounds, steps=4 * segments)

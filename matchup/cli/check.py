@@ -1,0 +1,24 @@
+"""``matchup check``."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Annotated
+
+from cyclopts import Parameter
+
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, show_result
+
+
+def check(
+    job: Annotated[Path, Parameter(help="Job file.")],
+    *,
+    hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
+    common: Common = Common(),  # noqa: B008 - frozen
+) -> int:
+    """Answer whether a hammer can drive the pile, and if not, why."""
+    from matchup import api
+
+    result = api.check(job, hammer, workers=common.workers)
+    show_result(result, common)
+    return 0 if result.can else THE_ANSWER_IS_NO

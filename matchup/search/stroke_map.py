@@ -1,0 +1,109 @@
+"""The map of one hammer: stroke against cushion, where it works and what stops it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from matchup.analysis.rig import Rig
+from matchup.analysis.window import Cells, WindowFinder, job_demands
+from matchup.model.cushion import Stack
+from matchup.model.hammer import Hammer
+from matchup.model.job import Job
+from matchup.model.stage import Stage
+from matchup.wave.layout import Floats
+
+MOST_STROKES = 24
+"""Strokes shown at most."""
+
+OPEN_CELL = "open"
+SHORT = "set not reached"
+SQUEEZED = "compression"
+PULLED = "tension"
+RUNNING = "pile runs"
+UNTRUSTED = "could not be analysed"
+
+
+@dataclass(frozen=True, slots=True)
+class StrokeMap:
+    """Stroke against cushion for one hammer and stage.
+
+    Parameters
+    ----------
+    job : Job
+    hammer : Hammer
+    stage : Stage
+    stacks : tuple of Stack
+    strokes : (strokes,) float64 array
+        [m]
+    states : tuple of tuple of str
+        By stack and stroke: ``open``, or what closes it.
+    sets : (stacks, strokes) float64 array
+        Least over the wear states. [m]
+    compression_uses, tension_uses : (stacks, strokes) float64 array
+        Largest over the wear states and the stroke tolerance, as fractions of the limits. [-]
+    analyses : int
+    """
+
+    job: Job
+    hammer: Hammer
+    stage: Stage
+    stacks: tuple[Stack, ...]
+    strokes: Floats
+    states: tuple[tuple[str, ...], ...]
+    sets: Floats
+    compression_uses: Floats
+    tension_uses: Floats
+    analyses: int
+
+    @property
+    def is_open(self) -> bool:
+        """Whether any cell is open."""
+        return any(state == OPEN_CELL for row in self.states for state in row)
+
+
+def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = None) -> StrokeMap:
+    """Map one hammer at one stage.
+
+    Settings are shown whole where they are few; of many, evenly spaced ones.
+    """
+    rig = Rig(replace(job, hammers=(hammer,), stages=(stage,)), workers)
+    demands = job_demands(rig)
+    finder = WindowFinder(rig, demands)
+    settings = finder.strokes[0]
+    picked = np.unique(
+        np.rint(np.linspace(0, settings.size - 1, min(MOST_STROKES, settings.size))).astype(int)
+    )
+    shape = (len(rig.stacks), picked.size)
+    blank = np.full(shape, np.nan)
+    if rig.runs(0, 0):
+        states = ((RUNNING,) * shape[1],) * shape[0]
+        strokes = settings[picked]
+        return StrokeMap(
+            job, hammer, stage, rig.stacks, strokes, states, blank, blank, blank, rig.spent
+        )
+    stack = np.repeat(np.arange(shape[0]), shape[1])
+    at = np.tile(picked, shape[0])
+    place = np.zeros(stack.size, np.int64)
+    cells = Cells(place, place, stack)
+    sets, sound = finder.sets(cells, at)
+    compression, tension, sound_too = finder.stresses(cells, at)
+    use_c, use_t = compression / demands.compression, tension / demands.tension
+    state = np.full(stack.size, OPEN_CELL, dtype=object)
+    state[sets < demands.set_needed[0]] = SHORT
+    state[(use_c > 1) | (use_t > 1)] = PULLED
+    state[(use_c > 1) & (use_c >= use_t)] = SQUEEZED
+    state[~(sound & sound_too)] = UNTRUSTED
+    return StrokeMap(
+        job=job,
+        hammer=hammer,
+        stage=stage,
+        stacks=rig.stacks,
+        strokes=settings[picked],
+        states=tuple(tuple(str(s) for s in row) for row in state.reshape(shape)),
+        sets=sets.reshape(shape),
+        compression_uses=(compression / job.limits.compression).reshape(shape),
+        tension_uses=(tension / job.limits.tension).reshape(shape),
+        analyses=rig.spent,
+    )
