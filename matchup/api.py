@@ -11,6 +11,7 @@ import os
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
+from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
 from matchup.errors import InputError, Problem
 from matchup.inputs import load_job
@@ -237,7 +238,12 @@ class BlowResult:
         return self.to_text()
 
 
-def rank(job: JobLike, workers: int | None = None, seed: int | None = None) -> RankingResult:
+def rank(
+    job: JobLike,
+    workers: int | None = None,
+    seed: int | None = None,
+    tell: Tell | None = None,
+) -> RankingResult:
     """Rank all hammers of a job.
 
     Parameters
@@ -247,6 +253,8 @@ def rank(job: JobLike, workers: int | None = None, seed: int | None = None) -> R
         Threads; None takes as many as there are processors. The answer does not depend on it.
     seed : int or None
         Replaces the job's.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
 
     Raises
     ------
@@ -256,10 +264,15 @@ def rank(job: JobLike, workers: int | None = None, seed: int | None = None) -> R
     job = _job(job)
     if seed is not None:
         job = replace(job, search=replace(job.search, seed=seed))
-    return RankingResult(rank_hammers(job, workers))
+    return RankingResult(rank_hammers(job, workers, tell))
 
 
-def check(job: JobLike, hammer: str | None = None, workers: int | None = None) -> CheckResult:
+def check(
+    job: JobLike,
+    hammer: str | None = None,
+    workers: int | None = None,
+    tell: Tell | None = None,
+) -> CheckResult:
     """Answer whether one hammer can drive the pile, and if not, what stops it.
 
     Parameters
@@ -269,6 +282,8 @@ def check(job: JobLike, hammer: str | None = None, workers: int | None = None) -
         Name; may be left out where the job has one hammer.
     workers : int or None
         Threads; None takes as many as there are processors.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
 
     Raises
     ------
@@ -277,7 +292,7 @@ def check(job: JobLike, hammer: str | None = None, workers: int | None = None) -
     """
     job = _job(job)
     alone = replace(job, hammers=(_hammer(job, hammer),))
-    return CheckResult(rank_hammers(alone, workers))
+    return CheckResult(rank_hammers(alone, workers, tell))
 
 
 def window(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import NamedTuple
 
 import numpy as np
@@ -11,6 +12,9 @@ from matchup.analysis.chain import build_chains, enough_segments, pile_contact
 from matchup.model.cushion import WEAR_STATES, Cushion, Spring, Stack
 from matchup.model.job import Job
 from matchup.wave.layout import Flags, Floats, Integers
+
+Tell = Callable[[int], None]
+"""Takes the number of blows about to be computed, for showing progress."""
 
 
 class Answers(NamedTuple):
@@ -42,6 +46,8 @@ class Rig:
     job : Job
     workers : int or None
         Threads; None takes as many as there are processors.
+    tell : callable or None
+        Called with the number of blows of every batch, before it is computed.
 
     Attributes
     ----------
@@ -55,9 +61,10 @@ class Rig:
         Blows computed so far.
     """
 
-    def __init__(self, job: Job, workers: int | None = None):
+    def __init__(self, job: Job, workers: int | None = None, tell: Tell | None = None):
         self.job = job
         self.workers = workers
+        self.tell = tell
         space = job.cushions
         piles: list[Cushion | None] = list(space.cushions()) if space else [None]
         self.stacks = tuple(Stack(p, h) for h in (job.hammer_cushions or (None,)) for p in piles)
@@ -131,6 +138,8 @@ class Rig:
     def _compute(
         self, stage: Integers, hammer: Integers, cushion: Integers, wear: Integers, stroke: Floats
     ) -> None:
+        if self.tell:
+            self.tell(stroke.size)
         struck = strike(
             self.chains,
             Strikes(

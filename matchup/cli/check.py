@@ -7,7 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
 
 
 def check(
@@ -19,6 +19,7 @@ def check(
     """Answer whether a hammer can drive the pile, and if not, why."""
     from matchup import api
 
-    result = api.check(job, hammer, workers=common.workers)
+    with Progress(common) as tell:
+        result = api.check(job, hammer, workers=common.workers, tell=tell)
     show_result(result, common)
     return 0 if result.can else THE_ANSWER_IS_NO

@@ -7,7 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
 
 
 def rank(
@@ -19,6 +19,7 @@ def rank(
     """Rank every hammer of the job's catalogue."""
     from matchup import api
 
-    result = api.rank(job, workers=common.workers, seed=seed)
+    with Progress(common) as tell:
+        result = api.rank(job, workers=common.workers, seed=seed, tell=tell)
     show_result(result, common)
     return 0 if result.options else THE_ANSWER_IS_NO

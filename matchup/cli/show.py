@@ -5,16 +5,21 @@ from __future__ import annotations
 import json
 import shutil
 import sys
+import time
 from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Annotated, Literal, Protocol
+from typing import TYPE_CHECKING, Annotated, Literal, Protocol
 
 from cyclopts import Parameter
 
 from matchup.errors import InputError, Problem
 
+if TYPE_CHECKING:
+    from rich.status import Status
+
 WIDEST = 100
+QUIET_SECONDS = 1.0
 THE_ANSWER_IS_NO = 3
 """Exit status of a command that ran, and whose answer is no."""
 
@@ -84,6 +89,39 @@ def tell(common: Common, text: str) -> None:
     """Print a message on stderr unless the user wants none."""
     if not common.quiet:
         print(text, file=sys.stderr)
+
+
+class Progress:
+    """Says on stderr what a long run is at; silent in a file, with ``--quiet``, and for a second.
+
+    The first run on a machine compiles the solver, which takes some seconds before the first blow.
+    """
+
+    def __init__(self, common: Common):
+        self._shows = sys.stderr.isatty() and not common.quiet
+        self._started = time.monotonic()
+        self._blows = 0
+        self._status: Status | None = None
+
+    def __enter__(self) -> Progress:
+        return self
+
+    def __call__(self, blows: int) -> None:
+        """Count a batch of blows."""
+        self._blows += blows
+        if not self._shows or time.monotonic() - self._started < QUIET_SECONDS:
+            return
+        if self._status is None:
+            from rich.console import Console
+
+            self._status = Console(stderr=True).status("")
+            self._status.start()
+        seconds = time.monotonic() - self._started
+        self._status.update(f"{self._blows:,} blows in {seconds:.0f} s")
+
+    def __exit__(self, *_: object) -> None:
+        if self._status is not None:
+            self._status.stop()
 
 
 def write_file(path: Path, text: str) -> None:

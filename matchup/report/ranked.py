@@ -136,7 +136,7 @@ def ranking_text(ranking: Ranking, units: Units, width: int = 100) -> str:
     if ranking.rejected:
         lines = ["Hammers that can't, nearest miss first:"]
         for option in ranking.rejected:
-            text = f"{option.hammer.name} {option.verdict}: {reason(option, job, units)}."
+            text = f"{option.hammer.name}: {option.verdict}; {reason(option, job, units)}."
             lines.append(wrapped(f"  {text}", width, "    "))
         parts.append("\n".join(lines))
     parts.append(foot(ranking, units, width))
@@ -171,7 +171,7 @@ def check_text(ranking: Ranking, units: Units, width: int = 100) -> str:
     job = ranking.job
     option = (*ranking.options, *ranking.rejected)[0]
     can = "Yes" if option.drives else "No"
-    head = f"{can}: {option.hammer.name} {option.verdict}: {reason(option, job, units)}."
+    head = f"{can}: {option.hammer.name} {option.verdict}; {reason(option, job, units)}."
     parts = [wrapped(head, width), margins_table(option, ranking, units).to_text(width)]
     if len(job.stages) > 1 and option.drives:
         parts.append(schedule_table((option,), units).to_text(width))

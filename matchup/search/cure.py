@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from matchup.analysis.rig import Rig
+from matchup.analysis.rig import Rig, Tell
 from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
 from matchup.model.cushion import CushionSpace
 from matchup.model.job import Job
@@ -31,7 +31,7 @@ MASS_FINENESS = 1.05
 
 
 def find_cures(
-    job: Job, options: Sequence[Option], workers: int | None = None
+    job: Job, options: Sequence[Option], workers: int | None = None, tell: Tell | None = None
 ) -> tuple[list[Option], int]:
     """Give each failing option its cure.
 
@@ -47,14 +47,14 @@ def find_cures(
     spent = 0
     for find, failing in ((_thicker, stressed), (_heavier, weak)):
         if failing:
-            found, blows = find(job, failing, workers)
+            found, blows = find(job, failing, workers, tell)
             cures |= found
             spent += blows
     return [replace(o, cure=cures.get(o.hammer.name)) for o in options], spent
 
 
 def _thicker(
-    job: Job, failing: Sequence[Option], workers: int | None
+    job: Job, failing: Sequence[Option], workers: int | None, tell: Tell | None
 ) -> tuple[dict[str, Cure], int]:
     """Look for thicker cushions than allowed, and for the set that the limits leave room for."""
     space = job.cushions
@@ -63,7 +63,9 @@ def _thicker(
     spent = 0
     better: dict[str, Cure] = {}
     if space is not None:
-        planner = Planner(Rig(replace(job, hammers=hammers, cushions=_beyond(space)), workers))
+        planner = Planner(
+            Rig(replace(job, hammers=hammers, cushions=_beyond(space)), workers, tell)
+        )
         places = range(len(planner.rig.stacks))
         planner.look([(row, c) for row in range(len(failing)) for c in places])
         for row, option in enumerate(failing):
@@ -75,7 +77,7 @@ def _thicker(
             stack = min(works, key=lambda s: s.pile.thickness if s.pile else 0.0, default=None)
             better[option.hammer.name] = Cure(stack=stack, stack_looked=True)
         spent += planner.rig.spent
-    rig = Rig(replace(job, hammers=hammers), workers)
+    rig = Rig(replace(job, hammers=hammers), workers, tell)
     finder = WindowFinder(rig, job_demands(rig))
     for row, option in enumerate(failing):
         cure = better.get(option.hammer.name, Cure())
@@ -109,7 +111,7 @@ def _set_within(finder: WindowFinder, row: int, option: Option) -> float | None:
 
 
 def _heavier(
-    job: Job, failing: Sequence[Option], workers: int | None
+    job: Job, failing: Sequence[Option], workers: int | None, tell: Tell | None
 ) -> tuple[dict[str, Cure], int]:
     """Look for the least ram mass that reaches the set at the same largest stroke and cushions."""
     count = int(np.ceil(np.log(HEAVIER) / np.log(MASS_FINENESS)))
@@ -119,7 +121,9 @@ def _heavier(
     spent = 0
     while (rows := np.flatnonzero(high - low > 1)).size:
         middle = (low[rows] + high[rows]) // 2
-        finder, cells = _with_rams(job, [failing[int(r)] for r in rows], factors[middle], workers)
+        finder, cells = _with_rams(
+            job, [failing[int(r)] for r in rows], factors[middle], workers, tell
+        )
         enough = _reaches(finder, cells)
         spent += finder.rig.spent
         high[rows[enough]] = middle[enough]
@@ -140,7 +144,11 @@ def _heavier(
 
 
 def _with_rams(
-    job: Job, options: Sequence[Option], factors: Floats, workers: int | None
+    job: Job,
+    options: Sequence[Option],
+    factors: Floats,
+    workers: int | None,
+    tell: Tell | None,
 ) -> tuple[WindowFinder, Cells]:
     """Return a finder for the options' hammers with heavier rams, and their failing cells."""
     hammers = []
@@ -149,7 +157,7 @@ def _with_rams(
         mass = hammer.ram_mass * float(factor)
         whole = hammer.hammer_mass + mass - hammer.ram_mass if hammer.hammer_mass else None
         hammers.append(replace(hammer, ram_mass=mass, hammer_mass=whole))
-    rig = Rig(replace(job, hammers=tuple(hammers)), workers)
+    rig = Rig(replace(job, hammers=tuple(hammers)), workers, tell)
     finder = WindowFinder(rig, job_demands(rig))
     stages = [job.stages.index(o.failing.stage) for o in options if o.failing is not None]
     stacks = [rig.stacks.index(option.stack) for option in options]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import time
 
-from matchup.analysis.rig import Rig
+from matchup.analysis.rig import Rig, Tell
 from matchup.model.job import Job
 from matchup.search.cure import find_cures
 from matchup.search.option import Option, Ranking
@@ -12,7 +12,7 @@ from matchup.search.plan import Planner, plan_cost
 from matchup.search.reach import find_reach
 
 
-def rank_hammers(job: Job, workers: int | None = None) -> Ranking:
+def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None) -> Ranking:
     """Return the ranking of a job's hammers.
 
     Parameters
@@ -20,12 +20,14 @@ def rank_hammers(job: Job, workers: int | None = None) -> Ranking:
     job : Job
     workers : int or None
         Threads; None takes as many as there are processors. The answer does not depend on it.
+    tell : callable or None
+        Called with the number of blows of every batch.
     """
     started = time.perf_counter()
-    rig = Rig(job, workers)
+    rig = Rig(job, workers, tell)
     options = Planner(rig).options()
-    options, blows_for_reach = find_reach(job, options, workers)
-    options, blows_for_cures = find_cures(job, options, workers)
+    options, blows_for_reach = find_reach(job, options, workers, tell)
+    options, blows_for_cures = find_cures(job, options, workers, tell)
     driving = [option for option in options if option.drives]
     failing = [option for option in options if not option.drives]
     return Ranking(

@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from matchup.analysis.rig import Rig
+from matchup.analysis.rig import Rig, Tell
 from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
 from matchup.model.job import Job
 from matchup.model.stage import Stage
@@ -28,7 +28,7 @@ def scaled(stage: Stage, ratio: float) -> Stage:
 
 
 def find_reach(
-    job: Job, options: Sequence[Option], workers: int | None = None
+    job: Job, options: Sequence[Option], workers: int | None = None, tell: Tell | None = None
 ) -> tuple[list[Option], int]:
     """Give each option the largest resistance that it overcomes within the limits.
 
@@ -50,7 +50,7 @@ def find_reach(
     ratios = FINENESS ** np.arange(below, above + 1)
     stages = tuple(scaled(job.stages[-1], float(ratio)) for ratio in ratios)
     hammers = tuple(option.hammer for option in whole)
-    rig = Rig(replace(job, stages=stages, hammers=hammers), workers)
+    rig = Rig(replace(job, stages=stages, hammers=hammers), workers, tell)
     finder = WindowFinder(rig, job_demands(rig))
     stack = np.array([rig.stacks.index(option.stack) for option in whole])
 
