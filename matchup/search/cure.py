@@ -131,9 +131,8 @@ def _heavier(
     cures = {option.hammer.name: Cure() for option in failing}
     found = np.flatnonzero(high <= count)
     if found.size:
-        finder, cells = _with_rams(
-            job, [failing[int(r)] for r in found], factors[high[found]], workers
-        )
+        some = [failing[int(r)] for r in found]
+        finder, cells = _with_rams(job, some, factors[high[found]], workers, tell)
         fits = finder.find(cells).state == OPEN
         spent += finder.rig.spent
         for row, within in zip(found, fits, strict=True):
