@@ -47,8 +47,9 @@ QUIET_ENERGY = 0.01
 extreme has grown since the last check, at `SETTLED_CHECKS` checks in a row."""
 SETTLED_CHECKS = 2
 RINGING_CHECKS = 6
-"""It may also end when the ram has left and no extreme has grown at so many checks in a row: a blow
-that moves no soil for good rings on for long without reaching its extremes again."""
+"""It may also end when ram and helmet have come to rest or left, and no extreme has grown at so many
+checks in a row: waves run up and down a pile in weak soil for long without reaching their extremes
+again."""
 SLIGHT_TENSION = 0.02
 """Tension below this share of the largest compression is too slight to keep a blow going."""
 
@@ -111,25 +112,27 @@ def judge(bar: Bar, head: Floats, state: Floats, lane: int, calm: Integers) -> b
 
     least_counted = min(least_all, -SLIGHT_TENSION * peak_all)
     grown = peak > peak_all or toe > toe_all or least < least_counted
-    settled = _energy_left(bar, head, state, lane) < QUIET_ENERGY * 0.5 * head[0] * head[1] ** 2
-    calm[0] = calm[0] + 1 if settled and not grown else 0
-    calm[1] = calm[1] + 1 if state[RAM_V + lane] <= 0.0 and not grown else 0
+    little = QUIET_ENERGY * 0.5 * head[0] * head[1] ** 2
+    hammer, pile = _energy_left(bar, head, state, lane)
+    calm[0] = calm[0] + 1 if hammer + pile < little and not grown else 0
+    calm[1] = calm[1] + 1 if hammer < little and not grown else 0
     return bool(calm[0] >= SETTLED_CHECKS or calm[1] >= RINGING_CHECKS)
 
 
 @compiled
-def _energy_left(bar: Bar, head: Floats, state: Floats, lane: int) -> float:
-    """Return the kinetic energy [J] left in pile, helmet and ram, rebound left out."""
-    energy = 0.0
+def _energy_left(bar: Bar, head: Floats, state: Floats, lane: int) -> tuple[float, float]:
+    """Return the kinetic energy [J] left in ram and helmet, rebound left out, and in the pile."""
+    hammer = 0.0
+    pile = 0.0
     if state[FORCE_2 + lane] > 0.0 or state[HELMET_V + lane] > 0.0:
-        energy += 0.5 * head[4] * state[HELMET_V + lane] ** 2
+        hammer += 0.5 * head[4] * state[HELMET_V + lane] ** 2
     if state[FORCE_1 + lane] > 0.0 or state[RAM_V + lane] > 0.0:
-        energy += 0.5 * head[0] * state[RAM_V + lane] ** 2
+        hammer += 0.5 * head[0] * state[RAM_V + lane] ** 2
     for i in range(bar.weight.size - 1):
         at = HEAD_BLOCK + i * BLOCK + lane
         net = state[at + BLOCK + DOWN] - state[at + UP]
-        energy += 0.5 * bar.step * net * net / bar.impedance[i]
-    return energy
+        pile += 0.5 * bar.step * net * net / bar.impedance[i]
+    return hammer, pile
 
 
 @compiled
