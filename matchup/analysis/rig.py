@@ -71,7 +71,7 @@ class Rig:
         self.sizes = len(space.sheets or space.thicknesses) if space else 1
         self.kinds = len(self.stacks) // self.sizes
         self.wears = space.wears if space else WEAR_STATES[:1]
-        self.segments = enough_segments(job.pile, space is not None)
+        self.segments = enough_segments(job.pile, space is not None, job.stages)
         self.chains = build_chains(job.pile, job.stages, job.hammers, job.analysis, self.segments)
         springs = [self.spring(stack.pile, wear) for stack in self.stacks for wear in self.wears]
         shape = (len(self.stacks), len(self.wears))

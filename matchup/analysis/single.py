@@ -128,7 +128,7 @@ def compute_blow(
         If the pile runs under its weight, or the blow did not end, diverged or failed its energy
         audit.
     """
-    segments = enough_segments(job.pile, cushion is not None)
+    segments = enough_segments(job.pile, job.cushions is not None, job.stages)
     chains = build_chains(job.pile, [stage], [hammer], job.analysis, segments)
     what = f"{hammer.name} at stage {stage.name!r}, stroke {stroke:.3g} m"
     if chains.ground_of[0, 0] < 0:

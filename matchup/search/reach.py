@@ -11,13 +11,15 @@ from matchup.analysis.rig import Rig, Tell
 from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
 from matchup.model.job import Job
 from matchup.model.stage import Stage
-from matchup.search.option import NOT_ANALYSED, PILE_RUNS, Option
+from matchup.search.option import DRIVES, NOT_ANALYSED, PILE_RUNS, Option
 from matchup.wave.layout import Flags, Integers
 
 FINENESS = 1.02
 """Resistances looked at lie so far apart, as a ratio. [-]"""
 LOWEST, HIGHEST = 0.2, 4.0
 """Ratios to the stage's resistance between which the reach is looked for. [-]"""
+STRIDE = 4
+"""Where the target stage fails, lower resistances are tried first so many steps apart."""
 
 
 def scaled(stage: Stage, ratio: float) -> Stage:
@@ -32,9 +34,11 @@ def find_reach(
 ) -> tuple[list[Option], int]:
     """Give each option the largest resistance that it overcomes within the limits.
 
-    The target stage's resistance, shaft and toe alike, is scaled in steps of 2 %; the largest step
-    with an open window is found by bisection, for all hammers at once, each with its own cushions.
-    Where a hammer fails, the ratio lies below 1.
+    The target stage's resistance, shaft and toe alike, is scaled in steps of 2 %, for all hammers
+    at once, each with its own cushions. Where the target stage works, the step at which its window
+    closes is found by bisection upwards. Where it fails, less resistance need not open it at once
+    (in easy driving tension grows, and a pile may run), so strides are taken down to the first
+    that opens it, and the step is found within the last stride.
 
     Returns
     -------
@@ -58,10 +62,17 @@ def find_reach(
         return np.asarray(finder.find(Cells(at, rows, stack[rows])).state == OPEN)
 
     # Resistance number -1 stands for less than the lowest; the one past the end for more.
-    low = np.full(len(whole), -1)
+    low = np.full(len(whole), -below)
     high = np.full(len(whole), ratios.size)
-    for row, option in enumerate(whole):
-        (low if option.drives else high)[row] = -below
+    failing = np.array([option.target.verdict != DRIVES for option in whole])
+    high[failing] = low[failing]
+    while (rows := np.flatnonzero(failing)).size:
+        low[rows] = np.maximum(high[rows] - STRIDE, -1)
+        some = rows[low[rows] >= 0]
+        opened = np.ones(len(whole), bool)
+        opened[some] = is_open(low[some], some) if some.size else False
+        failing &= ~opened
+        high[failing] = low[failing]
     while (rows := np.flatnonzero(high - low > 1)).size:
         middle = (low[rows] + high[rows]) // 2
         fits = is_open(middle, rows)

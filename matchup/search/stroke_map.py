@@ -7,12 +7,12 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from matchup.analysis.rig import Rig
-from matchup.analysis.window import Cells, WindowFinder, job_demands
+from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
 from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
-from matchup.wave.layout import Floats
+from matchup.wave.layout import Floats, Integers
 
 MOST_STROKES = 24
 """Strokes shown at most."""
@@ -66,7 +66,8 @@ class StrokeMap:
 def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = None) -> StrokeMap:
     """Map one hammer at one stage.
 
-    Settings are shown whole where they are few; of many, evenly spaced ones.
+    Settings are shown whole where they are few; of many, evenly spaced ones, and those at which
+    a window opens that would else lie between them.
     """
     rig = Rig(replace(job, hammers=(hammer,), stages=(stage,)), workers)
     demands = job_demands(rig)
@@ -75,14 +76,16 @@ def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = No
     picked = np.unique(
         np.rint(np.linspace(0, settings.size - 1, min(MOST_STROKES, settings.size))).astype(int)
     )
-    shape = (len(rig.stacks), picked.size)
-    blank = np.full(shape, np.nan)
     if rig.runs(0, 0):
+        shape = (len(rig.stacks), picked.size)
+        blank = np.full(shape, np.nan)
         states = ((RUNNING,) * shape[1],) * shape[0]
         strokes = settings[picked]
         return StrokeMap(
             job, hammer, stage, rig.stacks, strokes, states, blank, blank, blank, rig.spent
         )
+    picked = np.union1d(picked, _hidden_windows(finder, picked))
+    shape = (len(rig.stacks), picked.size)
     stack = np.repeat(np.arange(shape[0]), shape[1])
     at = np.tile(picked, shape[0])
     place = np.zeros(stack.size, np.int64)
@@ -107,3 +110,18 @@ def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = No
         tension_uses=(tension / job.limits.tension).reshape(shape),
         analyses=rig.spent,
     )
+
+
+def _hidden_windows(finder: WindowFinder, picked: Integers) -> Integers:
+    """Return the lowest settings of windows that lie wholly between the picked ones."""
+    stacks = np.arange(len(finder.rig.stacks))
+    place = np.zeros(stacks.size, np.int64)
+    windows = finder.find(Cells(place, place, stacks))
+    opened = np.flatnonzero(windows.state == OPEN)
+    if not opened.size:
+        return np.empty(0, np.int64)
+    cells = Cells(place[opened], place[opened], stacks[opened])
+    first = finder.setting_numbers(cells.hammer, windows.low[opened])
+    last = finder.setting_numbers(cells.hammer, finder.tops(cells, windows.low[opened]))
+    after = np.searchsorted(picked, first)
+    return np.unique(first[(after == picked.size) | (picked[after % picked.size] > last)])

@@ -73,7 +73,9 @@ def rest(
             diagonal[i] = slope
             unbalanced[i] = out
             worst = max(worst, abs(out))
-        if worst < 1e-10 * scale:
+        # Forces are differences of displacements times stiffness, so rounding sets a floor.
+        rounding = 1e-14 * stiffness.max() * np.abs(settlement).max()
+        if worst < 1e-10 * scale + rounding:
             return settlement, True
         # Thomas algorithm; the off-diagonals are minus the segment stiffnesses.
         for i in range(1, nodes):
