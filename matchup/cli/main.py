@@ -32,6 +32,10 @@ app.command("matchup.cli.rank:rank", help="Rank every hammer of the job's catalo
 app.command("matchup.cli.check:check", help="Can this hammer drive this pile, and if not, why?")
 app.command("matchup.cli.window:window", help="Stroke against cushion: where it works.")
 app.command("matchup.cli.blow:blow", help="Compute one blow in detail.")
+app.command("matchup.cli.new:new", help="Write a starter job with catalogues.")
+app.command("matchup.cli.lint:lint", help="Check job files and catalogues.")
+app.command("matchup.cli.schema:schema", help="JSON Schema of the job file, for editors.")
+app.command("matchup.cli.completion:completion", help="Completion script for a shell.")
 
 
 def main(arguments: Sequence[str] | None = None) -> int:

@@ -124,8 +124,13 @@ class Progress:
             self._status.stop()
 
 
-def write_file(path: Path, text: str) -> None:
+def write_file(path: Path, text: str, place: str = "--csv") -> None:
     """Write a text file whole or not at all.
+
+    Parameters
+    ----------
+    place : str
+        The option that named the file, for the message.
 
     Raises
     ------
@@ -139,7 +144,7 @@ def write_file(path: Path, text: str) -> None:
     except OSError as error:
         part.unlink(missing_ok=True)
         why = error.strerror or str(error)
-        problem = Problem(str(path), None, "--csv", "must be a file that can be written", why)
+        problem = Problem(str(path), None, place, "must be a file that can be written", why)
         raise InputError([problem]) from None
     except BaseException:
         part.unlink(missing_ok=True)

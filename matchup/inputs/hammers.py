@@ -49,7 +49,7 @@ LATER_KINDS = ("double-acting", "diesel")
 
 
 def read_hammers(
-    path: Path, materials: Sequence[CushionMaterial], findings: Findings
+    path: Path, materials: Sequence[CushionMaterial] | None, findings: Findings
 ) -> tuple[Hammer, ...]:
     """Return the hammers of a catalogue that can be used; problems go to `findings`.
 
@@ -59,8 +59,8 @@ def read_hammers(
     Parameters
     ----------
     path : Path
-    materials : sequence of CushionMaterial
-        The cushion catalogue, for hammer cushions given by name.
+    materials : sequence of CushionMaterial or None
+        The cushion catalogue, for hammer cushions given by name; None leaves the names unchecked.
     """
     table = read_table(path, findings)
     if table is None:
@@ -88,7 +88,7 @@ def read_hammers(
 
 
 def _hammer(
-    table: RawTable, record: Record, materials: Sequence[CushionMaterial], findings: Findings
+    table: RawTable, record: Record, materials: Sequence[CushionMaterial] | None, findings: Findings
 ) -> Hammer | None:
     cushion, text = _cushion(table, record, materials, findings)
     required = {spec.name for spec in COLUMNS if spec.required}
@@ -124,7 +124,7 @@ def _hammer(
 
 
 def _cushion(
-    table: RawTable, record: Record, materials: Sequence[CushionMaterial], findings: Findings
+    table: RawTable, record: Record, materials: Sequence[CushionMaterial] | None, findings: Findings
 ) -> tuple[Spring | None, str]:
     """Return a row's hammer cushion and its description."""
     by_name = ("hammer_cushion", "hammer_cushion_thickness", "hammer_cushion_area")
@@ -170,9 +170,11 @@ def _spring(record: Record, wrong: _Wrong) -> tuple[Spring | None, str]:
 
 
 def _from_catalogue(
-    record: Record, materials: Sequence[CushionMaterial], wrong: _Wrong
+    record: Record, materials: Sequence[CushionMaterial] | None, wrong: _Wrong
 ) -> tuple[Spring | None, str]:
     called = record.text("hammer_cushion")
+    if materials is None:
+        return None, called
     found = [m for m in materials if m.name.casefold() == called.casefold()]
     if not found:
         names = [material.name for material in materials]

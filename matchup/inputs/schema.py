@@ -178,3 +178,12 @@ class JobKeys(Keys):
     limits: LimitsKeys
     search: SearchKeys = SearchKeys()
     analysis: AnalysisKeys = AnalysisKeys()
+
+
+def job_schema() -> dict[str, Any]:
+    """Return the JSON Schema of the job file."""
+    return {
+        "$schema": "https://json-schema.org/draft/2020-12/schema",
+        **JobKeys.model_json_schema(),
+        "title": "matchup job file",
+    }

@@ -47,9 +47,9 @@ QUIET_ENERGY = 0.01
 extreme has grown since the last check, at `SETTLED_CHECKS` checks in a row."""
 SETTLED_CHECKS = 2
 RINGING_CHECKS = 6
-"""It may also end when ram and helmet have come to rest or left, and no extreme has grown at so many
-checks in a row: waves run up and down a pile in weak soil for long without reaching their extremes
-again."""
+"""It may also end when ram and helmet have come to rest or left, and no extreme has grown at so
+many checks in a row: waves run up and down a pile in weak soil for long without reaching their
+extremes again."""
 SLIGHT_TENSION = 0.02
 """Tension below this share of the largest compression is too slight to keep a blow going."""
 
