@@ -181,7 +181,7 @@ def stress_limits(
             made.append(Limit(fraction * pile.strength + prestress, text))
         elif ruled is not None:
             made.append(ruled)
-        elif not rules.faults:
+        elif rule is None or pile.material in RULES.get(rule, {}):
             rules.must(
                 False,
                 side,

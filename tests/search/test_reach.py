@@ -33,7 +33,7 @@ def is_open(job: Job, hammer: Hammer, stack: Stack, ratio: float) -> bool:
     return bool(WindowFinder(rig, job_demands(rig)).find(cell).state[0] == OPEN)
 
 
-HAMMERS = tuple(jobs.hydraulic(t) for t in (1.0, 2.0, 4.0)) + (jobs.drop(5.0),)
+HAMMERS = (*(jobs.hydraulic(t) for t in (1.0, 2.0, 4.0)), jobs.drop(5.0))
 JOBS = {
     "one stage": jobs.small_job(hammers=HAMMERS),
     "two stages": jobs.small_job(stages=(jobs.SOFT, jobs.FINAL), hammers=HAMMERS),
