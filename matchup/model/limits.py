@@ -158,7 +158,7 @@ def stress_limits(
         )
         if pile.material in materials:
             by_rule = materials[pile.material](pile)
-    made: list[Limit] = []
+    made: dict[str, Limit] = {}
     sides = (
         ("compression", compression, compression_stress, by_rule[0], -pile.prestress, "less"),
         ("tension", tension, tension_stress, by_rule[1], pile.prestress, "plus"),
@@ -173,14 +173,14 @@ def stress_limits(
             "both",
         )
         if stress is not None:
-            made.append(Limit(stress, "driving stress given in the job"))
+            made[side] = Limit(stress, "driving stress given in the job")
         elif fraction is not None:
             text = f"{fraction:g} of the strength" + (
                 f" {word} effective prestress" if pile.prestress else ""
             )
-            made.append(Limit(fraction * pile.strength + prestress, text))
+            made[side] = Limit(fraction * pile.strength + prestress, text)
         elif ruled is not None:
-            made.append(ruled)
+            made[side] = ruled
         elif rule is None or pile.material in RULES.get(rule, {}):
             rules.must(
                 False,
@@ -189,7 +189,7 @@ def stress_limits(
                 f"or a driving stress `{side}_stress`",
                 f"none (rule {rule} sets no {side} limit)" if rule else "",
             )
-    for side, limit in zip(("compression", "tension"), made, strict=False):
+    for side, limit in made.items():
         rules.must(
             limit.stress > 0,
             side,
@@ -198,8 +198,9 @@ def stress_limits(
             "stress",
         )
     rules.close()
+    squeeze, pull = made["compression"], made["tension"]
     return StressLimits(
-        made[0].stress, made[1].stress, made[0].text, made[1].text, _warnings(pile, *made)
+        squeeze.stress, pull.stress, squeeze.text, pull.text, _warnings(pile, squeeze, pull)
     )
 
 
