@@ -107,9 +107,11 @@ class Planner:
         from matchup.search.study import Study, Told, run_studies
 
         seed = self.rig.job.search.seed
+        hammers = range(len(self.rig.job.hammers))
+        running = [h for h in hammers if any(self.rig.runs(s, h) for s in range(self.last + 1))]
+        self.look([(h, 0) for h in running])
         studies = {
-            h: Study(self.rig.kinds, self.rig.sizes, seed + h)
-            for h in range(len(self.rig.job.hammers))
+            h: Study(self.rig.kinds, self.rig.sizes, seed + h) for h in hammers if h not in running
         }
 
         def answer(asked: dict[int, list[int]]) -> dict[int, dict[int, Told]]:
@@ -120,7 +122,7 @@ class Planner:
             }
 
         run_studies(studies, answer)
-        return {
+        return dict.fromkeys(running, "exact: no cushion changes the weight") | {
             h: f"search: {len(study.told)} of {len(self.rig.stacks)} cushions, "
             f"best found after {study.best_after}"
             for h, study in studies.items()
@@ -128,9 +130,13 @@ class Planner:
 
     def look(self, pairs: Iterable[Pair]) -> None:
         """Find the windows of pairs not yet looked at, stage by stage, dropping those that fail."""
-        fresh = [pair for pair in dict.fromkeys(pairs) if (self.last, *pair) not in self._plans]
+        fresh = [(h, c) for h, c in dict.fromkeys(pairs) if c not in self._looked[h]]
         for h, c in fresh:
             self._looked[h].append(c)
+        # Weight against resistance takes no blow, and rules a hammer out on any cushion.
+        for stage in range(self.last + 1):
+            self._look_at_stage(stage, [pair for pair in fresh if self.rig.runs(stage, pair[0])])
+            fresh = [pair for pair in fresh if not self.rig.runs(stage, pair[0])]
         for stage in (self.last, *range(self.last)):
             self._look_at_stage(stage, fresh)
             fresh = [(h, c) for h, c in fresh if self._plans[stage, h, c].verdict == DRIVES]
