@@ -59,6 +59,8 @@ class Rig:
         Wear states that every plan must stand.
     spent : int
         Blows computed so far.
+    spent_on : (hammers,) int64 array
+        The same by hammer.
     """
 
     def __init__(self, job: Job, workers: int | None = None, tell: Tell | None = None):
@@ -85,6 +87,7 @@ class Rig:
         self._answers = np.empty((0, 5))
         self._why: dict[tuple[int, int, int], str] = {}
         self.spent = 0
+        self.spent_on = np.zeros(len(job.hammers), np.int64)
 
     def spring(self, cushion: Cushion | None, wear: str) -> Spring:
         """Return the spring between helmet and pile."""
@@ -160,6 +163,7 @@ class Rig:
         )
         self._answers = np.concatenate((self._answers, fresh))
         self.spent += stroke.size
+        self.spent_on += np.bincount(hammer, minlength=self.spent_on.size)
 
     def _pick(self, rows: Integers) -> Answers:
         picked = self._answers[rows]

@@ -95,6 +95,7 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
             else option_document(option.runner_up, job, units, None)
         ),
         "certificate": option.certificate or None,
+        "analyses": option.analyses,
         "reach_ratio": number(option.reach),
         "reach_is_open": option.reach_is_open,
         "cure": cure_document(option.cure),

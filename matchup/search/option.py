@@ -148,6 +148,8 @@ class Option:
         A softer cushion of the same hammer that costs little more energy.
     certificate : str
         What certifies that this is the hammer's best plan.
+    analyses : int
+        Blows computed to find it.
     reach : float or None
         Largest resistance that the hammer still overcomes within the limits at the needed set, with
         these cushions, over the target stage's; None where it was not looked for. [-]
@@ -165,6 +167,7 @@ class Option:
     failing: StagePlan | None = None
     runner_up: Option | None = None
     certificate: str = ""
+    analyses: int = 0
     reach: float | None = None
     reach_is_open: bool = False
     cure: Cure | None = None

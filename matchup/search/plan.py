@@ -93,7 +93,11 @@ class Planner:
         chosen = {h: self._choose(h) for h in hammers}
         self._find_tops([(h, c) for h, best in chosen.items() for c in best])
         return [
-            replace(self._option(h, best) if best else self._miss(h), certificate=certificates[h])
+            replace(
+                self._option(h, best) if best else self._miss(h),
+                certificate=certificates[h],
+                analyses=int(self.rig.spent_on[h]),
+            )
             for h, best in chosen.items()
         ]
 
