@@ -188,23 +188,31 @@ class WindowFinder:
         tension = np.full(count, np.nan)
         alive = np.flatnonzero((state == OPEN) | (state == NO_SET))
         if alive.size:
-            compression[alive], tension[alive], sound = self.stresses(
-                _take(cells, alive), at[alive]
+            some = _take(cells, alive)
+            compression[alive], tension[alive], sound = self.stresses(some, at[alive])
+            judged = self.judge(
+                some.stage, reached[alive], compression[alive], tension[alive], sound
             )
-            state[alive[~sound]] = UNSOUND
-        self._close(state, compression, tension)
+            # More stroke than the largest is not to be had: the set stops such a cell first.
+            state[alive] = np.where(sound & (state[alive] == NO_SET), NO_SET, judged)
         closed = state == TENSION
         self._scan_above(cells, state, at, reached, compression, tension)
         low = self._table[cells.hammer, at]
         lifted = closed & (state == OPEN)
         return Windows(cells, state, low, reached, compression, tension, lifted)
 
-    def _close(self, state: Integers, compression: Floats, tension: Floats) -> None:
-        """Close open cells whose stresses break a limit, by the limit that breaks the most."""
+    def judge(
+        self, stage: Integers, set_: Floats, compression: Floats, tension: Floats, sound: Flags
+    ) -> Integers:
+        """Return the states of strokes, worst news first: of two broken limits the worse one."""
         use_compression = compression / self.demands.compression
         use_tension = tension / self.demands.tension
-        broken = (state == OPEN) & (np.maximum(use_compression, use_tension) > 1)
-        state[broken] = np.where(use_compression >= use_tension, COMPRESSION, TENSION)[broken]
+        state = np.full(stage.size, OPEN)
+        state[set_ < self.demands.set_needed[stage]] = NO_SET
+        state[use_tension > 1] = TENSION
+        state[(use_compression > 1) & (use_compression >= use_tension)] = COMPRESSION
+        state[~sound] = UNSOUND
+        return state
 
     def _reach_set(self, cells: Cells, last: Integers) -> tuple[Integers, Floats, Integers]:
         """Return the least setting that reaches the set in every wear state, the set, the state.
@@ -302,11 +310,12 @@ class WindowFinder:
             here = np.array([ahead.pop(0) for ahead in waiting.values()])
             some = _take(cells, rows)
             squeezed, pulled, sound = self.stresses(some, here)
-            found, _ = self.sets(some, here)
+            found, sound_too = self.sets(some, here)
+            states = self.judge(some.stage, found, squeezed, pulled, sound & sound_too)
             for k, i in enumerate(rows):
-                if not sound[k] or squeezed[k] > self.demands.compression:
+                if states[k] == UNSOUND or squeezed[k] > self.demands.compression:
                     waiting.pop(int(i))
-                elif pulled[k] <= self.demands.tension:
+                elif states[k] == OPEN:
                     waiting.pop(int(i))
                     state[i], at[i], reached[i] = OPEN, here[k], found[k]
                     compression[i], tension[i] = squeezed[k], pulled[k]

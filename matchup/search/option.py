@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass, field
 
 from matchup.model.cushion import Stack
@@ -61,6 +60,9 @@ class StagePlan:
         At this stroke; None where the catalogue does not say. [1/s]
     verdict : str
         Of this stage alone; `DRIVES` where its window is open.
+    shortfall : float
+        How far the stage is from working: the largest excess over what is needed, the reserve kept
+        back; infinite where no blow can tell. [-]
     lifted : bool
         Whether tension closes the least stroke that reaches the set, and a window opens above.
     why : str
@@ -80,6 +82,7 @@ class StagePlan:
     transferred: float
     blow_rate: float | None
     verdict: str
+    shortfall: float
     lifted: bool = False
     why: str = ""
 
@@ -93,14 +96,6 @@ class StagePlan:
         """Penetration speed [m/s]; None where the blow rate is not known."""
         return None if self.blow_rate is None else self.blow_rate * self.set
 
-    @property
-    def shortfall(self) -> float:
-        """How far the stage is from working: the largest excess over what is needed [-]."""
-        if self.verdict in (PILE_RUNS, NOT_ANALYSED):
-            return math.inf
-        short = self.stage.set_needed / self.set if self.set > 0 else 1e9
-        return max(short, self.compression_use, self.tension_use) - 1
-
 
 @dataclass(frozen=True, slots=True)
 class Cure:
@@ -113,18 +108,25 @@ class Cure:
     stack_looked : bool
         Whether thicker cushions were looked at.
     ram_mass : float or None
-        Least ram mass that would reach the set at the same largest stroke and cushions. [kg]
+        Least ram mass that would do with the nearest miss's cushions: that would reach the set
+        at the largest stroke or, for a hammer stopped by stresses, work at a lower one. [kg]
+    ram_looked : bool
+        Whether heavier rams were looked at.
     ram_within : bool
         Whether that ram would also stay within the stress limits.
     set_within : float or None
-        Largest set within the stress limits, with the nearest miss's cushions. [m]
+        Set at the largest stroke below which no limit breaks, with the nearest miss's cushions. [m]
+    stroke_within : float or None
+        That stroke. [m]
     """
 
     stack: Stack | None = None
     stack_looked: bool = False
     ram_mass: float | None = None
+    ram_looked: bool = False
     ram_within: bool = False
     set_within: float | None = None
+    stroke_within: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -151,10 +153,11 @@ class Option:
     analyses : int
         Blows computed to find it.
     reach : float or None
-        Largest resistance that the hammer still overcomes within the limits at the needed set, with
-        these cushions, over the target stage's; None where it was not looked for. [-]
+        Up to so many times the target stage's resistance, the hammer reaches the needed set within
+        the limits with these cushions; below 1, the largest multiple at which it does. None where
+        there is none or it was not looked for. [-]
     reach_is_open : bool
-        Whether `reach` is only as far as was looked: the true one is larger.
+        Whether `reach` is only as far as was looked: the true one is no less.
     cure : Cure or None
         What would let a failing hammer drive the pile.
     """

@@ -10,6 +10,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 from dataclasses import replace
+from typing import Any
 
 import numpy as np
 
@@ -56,13 +57,17 @@ GOVERNS = {
     OVER_COMPRESSION: "compression",
     OVER_TENSION: "tension",
 }
-RUNNER_UP_ENERGY = 1.05
-"""A runner-up costs at most so many times the energy of the best plan. [-]"""
+RUNNER_UP_COST = 1.05
+"""A runner-up costs at most so many times what the best plan does. [-]"""
+RUNNER_UP_GAIN = 0.05
+"""It raises the use of no stress limit, and lowers that of one by at least so much. [-]"""
 LARGEST_WHOLE_SPACE = 60
 """Cushion spaces of up to so many members are looked at whole."""
 
 Pair = tuple[int, int]
 """Hammer and stack."""
+Key = tuple[int, ...]
+"""Stage, hammer and stack."""
 
 
 class Planner:
@@ -77,7 +82,7 @@ class Planner:
         self.rig = rig
         self.finder = WindowFinder(rig, job_demands(rig))
         self.last = len(rig.job.stages) - 1
-        self._plans: dict[tuple[int, int, int], StagePlan] = {}
+        self._plans: dict[Key, StagePlan] = {}
         self._looked: dict[int, list[int]] = {h: [] for h in range(len(rig.job.hammers))}
 
     def options(self) -> list[Option]:
@@ -156,32 +161,53 @@ class Planner:
             self._plans[stage, h, c] = self._stage_plan(windows, row)
 
     def _stage_plan(self, windows: Windows, row: int) -> StagePlan:
-        job = self.rig.job
-        stage, hammer, stack = (int(column[row]) for column in windows.cells)
+        stage, hammer, stack = key = tuple(int(column[row]) for column in windows.cells)
         stroke = float(windows.low[row])
         state = int(windows.state[row])
         verdict = VERDICT_OF[state]
         if verdict == NOT_REACHED and stage != self.last:
             verdict = REFUSES
+        does = self._does(
+            key, stroke, windows.set[row], windows.compression[row], windows.tension[row]
+        )
+        untold = state in (RUNS, UNSOUND)
         return StagePlan(
-            stage=job.stages[stage],
-            stroke=stroke,
+            stage=self.rig.job.stages[stage],
             low=stroke,
             top=None,
-            set=float(windows.set[row]),
-            compression=float(windows.compression[row]),
-            tension=float(windows.tension[row]),
-            compression_use=float(windows.compression[row]) / job.limits.compression,
-            tension_use=float(windows.tension[row]) / job.limits.tension,
-            blow_energy=job.hammers[hammer].blow_energy(stroke),
-            transferred=math.nan
-            if state == RUNS
-            else self._transferred(stage, hammer, stack, stroke),
-            blow_rate=job.hammers[hammer].blow_rate(stroke),
             verdict=verdict,
+            shortfall=math.inf if untold else self._shortfall(stage, does),
             lifted=bool(windows.lifted[row]),
             why=self.rig.why_unsound(stage, hammer, stack) if state == UNSOUND else "",
+            **does,
         )
+
+    def _does(
+        self, key: Key, stroke: float, set_: float, compression: float, tension: float
+    ) -> dict[str, Any]:
+        """Return what a stroke does, as the fields of a `StagePlan`."""
+        stage, hammer, stack = key
+        job = self.rig.job
+        runs = self.rig.runs(stage, hammer)
+        return {
+            "stroke": stroke,
+            "set": float(set_),
+            "compression": float(compression),
+            "tension": float(tension),
+            "compression_use": float(compression) / job.limits.compression,
+            "tension_use": float(tension) / job.limits.tension,
+            "blow_energy": job.hammers[hammer].blow_energy(stroke),
+            "blow_rate": job.hammers[hammer].blow_rate(stroke),
+            "transferred": math.nan if runs else self._transferred(stage, hammer, stack, stroke),
+        }
+
+    def _shortfall(self, stage: int, does: dict[str, Any]) -> float:
+        """Return the largest excess over what is demanded, the reserve kept back [-]."""
+        demands = self.finder.demands
+        needed, reached = float(demands.set_needed[stage]), does["set"]
+        short = needed / reached if reached > 0 else 1e9
+        squeezed = does["compression"] / demands.compression
+        return float(max(short, squeezed, does["tension"] / demands.tension)) - 1
 
     def _transferred(self, stage: int, hammer: int, stack: int, stroke: float) -> float:
         wears = len(self.rig.wears)
@@ -197,7 +223,6 @@ class Planner:
         """
         if not pairs:
             return
-        job = self.rig.job
         self._find_tops(pairs)
         keys = [(s, h, c) for s in range(self.last + 1) for h, c in pairs]
         cells = Cells(*np.array(keys).T)
@@ -206,18 +231,9 @@ class Planner:
         sets, _ = self.finder.sets(cells, at)
         compression, tension, _ = self.finder.stresses(cells, at)
         for row, key in enumerate(keys):
-            hammer, stroke = job.hammers[key[1]], float(tops[row])
+            does = self._does(key, float(tops[row]), sets[row], compression[row], tension[row])
             self._plans[key] = replace(
-                self._plans[key],
-                stroke=stroke,
-                set=float(sets[row]),
-                compression=float(compression[row]),
-                tension=float(tension[row]),
-                compression_use=float(compression[row]) / job.limits.compression,
-                tension_use=float(tension[row]) / job.limits.tension,
-                blow_energy=hammer.blow_energy(stroke),
-                transferred=self._transferred(*key, stroke),
-                blow_rate=hammer.blow_rate(stroke),
+                self._plans[key], shortfall=self._shortfall(key[0], does), **does
             )
 
     def cost(self, hammer: int, stack: int) -> float:
@@ -242,22 +258,30 @@ class Planner:
         if not working:
             return []
         best = min(working, key=lambda c: self._merit(hammer, c))
-        energy = RUNNER_UP_ENERGY * self._plans[self.last, hammer, best].blow_energy
-        affordable = [c for c in working if self._plans[self.last, hammer, c].blow_energy <= energy]
-        softest = min(affordable, key=lambda c: (self._compression(hammer, c), c))
-        if self._compression(hammer, softest) < self._compression(hammer, best):
-            return [best, softest]
-        return [best]
+        hard = self._uses(hammer, best)
+        softer = []
+        for c in working:
+            uses = self._uses(hammer, c)
+            gains = [before - after for before, after in zip(hard, uses, strict=True)]
+            affordable = self.cost(hammer, c) <= RUNNER_UP_COST * self.cost(hammer, best)
+            if affordable and min(gains) >= 0 and max(gains) >= RUNNER_UP_GAIN:
+                softer.append(c)
+        return [best, *sorted(softer, key=lambda c: (max(self._uses(hammer, c)), c))[:1]]
 
     def _merit(self, hammer: int, stack: int) -> tuple[float, ...]:
-        """Ties of cost go to fewer sheets, then lower compression, then catalogue order."""
-        pile = self.rig.stacks[stack].pile
-        sheets = (pile.sheets or 0) if pile else 0
-        target = self._plans[self.last, hammer, stack]
-        return (self.cost(hammer, stack), sheets, target.compression, stack)
+        """Ties of cost go to the thinner cushion, then lower compression, then catalogue order.
 
-    def _compression(self, hammer: int, stack: int) -> float:
-        return max(plan.compression for plan in self.stage_plans(hammer, stack))
+        Thinner is fewer sheets where sheets are counted.
+        """
+        pile = self.rig.stacks[stack].pile
+        thickness = (pile.sheets or pile.thickness) if pile else 0
+        target = self._plans[self.last, hammer, stack]
+        return (self.cost(hammer, stack), thickness, target.compression, stack)
+
+    def _uses(self, hammer: int, stack: int) -> tuple[float, float]:
+        """Return the worst uses of both stress limits over the stages."""
+        plans = self.stage_plans(hammer, stack)
+        return max(p.compression_use for p in plans), max(p.tension_use for p in plans)
 
     def stage_plans(self, hammer: int, stack: int) -> tuple[StagePlan, ...]:
         """Return the plans of the stages looked at, in driving order."""
@@ -319,8 +343,9 @@ class Planner:
 def plan_cost(plan: StagePlan, objective: str) -> float:
     """Return what an objective makes of the target's plan; the least is the best.
 
-    ``energy``: blow energy [J]; ``time``: minus the penetration speed [m/s].
+    ``energy``: blow energy [J]; ``time``: time to drive a metre, infinite where the blow rate is
+    not known [s/m].
     """
     if objective == "time":
-        return -(plan.speed if plan.speed is not None else 0.0)
+        return 1 / plan.speed if plan.speed else math.inf
     return plan.blow_energy

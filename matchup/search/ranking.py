@@ -24,17 +24,17 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
         Called with the number of blows of every batch.
     """
     started = time.perf_counter()
-    rig = Rig(job, workers, tell)
-    options = Planner(rig).options()
+    planner = Planner(Rig(job, workers, tell))
+    options = planner.options()
     options, blows_for_reach = find_reach(job, options, workers, tell)
-    options, blows_for_cures = find_cures(job, options, workers, tell)
+    options, blows_for_cures = find_cures(planner, options)
     driving = [option for option in options if option.drives]
     failing = [option for option in options if not option.drives]
     return Ranking(
         job=job,
         options=tuple(sorted(driving, key=lambda o: plan_cost(o.target, job.search.objective))),
         rejected=tuple(sorted(failing, key=_shortfall)),
-        analyses=rig.spent + blows_for_reach + blows_for_cures,
+        analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
         runtime=time.perf_counter() - started,
     )
 

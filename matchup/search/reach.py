@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import replace
 
@@ -12,14 +13,16 @@ from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
 from matchup.model.job import Job
 from matchup.model.stage import Stage
 from matchup.search.option import DRIVES, NOT_ANALYSED, PILE_RUNS, Option
+from matchup.search.steps import first_step
 from matchup.wave.layout import Flags, Integers
 
-FINENESS = 1.02
-"""Resistances looked at lie so far apart, as a ratio. [-]"""
 LOWEST, HIGHEST = 0.2, 4.0
-"""Ratios to the stage's resistance between which the reach is looked for. [-]"""
-STRIDE = 4
-"""Where the target stage fails, lower resistances are tried first so many steps apart."""
+"""Multiples of the stage's resistance between which the reach is looked for. [-]"""
+STEPS = 70
+"""From 1 to `HIGHEST`, each by the same ratio: 2 %."""
+FINENESS = HIGHEST ** (1 / STEPS)
+STRIDE = 2
+"""Resistances are looked at so many steps apart, and step by step where a window closes."""
 
 
 def scaled(stage: Stage, ratio: float) -> Stage:
@@ -32,13 +35,13 @@ def scaled(stage: Stage, ratio: float) -> Stage:
 def find_reach(
     job: Job, options: Sequence[Option], workers: int | None = None, tell: Tell | None = None
 ) -> tuple[list[Option], int]:
-    """Give each option the largest resistance that it overcomes within the limits.
+    """Give each option the multiple of the target's resistance up to which it works.
 
-    The target stage's resistance, shaft and toe alike, is scaled in steps of 2 %, for all hammers
-    at once, each with its own cushions. Where the target stage works, the step at which its window
-    closes is found by bisection upwards. Where it fails, less resistance need not open it at once
-    (in easy driving tension grows, and a pile may run), so strides are taken down to the first
-    that opens it, and the step is found within the last stride.
+    The target stage's resistance, shaft and toe alike, is scaled in steps, for all hammers at once,
+    each with its own cushions. Where the target stage works, steps are taken upwards until its
+    window closes for the first time: it may open again further up, where tension is less, but an
+    answer that hangs on more resistance than expected is none. Where it fails, steps are taken
+    downwards until a window opens.
 
     Returns
     -------
@@ -49,39 +52,27 @@ def find_reach(
     whole = [o for o in options if o.verdict not in (NOT_ANALYSED, PILE_RUNS)]
     if not whole:
         return list(options), 0
-    below = int(np.floor(np.log(LOWEST) / np.log(FINENESS)))
-    above = int(np.ceil(np.log(HIGHEST) / np.log(FINENESS)))
-    ratios = FINENESS ** np.arange(below, above + 1)
+    below = math.floor(math.log(1 / LOWEST) / math.log(FINENESS))
+    ratios = HIGHEST ** (np.arange(-below, STEPS + 1) / STEPS)
     stages = tuple(scaled(job.stages[-1], float(ratio)) for ratio in ratios)
     hammers = tuple(option.hammer for option in whole)
     rig = Rig(replace(job, stages=stages, hammers=hammers), workers, tell)
     finder = WindowFinder(rig, job_demands(rig))
     stack = np.array([rig.stacks.index(option.stack) for option in whole])
+    works = np.array([option.target.verdict == DRIVES for option in whole])
+    upward, downward = np.flatnonzero(works), np.flatnonzero(~works)
 
-    def is_open(at: Integers, rows: Integers) -> Flags:
-        return np.asarray(finder.find(Cells(at, rows, stack[rows])).state == OPEN)
+    def is_open(rows: Integers, at: Integers) -> Flags:
+        return np.asarray(finder.find(Cells(below + at, rows, stack[rows])).state == OPEN)
 
-    # Resistance number -1 stands for less than the lowest; the one past the end for more.
-    low = np.full(len(whole), -below)
-    high = np.full(len(whole), ratios.size)
-    failing = np.array([option.target.verdict != DRIVES for option in whole])
-    high[failing] = low[failing]
-    while (rows := np.flatnonzero(failing)).size:
-        low[rows] = np.maximum(high[rows] - STRIDE, -1)
-        some = rows[low[rows] >= 0]
-        opened = np.ones(len(whole), bool)
-        opened[some] = is_open(low[some], some) if some.size else False
-        failing &= ~opened
-        high[failing] = low[failing]
-    while (rows := np.flatnonzero(high - low > 1)).size:
-        middle = (low[rows] + high[rows]) // 2
-        fits = is_open(middle, rows)
-        low[rows[fits]] = middle[fits]
-        high[rows[~fits]] = middle[~fits]
-    found = {
-        option.hammer.name: (float(ratios[at]) if at >= 0 else None, bool(at == ratios.size - 1))
-        for option, at in zip(whole, low, strict=True)
-    }
+    closes = first_step(lambda r, n: ~is_open(upward[r], n), upward.size, STEPS, STRIDE)
+    opens = first_step(lambda r, n: is_open(downward[r], -n), downward.size, below, STRIDE)
+    found: dict[str, tuple[float | None, bool]] = {}
+    for row, step in zip(upward, closes - 1, strict=True):
+        found[whole[row].hammer.name] = (float(ratios[below + step]), bool(step == STEPS))
+    for row, step in zip(downward, opens, strict=True):
+        reach = float(ratios[below - step]) if step <= below else None
+        found[whole[row].hammer.name] = (reach, False)
     return [_with_reach(option, found.get(option.hammer.name)) for option in options], rig.spent
 
 

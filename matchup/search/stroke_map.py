@@ -7,7 +7,17 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from matchup.analysis.rig import Rig
-from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
+from matchup.analysis.window import (
+    COMPRESSION,
+    NO_SET,
+    OPEN,
+    RUNS,
+    TENSION,
+    UNSOUND,
+    Cells,
+    WindowFinder,
+    job_demands,
+)
 from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
@@ -23,6 +33,14 @@ SQUEEZED = "compression"
 PULLED = "tension"
 RUNNING = "pile runs"
 UNTRUSTED = "could not be analysed"
+STATE_OF = {
+    OPEN: OPEN_CELL,
+    NO_SET: SHORT,
+    COMPRESSION: SQUEEZED,
+    TENSION: PULLED,
+    RUNS: RUNNING,
+    UNSOUND: UNTRUSTED,
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,8 +88,7 @@ def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = No
     a window opens that would else lie between them.
     """
     rig = Rig(replace(job, hammers=(hammer,), stages=(stage,)), workers)
-    demands = job_demands(rig)
-    finder = WindowFinder(rig, demands)
+    finder = WindowFinder(rig, job_demands(rig))
     settings = finder.strokes[0]
     picked = np.unique(
         np.rint(np.linspace(0, settings.size - 1, min(MOST_STROKES, settings.size))).astype(int)
@@ -92,19 +109,14 @@ def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = No
     cells = Cells(place, place, stack)
     sets, sound = finder.sets(cells, at)
     compression, tension, sound_too = finder.stresses(cells, at)
-    use_c, use_t = compression / demands.compression, tension / demands.tension
-    state = np.full(stack.size, OPEN_CELL, dtype=object)
-    state[sets < demands.set_needed[0]] = SHORT
-    state[(use_c > 1) | (use_t > 1)] = PULLED
-    state[(use_c > 1) & (use_c >= use_t)] = SQUEEZED
-    state[~(sound & sound_too)] = UNTRUSTED
+    state = finder.judge(place, sets, compression, tension, sound & sound_too)
     return StrokeMap(
         job=job,
         hammer=hammer,
         stage=stage,
         stacks=rig.stacks,
         strokes=settings[picked],
-        states=tuple(tuple(str(s) for s in row) for row in state.reshape(shape)),
+        states=tuple(tuple(STATE_OF[s] for s in row) for row in state.reshape(shape).tolist()),
         sets=sets.reshape(shape),
         compression_uses=(compression / job.limits.compression).reshape(shape),
         tension_uses=(tension / job.limits.tension).reshape(shape),

@@ -108,8 +108,7 @@ class Study:
     def neighbours(self) -> list[int]:
         """Return the places next to the best one that nothing has been told of yet.
 
-        Next to: one size thinner or thicker, and the same and the neighbouring sizes of the other
-        materials.
+        Next to: up to two sizes thinner or thicker, and the same sizes of the other materials.
         """
         _, size = divmod(self.best, self.sizes)
         near = [
