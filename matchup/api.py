@@ -15,9 +15,15 @@ from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
 from matchup.errors import InputError, Problem
 from matchup.inputs import load_job
-from matchup.model.hammer import Hammer
 from matchup.model.job import Job
-from matchup.model.selection import Selected, Selection, pick_hammer, select
+from matchup.model.selection import (
+    Selected,
+    Selection,
+    pick_wear,
+    select,
+    select_cell,
+    select_hammer,
+)
 from matchup.report.document import blow_document
 from matchup.report.mapped import map_document, map_table, map_text
 from matchup.report.one_blow import blow_text, envelope_table, trace_table
@@ -291,7 +297,7 @@ def check(
         If the job or the selection has problems.
     """
     job = _job(job)
-    alone = replace(job, hammers=(_hammer(job, hammer),))
+    alone = replace(job, hammers=(select_hammer(job, hammer),))
     return CheckResult(rank_hammers(alone, workers, tell))
 
 
@@ -317,8 +323,7 @@ def window(
         If the job or the selection has problems.
     """
     job = _job(job)
-    chosen = select(replace(job, cushions=None), Selection(hammer, stage))
-    return WindowResult(map_strokes(job, chosen.hammer, chosen.stage, workers))
+    return WindowResult(map_strokes(job, *select_cell(job, hammer, stage), workers))
 
 
 def blow(
@@ -331,6 +336,7 @@ def blow(
     sheets: int | None = None,
     thickness: float | str | None = None,
     wear: str | None = None,
+    hammer_cushion: str | None = None,
     best: bool = False,
 ) -> BlowResult:
     """Compute one blow in detail.
@@ -338,14 +344,14 @@ def blow(
     Parameters
     ----------
     job : Job or path
-    hammer, stage, cushion, wear : str or None
+    hammer, stage, cushion, wear, hammer_cushion : str or None
         Names; where there is only one choice it may be left out. The stage that is not named is
-        the target, the wear state ``new``.
+        the target, the wear state the first of the job's.
     stroke, thickness : float, str or None
         [m], or a text with its unit.
     sheets : int or None
     best : bool
-        Take stroke and cushion of the hammer's best plan at the target stage.
+        Take stroke and cushions of the hammer's best plan, so none of them may be given.
 
     Raises
     ------
@@ -358,28 +364,17 @@ def blow(
     problems: list[Problem] = []
     stroke = _quantity(stroke, "stroke", "stroke", problems)
     thickness = _quantity(thickness, "thickness", "thickness", problems)
-    selection = Selection(hammer, stage, cushion, sheets, thickness, wear)
-    if best and not problems:
-        selected, stroke = _best_plan(job, selection)
-    else:
-        selected = _select(job, selection, stroke, problems)
-    assert stroke is not None
+    selection = Selection(hammer, stage, cushion, sheets, thickness, wear, hammer_cushion)
+    pick = _best_plan if best else _select
+    selected, stroke = pick(job, selection, stroke, problems)
     computed = compute_blow(
-        job, selected.stage, selected.hammer, selected.cushion, selected.wear, stroke
+        job, selected.stage, selected.hammer, selected.stack, selected.wear, stroke
     )
     return BlowResult(computed, job)
 
 
 def _job(job: JobLike) -> Job:
     return job if isinstance(job, Job) else load_job(job)
-
-
-def _hammer(job: Job, name: str | None) -> Hammer:
-    problems: list[Problem] = []
-    hammer = pick_hammer(job, name, problems)
-    if hammer is None:
-        raise InputError(problems)
-    return hammer
 
 
 def _quantity(
@@ -396,7 +391,7 @@ def _quantity(
 
 def _select(
     job: Job, selection: Selection, stroke: float | None, problems: list[Problem]
-) -> Selected:
+) -> tuple[Selected, float]:
     if stroke is None and not problems:
         do = 'For example "0.6 m", or --best for the best plan of the hammer.'
         problems.append(Problem(None, None, "stroke", "must be given", "nothing", do))
@@ -409,16 +404,33 @@ def _select(
     if stroke is not None and stroke > selected.hammer.stroke_max * (1 + 1e-9):
         must = f"must be at most the hammer's {selected.hammer.stroke_max:g} m"
         problems.append(Problem(None, None, "stroke", must, f"{stroke:g} m"))
+    if problems or stroke is None:
+        raise InputError(problems)
+    return selected, stroke
+
+
+def _best_plan(
+    job: Job, selection: Selection, stroke: float | None, problems: list[Problem]
+) -> tuple[Selected, float]:
+    """Return the best plan of the named hammer, as a selection and a stroke."""
+    for place, value in (
+        ("stroke", stroke),
+        ("cushion", selection.material),
+        ("sheets", selection.sheets),
+        ("thickness", selection.thickness),
+        ("hammer_cushion", selection.hammer_cushion),
+    ):
+        if value is not None:
+            must = "must be left out with best, which chooses it"
+            problems.append(Problem(None, None, place, must, str(value)))
+    wear = pick_wear(job, selection.wear, problems)
+    try:
+        hammer, stage = select_cell(job, selection.hammer, selection.stage)
+    except InputError as error:
+        raise InputError([*problems, *error.problems]) from None
     if problems:
         raise InputError(problems)
-    return selected
-
-
-def _best_plan(job: Job, selection: Selection) -> tuple[Selected, float]:
-    """Return the best plan of the named hammer, as a selection and a stroke."""
-    first = select(replace(job, cushions=None), Selection(selection.hammer, selection.stage))
-    option = rank_hammers(replace(job, hammers=(first.hammer,)))
-    best = (*option.options, *option.rejected)[0]
-    stroke = next((p.stroke for p in best.plans if p.stage == first.stage), best.target.stroke)
-    wear = selection.wear or "new"
-    return Selected(first.hammer, first.stage, best.stack.pile, wear), stroke
+    found = rank_hammers(replace(job, hammers=(hammer,)))
+    option = (*found.options, *found.rejected)[0]
+    planned = next((plan for plan in option.plans if plan.stage == stage), option.target)
+    return Selected(hammer, stage, option.stack, wear), planned.stroke

@@ -9,7 +9,7 @@ import numpy as np
 from matchup.analysis.blow import Strikes, strike
 from matchup.analysis.chain import build_chains, enough_segments, pile_contact, set_quake
 from matchup.errors import AnalysisError
-from matchup.model.cushion import Cushion
+from matchup.model.cushion import Cushion, Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
@@ -92,7 +92,7 @@ class Blow:
 
     hammer: Hammer
     stage: Stage
-    cushion: Cushion | None
+    stack: Stack
     wear: str
     stroke: float
     impact_velocity: float
@@ -116,9 +116,19 @@ class Blow:
     envelope: Envelope
     trace: Trace
 
+    @property
+    def cushion(self) -> Cushion | None:
+        """Pile cushion."""
+        return self.stack.pile
+
+    @property
+    def hammer_cushion(self) -> str:
+        """Hammer cushion in words."""
+        return self.stack.hammer.text if self.stack.hammer else self.hammer.cushion_text
+
 
 def compute_blow(
-    job: Job, stage: Stage, hammer: Hammer, cushion: Cushion | None, wear: str, stroke: float
+    job: Job, stage: Stage, hammer: Hammer, stack: Stack, wear: str, stroke: float
 ) -> Blow:
     """Compute one blow.
 
@@ -136,7 +146,8 @@ def compute_blow(
             f"{what}: the pile runs; pile, helmet, ram and what stands on it weigh more than the "
             f"resistance of {stage.resistance / 1e3:.0f} kN, so there is no blow to compute"
         )
-    spring = cushion.spring(wear) if cushion else pile_contact(job.pile)
+    spring = stack.pile.spring(wear) if stack.pile else pile_contact(job.pile)
+    other = stack.hammer.spring if stack.hammer else None
     first = np.zeros(1, np.int64)
     struck = strike(
         chains,
@@ -146,6 +157,8 @@ def compute_blow(
             np.array([spring.stiffness]),
             np.array([spring.restitution]),
             np.array([stroke]),
+            None if other is None else np.array([other.stiffness]),
+            None if other is None else np.array([other.restitution]),
         ),
         detail=True,
         workers=1,
@@ -160,7 +173,7 @@ def compute_blow(
     return Blow(
         hammer=hammer,
         stage=stage,
-        cushion=cushion,
+        stack=stack,
         wear=wear,
         stroke=stroke,
         impact_velocity=hammer.impact_velocity(stroke),

@@ -82,6 +82,11 @@ def settings(hammer: Hammer) -> Floats:
     return strokes
 
 
+def is_setting(hammer: Hammer, stroke: float) -> bool:
+    """Return whether a stroke [m] is one of the hammer's settings."""
+    return bool(np.isclose(settings(hammer), stroke, rtol=0, atol=1e-6).any())
+
+
 @dataclass(frozen=True, slots=True)
 class Windows:
     """The window of each cell, as columns of equal length.

@@ -18,7 +18,10 @@ def blow(
     cushion: Annotated[str | None, Parameter(help="Material of the pile cushion.")] = None,
     sheets: Annotated[int | None, Parameter(help="Number of sheets.")] = None,
     thickness: Annotated[str | None, Parameter(help='Instead of sheets: "150 mm".')] = None,
-    wear: Annotated[str | None, Parameter(help="new (default) or worn.")] = None,
+    wear: Annotated[str | None, Parameter(help="new or worn; default: the job's first.")] = None,
+    hammer_cushion: Annotated[
+        str | None, Parameter(help="In the job's words, where it offers several.")
+    ] = None,
     stage: Annotated[str | None, Parameter(help="Default: the last, the target.")] = None,
     best: Annotated[
         bool, Parameter(negative="", help="Stroke and cushion of the hammer's best plan.")
@@ -40,6 +43,7 @@ def blow(
         sheets=sheets,
         thickness=thickness,
         wear=wear,
+        hammer_cushion=hammer_cushion,
         best=best,
     )
     if common.json and traces:

@@ -111,6 +111,12 @@ class Job:
             names = [item.name for item in items]
             twice = sorted({n for n in names if names.count(n) > 1})
             rules.must(not twice, name, "must have different names", ", ".join(twice))
+        rules.must(
+            self.search.objective != "time" or any(h.blow_rate(h.stroke_max) for h in self.hammers),
+            "search.objective",
+            "must be energy where no hammer's catalogue row gives `blow_rate_max` or `lift_speed`",
+            self.search.objective,
+        )
         for stage in self.stages:
             rules.must(
                 not stage.penetration > self.pile.length,

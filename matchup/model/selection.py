@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import TypeVar
 
 from matchup.errors import InputError, Problem
-from matchup.model.cushion import WEAR_STATES, Cushion
+from matchup.model.cushion import WEAR_STATES, Cushion, HammerCushion, Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
@@ -22,8 +22,8 @@ class Selection:
 
     Parameters
     ----------
-    hammer, stage, material, wear : str or None
-        Names.
+    hammer, stage, material, wear, hammer_cushion : str or None
+        Names; `material` is that of the pile cushion.
     sheets : int or None
     thickness : float or None
         [m]
@@ -35,6 +35,7 @@ class Selection:
     sheets: int | None = None
     thickness: float | None = None
     wear: str | None = None
+    hammer_cushion: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,7 +44,7 @@ class Selected:
 
     hammer: Hammer
     stage: Stage
-    cushion: Cushion | None
+    stack: Stack
     wear: str
 
 
@@ -67,20 +68,50 @@ def select(job: Job, selection: Selection) -> Selected:
         With every problem of the selection.
     """
     problems: list[Problem] = []
-    hammer = pick_hammer(job, selection.hammer, problems)
-    stage = _pick("stage", selection.stage or job.stages[-1].name, job.stages, problems)
+    hammer = _pick("hammer", selection.hammer, job.hammers, problems)
+    stage = _pick_stage(job, selection.stage, problems)
     cushion = _pick_cushion(job, selection, problems)
-    wear = _pick_wear(job, selection, problems)
+    hammer_cushion = _pick_hammer_cushion(job, selection.hammer_cushion, problems)
+    wear = pick_wear(job, selection.wear, problems)
     if problems:
         raise InputError(problems)
     assert hammer is not None
     assert stage is not None
-    return Selected(hammer, stage, cushion, wear)
+    return Selected(hammer, stage, Stack(cushion, hammer_cushion), wear)
 
 
-def pick_hammer(job: Job, name: str | None, problems: list[Problem]) -> Hammer | None:
-    """Return the hammer called `name`, or note why there is none."""
-    return _pick("hammer", name, job.hammers, problems)
+def select_hammer(job: Job, name: str | None) -> Hammer:
+    """Return the hammer called `name`.
+
+    Raises
+    ------
+    InputError
+        If there is none, or several and none is named.
+    """
+    problems: list[Problem] = []
+    hammer = _pick("hammer", name, job.hammers, problems)
+    if hammer is None:
+        raise InputError(problems)
+    return hammer
+
+
+def select_cell(job: Job, hammer: str | None, stage: str | None) -> tuple[Hammer, Stage]:
+    """Return the hammer and the stage called so.
+
+    Raises
+    ------
+    InputError
+        With every problem of the names.
+    """
+    problems: list[Problem] = []
+    found = _pick("hammer", hammer, job.hammers, problems), _pick_stage(job, stage, problems)
+    if found[0] is None or found[1] is None:
+        raise InputError(problems)
+    return found[0], found[1]
+
+
+def _pick_stage(job: Job, name: str | None, problems: list[Problem]) -> Stage | None:
+    return _pick("stage", name or job.stages[-1].name, job.stages, problems)
 
 
 def _pick(
@@ -108,11 +139,15 @@ def _missing(kind: str, names: Sequence[str]) -> Problem:
 
 def _pick_cushion(job: Job, selection: Selection, problems: list[Problem]) -> Cushion | None:
     space = job.cushions
-    asked = (selection.material, selection.sheets, selection.thickness)
     if space is None:
-        if any(value is not None for value in asked):
-            must = "must be left out: the job has no [pile_cushion]"
-            problems.append(Problem(None, None, "cushion", must, str(asked)))
+        for place, value in (
+            ("cushion", selection.material),
+            ("sheets", selection.sheets),
+            ("thickness", selection.thickness),
+        ):
+            if value is not None:
+                must = "must be left out: the job has no [pile_cushion]"
+                problems.append(Problem(None, None, place, must, str(value)))
         return None
     names = [material.name for material in space.materials]
     matches = [
@@ -150,13 +185,34 @@ def _pick_cushion(job: Job, selection: Selection, problems: list[Problem]) -> Cu
     return None
 
 
-def _pick_wear(job: Job, selection: Selection, problems: list[Problem]) -> str:
-    if job.cushions is None:
-        return WEAR_STATES[0]
-    wear = selection.wear or (job.cushions.wears[0] if len(job.cushions.wears) == 1 else None)
-    if wear is None:
-        return WEAR_STATES[0]
-    if wear not in WEAR_STATES:
+def _pick_hammer_cushion(
+    job: Job, name: str | None, problems: list[Problem]
+) -> HammerCushion | None:
+    names = [cushion.text for cushion in job.hammer_cushions]
+    if not names:
+        if name is not None:
+            must = "must be left out: the job has no [hammer_cushion] to choose from"
+            problems.append(Problem(None, None, "hammer_cushion", must, name))
+        return None
+    if name is None and len(names) == 1:
+        return job.hammer_cushions[0]
+    for cushion in job.hammer_cushions:
+        if name is not None and cushion.text.casefold() == name.strip().casefold():
+            return cushion
+    if name is None:
+        problems.append(_missing("hammer_cushion", names))
+    else:
+        must = "must be a hammer cushion of the job"
+        problems.append(Problem(None, None, "hammer_cushion", must, name, nearest(name, names)))
+    return None
+
+
+def pick_wear(job: Job, wear: str | None, problems: list[Problem]) -> str:
+    """Return a wear state: the one named, else the job's first; note a wrong name."""
+    if wear is not None and wear not in WEAR_STATES:
         must = f"must be one of: {', '.join(WEAR_STATES)}"
         problems.append(Problem(None, None, "wear", must, wear))
-    return wear
+    if wear is not None and job.cushions is None:
+        must = "must be left out: the job has no [pile_cushion]"
+        problems.append(Problem(None, None, "wear", must, wear))
+    return wear or (job.cushions.wears[0] if job.cushions else WEAR_STATES[0])

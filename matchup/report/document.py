@@ -126,6 +126,7 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, object]:
         "stage": blow.stage.name,
         "case": blow.stage.case or None,
         "cushion": cushion_document(blow.cushion),
+        "hammer_cushion": blow.hammer_cushion,
         "wear": blow.wear if blow.cushion else None,
         "stroke_m": blow.stroke,
         "impact_velocity_m_s": blow.impact_velocity,

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from matchup.analysis.single import Blow
+from matchup.analysis.window import is_setting
 from matchup.model.job import Job
 from matchup.report.sentences import CAUTION, basis
 from matchup.report.shown import Units
@@ -43,6 +44,7 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
             f"{100 * blow.tension_use:.0f}% of the limit, "
             f"{units.text(blow.tension_at, 'length')} from the head",
         ),
+        ("hammer cushion", blow.hammer_cushion, ""),
         ("peak head force", units.text(blow.head_force, "force"), ""),
         ("blow energy", units.text(blow.blow_energy, "energy"), "ram weight times stroke"),
         (
@@ -72,9 +74,25 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
         Column("remark", "remark", wrap=60),
     )
     parts = [wrapped(head, width), Table(columns, tuple(rows)).to_text(width)]
-    lines = [*basis(job, units), CAUTION]
+    lines = [*blow_notices(blow, job, units), *basis(job, units), CAUTION]
     parts.append("\n".join(wrapped(line, width, "  ") for line in lines))
     return "\n\n".join(parts)
+
+
+def blow_notices(blow: Blow, job: Job, units: Units) -> list[str]:
+    """Return what lies outside the hammer's settings or the job's cushions, in words."""
+    notices = []
+    hammer, stroke = blow.hammer, blow.stroke
+    if stroke < hammer.stroke_min * (1 - 1e-9):
+        least = units.text(hammer.stroke_min, "stroke")
+        notices.append(f"Notice: the stroke is below the hammer's least of {least}.")
+    elif hammer.stroke_step and not is_setting(hammer, stroke):
+        step = units.text(hammer.stroke_step, "stroke")
+        notices.append(f"Notice: the stroke lies between the hammer's steps of {step}.")
+    if blow.cushion and job.cushions and blow.cushion not in job.cushions.cushions():
+        words = units.cushion_words(blow.cushion)
+        notices.append(f"Notice: {words} are not among the job's cushions.")
+    return notices
 
 
 def envelope_table(blow: Blow, units: Units) -> Table:

@@ -40,7 +40,8 @@ def main() -> None:
     print(f"matchup rank, first run with compilation: {first:.2f} s")
     print(f"matchup rank, warm, median of 5:          {warm:.2f} s")
     print(
-        f"matchup --help, median of 5:              {bare:.2f} s ({bare / python:.0f} x bare Python)"
+        f"matchup --help, median of 5:              {bare:.2f} s "
+        f"({bare / python:.0f} x bare Python)"
     )
 
 

@@ -138,7 +138,9 @@ def test_of_cushions_alike_in_all_the_first_of_the_catalogue_wins() -> None:
 
 
 @pytest.mark.parametrize("name", JOBS)
-def test_the_runner_up_is_the_softest_that_gains_five_points_for_five_percent_energy(name: str) -> None:
+def test_the_runner_up_is_the_softest_that_gains_five_points_for_five_percent_energy(
+    name: str,
+) -> None:
     job = JOBS[name]
     rig = Rig(job, 1)
     for hammer, option in enumerate(options(job)):
@@ -201,7 +203,8 @@ def test_the_fastest_plan_takes_more_energy_than_the_cheapest() -> None:
 
 def test_a_hammer_whose_blow_rate_is_unknown_still_gets_a_plan_for_the_objective_time() -> None:
     unknown = jobs.hydraulic(6.0, blow_rate_max=None)
-    option = options(jobs.small_job(hammers=(unknown,), objective="time"))[0]
+    known = jobs.hydraulic(6.0, name="known")
+    option = options(jobs.small_job(hammers=(unknown, known), objective="time"))[0]
     assert option.drives
     assert option.target.speed is None
     assert option.target.blow_rate is None
