@@ -165,7 +165,9 @@ class Chains:
     grounds : Grounds
         One row for each stage and static load.
     ground_of : (stages, hammers) int64 array
-        Row of `grounds`; -1 where the weight, ram included, exceeds the resistance: the pile runs.
+        Row of `grounds`; -1 where the weight exceeds the resistance: the pile runs.
+    weights : (hammers,) float64 array
+        Of the pile and all that stands on it, ram included. [N]
     hammers : tuple of Hammer
     stages : tuple of Stage
     gravity : float
@@ -176,6 +178,7 @@ class Chains:
     depth: Floats
     grounds: Grounds
     ground_of: Integers
+    weights: Floats
     hammers: tuple[Hammer, ...]
     stages: tuple[Stage, ...]
     gravity: float
@@ -204,12 +207,14 @@ def build_chains(
     bar, depth = cut_bar(pile_parts(pile), analysis.gravity, segments)
     strengths = [shaft_strengths(stage, pile.length, depth) for stage in stages]
     ground_of = np.full((len(stages), len(hammers)), -1, np.int64)
+    loads = [gravity * ((h.helmet_mass or 0.0) + h.frame_mass) for h in hammers]
+    rams = np.array([gravity * hammer.ram_mass for hammer in hammers])
+    weights = bar.weight.sum() + np.array(loads) + rams
     rows: dict[tuple[int, float], int] = {}
     settlements: list[Floats] = []
     of_row: list[int] = []
     for s, stage in enumerate(stages):
-        for h, hammer in enumerate(hammers):
-            load = gravity * ((hammer.helmet_mass or 0.0) + hammer.frame_mass)
+        for h, load in enumerate(loads):
             key = (s, load)
             if key not in rows:
                 settlement = _settle(stage, strengths[s], bar, load)
@@ -218,8 +223,8 @@ def build_chains(
                     settlements.append(settlement)
                     of_row.append(s)
             # A ram heavier than what is left of the resistance would push the pile on without end.
-            on_top = load + gravity * hammer.ram_mass + bar.weight.sum()
-            ground_of[s, h] = -1 if on_top >= stage.resistance and gravity else rows[key]
+            runs = gravity > 0 and weights[h] >= stage.resistance
+            ground_of[s, h] = -1 if runs else rows[key]
     nodes = depth.size
     strength = np.array([strengths[s] for s in of_row]).reshape(-1, nodes)
     quake = np.array([stages[s].shaft_quake for s in of_row]).reshape(-1, 1)
@@ -235,7 +240,7 @@ def build_chains(
         np.array(settlements).reshape(-1, nodes),
         analysis.damping == "smith",
     )
-    return Chains(bar, depth, grounds, ground_of, tuple(hammers), tuple(stages), gravity)
+    return Chains(bar, depth, grounds, ground_of, weights, tuple(hammers), tuple(stages), gravity)
 
 
 def _settle(stage: Stage, strength: Floats, bar: Bar, load: float) -> Floats | None:

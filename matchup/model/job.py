@@ -63,6 +63,45 @@ class Analysis:
 
 
 @dataclass(frozen=True, slots=True)
+class Course:
+    """The stages of one ground case in driving order; the last one is the target.
+
+    Parameters
+    ----------
+    case : str
+        Empty for stages given by hand.
+    stages : tuple of int
+        Places in ``job.stages``.
+    required : bool
+        Whether an option must manage it.
+    """
+
+    case: str
+    stages: tuple[int, ...]
+    required: bool = True
+
+    @property
+    def target(self) -> int:
+        """Place of the target in ``job.stages``."""
+        return self.stages[-1]
+
+
+@dataclass(frozen=True, slots=True)
+class Drive:
+    """What makes a job's stages stations of a whole drive and not moments chosen by hand.
+
+    The pile may run under its weight on the way, and the cushion ages by the blows that it took.
+
+    Parameters
+    ----------
+    required : tuple of str
+        Ground cases that an option must manage; empty means all.
+    """
+
+    required: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
 class Job:
     """A job.
 
@@ -77,10 +116,12 @@ class Job:
     hammer_cushions : tuple of HammerCushion
         Alternatives to the hammers' own; empty for those alone.
     stages : tuple of Stage
-        In driving order; the last one is the target.
+        In driving order within each ground case; the last one of a case is its target.
     limits : StressLimits
     search : Search
     analysis : Analysis
+    drive : Drive or None
+        None for stages given by hand.
     display : str
         ``metric`` or ``us``: units of tables.
     file : str or None
@@ -98,6 +139,7 @@ class Job:
     hammer_cushions: tuple[HammerCushion, ...] = ()
     search: Search = Search()
     analysis: Analysis = Analysis()
+    drive: Drive | None = None
     display: str = "metric"
     file: str | None = None
     notices: tuple[str, ...] = ()
@@ -111,6 +153,10 @@ class Job:
             names = [item.name for item in items]
             twice = sorted({n for n in names if names.count(n) > 1})
             rules.must(not twice, name, "must have different names", ", ".join(twice))
+        cases = {stage.case for stage in self.stages}
+        for case in self.drive.required if self.drive else ():
+            known = ", ".join(sorted(cases))
+            rules.must(case in cases, "ground.required", f"must be cases: {known}", case)
         rules.must(
             self.search.objective != "time" or any(h.blow_rate(h.stroke_max) for h in self.hammers),
             "search.objective",
@@ -133,3 +179,15 @@ class Job:
                 f"none for {hammer.name}",
             )
         rules.close()
+
+    @property
+    def courses(self) -> tuple[Course, ...]:
+        """The stages by ground case, in the order in which the cases first occur."""
+        stages: dict[str, list[int]] = {}
+        for place, stage in enumerate(self.stages):
+            stages.setdefault(stage.case, []).append(place)
+        required = self.drive.required if self.drive else ()
+        return tuple(
+            Course(case, tuple(places), not required or case in required)
+            for case, places in stages.items()
+        )

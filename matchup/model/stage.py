@@ -46,6 +46,8 @@ class Stage:
         straight in between, nothing outside. Empty means uniform over the penetration.
     case : str
         Ground case; empty for stages given by hand.
+    after_pause : float
+        Rest before this stage, at the same penetration as the stage before it; zero for none. [s]
     notes : tuple of str
         Which values are defaults, and their source.
     """
@@ -61,6 +63,7 @@ class Stage:
     toe_damping: float = TOE_DAMPING
     shaft_shape: tuple[tuple[float, float], ...] = ()
     case: str = ""
+    after_pause: float = 0.0
     notes: tuple[str, ...] = ()
 
     def __post_init__(self) -> None:
@@ -73,6 +76,7 @@ class Stage:
         rules.positive("toe_quake", self.toe_quake, "set")
         rules.not_negative("shaft_damping", self.shaft_damping, "damping")
         rules.not_negative("toe_damping", self.toe_damping, "damping")
+        rules.not_negative("after_pause", self.after_pause)
         depths = [depth for depth, _ in self.shaft_shape]
         shares = [share for _, share in self.shaft_shape]
         rules.must(

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
+from matchup.analysis.cells import is_setting
 from matchup.analysis.single import Blow
-from matchup.analysis.window import is_setting
 from matchup.model.job import Job
 from matchup.report.sentences import CAUTION, basis
 from matchup.report.shown import Units

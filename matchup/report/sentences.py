@@ -89,11 +89,11 @@ def _held_back(option: Option, units: Units) -> str:
     if option.verdict != REDUCED:
         return ""
     held = [
-        f"{units.text(plan.top, 'stroke')} at {plan.stage.name!r}"
+        f"{units.text(plan.stroke, 'stroke')} at {plan.stage.name!r}"
         for plan in option.plans
-        if plan.top is not None and plan.top < option.target.stroke
+        if plan.stroke < option.target.stroke
     ]
-    return f"; stroke at most {', '.join(held)}"
+    return f"; stroke kept to {', '.join(held)}"
 
 
 def _cured(cure: Cure | None, option: Option, units: Units) -> str:

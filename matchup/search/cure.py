@@ -7,12 +7,12 @@ from dataclasses import replace
 
 import numpy as np
 
+from matchup.analysis.cells import NO_SET, OPEN, RUNS, UNSOUND, Cells, job_demands
 from matchup.analysis.rig import Rig
-from matchup.analysis.window import NO_SET, OPEN, RUNS, UNSOUND, Cells, WindowFinder, job_demands
+from matchup.analysis.window import WindowFinder
 from matchup.model.cushion import CushionSpace
 from matchup.model.hammer import Hammer
 from matchup.search.option import (
-    DRIVES,
     NOT_REACHED,
     OVER_COMPRESSION,
     OVER_TENSION,
@@ -71,11 +71,7 @@ def _thicker(planner: Planner, failing: Sequence[Option], cures: dict[str, Cure]
     places = range(len(beyond.rig.stacks))
     beyond.look([(row, c) for row in range(len(failing)) for c in places])
     for row, option in enumerate(failing):
-        works = [
-            beyond.rig.stacks[c]
-            for c in places
-            if all(p.verdict == DRIVES for p in beyond.stage_plans(row, c))
-        ]
+        works = [beyond.rig.stacks[c] for c in places if beyond.works(row, c)]
         stack = min(works, key=lambda s: s.pile.thickness if s.pile else 0.0, default=None)
         cures[option.hammer.name] = Cure(stack=stack, stack_looked=True)
     return beyond.rig.spent
@@ -94,14 +90,13 @@ def _beyond(space: CushionSpace) -> CushionSpace:
 def _set_within(finder: WindowFinder, option: Option, cure: Cure) -> Cure:
     """Add the set at the largest stroke below which no limit breaks, at the failing stage."""
     cell = _failing_cell(finder.rig, option)
-    compression, tension, sound = finder.stresses(cell, np.array([0]))
-    demands = finder.demands
-    if not sound[0] or compression[0] > demands.compression or tension[0] > demands.tension:
+    lowest = np.zeros(1, np.int64)
+    # A stroke is within the limits whether or not it reaches the set.
+    loose = WindowFinder(finder.rig, finder.demands.without_set())
+    if loose.strike(cell, lowest).state[0] != OPEN:
         return cure
-    row = int(cell.hammer[0])
-    top = finder.tops(cell, finder.strokes[row][:1])
-    least, _ = finder.sets(cell, finder.setting_numbers(cell.hammer, top))
-    return replace(cure, set_within=float(least[0]), stroke_within=float(top[0]))
+    top = loose.strike(cell, loose.tops(cell, lowest))
+    return replace(cure, set_within=float(top.set[0]), stroke_within=float(top.stroke[0]))
 
 
 def _failing_cell(rig: Rig, option: Option) -> Cells:

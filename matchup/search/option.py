@@ -16,6 +16,8 @@ REFUSES = "refuses"
 OVER_TENSION = "overstresses in tension"
 OVER_COMPRESSION = "overstresses in compression"
 PILE_RUNS = "pile runs"
+GOES_DOWN = "goes down under its weight"
+"""Of a station on the way of a drive; not a failure."""
 NOT_ANALYSED = "could not be analysed"
 
 VERDICTS = (
@@ -30,24 +32,49 @@ VERDICTS = (
 )
 """Worst news first."""
 CAN_DRIVE = (DRIVES, REDUCED)
+FINE = (DRIVES, GOES_DOWN)
+"""Of one stage."""
+
+
+@dataclass(frozen=True, slots=True)
+class Taken:
+    """What a drive took down to a station.
+
+    Parameters
+    ----------
+    blows : float
+        [-]
+    seconds : float or None
+        Of driving, pauses left out; None where a blow rate is not known. [s]
+    on_cushion : float
+        Blows that the pile cushion has taken. [-]
+    cushions : int
+        Pile cushions used so far, this one included.
+    """
+
+    blows: float = 0.0
+    seconds: float | None = 0.0
+    on_cushion: float = 0.0
+    cushions: int = 1
 
 
 @dataclass(frozen=True, slots=True)
 class StagePlan:
     """The stroke planned at one stage, and what it does.
 
-    Where a stage fails, the stroke is the one that explains it: the largest if the set is not
-    reached, else the least that reaches the set.
+    At a target it is the one that the objective asks for; on the way the one nearest to the
+    target's that works. Where a stage fails, it is the one that explains it: the largest if the
+    set is not reached, else the least that reaches the set.
 
     Parameters
     ----------
     stage : Stage
+    at : int
+        Setting number of the stroke.
     stroke : float
         [m]
-    low : float
-        Lowest stroke of the window. [m]
-    top : float or None
-        Highest stroke of the window; None where it was not looked for. [m]
+    low, top : float or None
+        Ends of the connected strokes around it that work; None where not looked for. [m]
     set : float
         Least over the wear states. [m]
     compression, tension : float
@@ -59,7 +86,7 @@ class StagePlan:
     blow_rate : float or None
         At this stroke; None where the catalogue does not say. [1/s]
     verdict : str
-        Of this stage alone; `DRIVES` where its window is open.
+        Of this stage alone; `DRIVES` where the stroke works.
     shortfall : float
         How far the stage is from working: the largest excess over what is needed, the reserve kept
         back; infinite where no blow can tell. [-]
@@ -67,11 +94,16 @@ class StagePlan:
         Whether tension closes the least stroke that reaches the set, and a window opens above.
     why : str
         What went wrong where the verdict is `NOT_ANALYSED`.
+    wear : str
+        The one wear state planned for; empty for every one asked for.
+    taken : Taken or None
+        In a drive, what it took to get here from the first station.
     """
 
     stage: Stage
+    at: int
     stroke: float
-    low: float
+    low: float | None
     top: float | None
     set: float
     compression: float
@@ -85,6 +117,8 @@ class StagePlan:
     shortfall: float
     lifted: bool = False
     why: str = ""
+    wear: str = ""
+    taken: Taken | None = None
 
     @property
     def set_share(self) -> float:
@@ -144,6 +178,10 @@ class Option:
         Cushions.
     plans : tuple of StagePlan
         In the order of the stages; for a miss only those looked at until one failed.
+    target : StagePlan
+        The plan at the target; in a drive, of the required ground case that costs the most.
+    cost : float
+        What the objective makes of it; the least is the best, infinite for a miss.
     failing : StagePlan or None
         The stage that fails.
     runner_up : Option or None
@@ -167,6 +205,8 @@ class Option:
     governs: str
     stack: Stack
     plans: tuple[StagePlan, ...]
+    target: StagePlan
+    cost: float
     failing: StagePlan | None = None
     runner_up: Option | None = None
     certificate: str = ""
@@ -179,11 +219,6 @@ class Option:
     def drives(self) -> bool:
         """Whether the hammer can drive the pile."""
         return self.verdict in CAN_DRIVE
-
-    @property
-    def target(self) -> StagePlan:
-        """The plan of the target stage."""
-        return self.plans[-1]
 
     @property
     def compression_use(self) -> float:

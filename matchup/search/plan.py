@@ -1,8 +1,9 @@
 """Choose the best plan of every hammer.
 
-For every hammer, cushion and stage the window of strokes is found exactly. The target stage comes
-first, since it asks for the larger set; a cushion that fails a stage is dropped. Small cushion
-spaces are looked at whole; in large ones the optimiser proposes which cushions to look at.
+For every hammer and stack of cushions the windows at the target are found exactly. They tell what
+the stack costs, so the stages on the way are planned for the cheapest stack first, and for the
+next only where one fails. Small cushion spaces are looked at whole; in large ones the optimiser
+proposes which cushions to look at.
 """
 
 from __future__ import annotations
@@ -10,25 +11,16 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 from dataclasses import replace
-from typing import Any
 
 import numpy as np
 
+from matchup.analysis.cells import OPEN, Cells, job_demands
 from matchup.analysis.rig import Rig
-from matchup.analysis.window import (
-    COMPRESSION,
-    NO_SET,
-    OPEN,
-    RUNS,
-    TENSION,
-    UNSOUND,
-    Cells,
-    WindowFinder,
-    Windows,
-    job_demands,
-)
+from matchup.analysis.window import WindowFinder
 from matchup.search.option import (
     DRIVES,
+    FINE,
+    GOES_DOWN,
     NOT_ANALYSED,
     NOT_REACHED,
     OVER_COMPRESSION,
@@ -40,15 +32,8 @@ from matchup.search.option import (
     Option,
     StagePlan,
 )
+from matchup.search.way import Walk, stage_plan, walk
 
-VERDICT_OF = {
-    RUNS: PILE_RUNS,
-    UNSOUND: NOT_ANALYSED,
-    NO_SET: NOT_REACHED,
-    COMPRESSION: OVER_COMPRESSION,
-    TENSION: OVER_TENSION,
-    OPEN: DRIVES,
-}
 GOVERNS = {
     PILE_RUNS: "weight",
     NOT_ANALYSED: "analysis",
@@ -66,8 +51,6 @@ LARGEST_WHOLE_SPACE = 60
 
 Pair = tuple[int, int]
 """Hammer and stack."""
-Key = tuple[int, ...]
-"""Stage, hammer and stack."""
 
 
 class Planner:
@@ -81,29 +64,35 @@ class Planner:
     def __init__(self, rig: Rig):
         self.rig = rig
         self.finder = WindowFinder(rig, job_demands(rig))
-        self.last = len(rig.job.stages) - 1
-        self._plans: dict[Key, StagePlan] = {}
-        self._looked: dict[int, list[int]] = {h: [] for h in range(len(rig.job.hammers))}
+        self.courses = rig.job.courses
+        self._targets: dict[Pair, tuple[StagePlan, ...]] = {}
+        self._ways: dict[Pair, tuple[StagePlan, ...]] = {}
+        self._objective = rig.job.search.objective
+        whole_drive_counts = rig.job.drive is not None and self._objective == "time"
+        self._cost_is_known_at_target = not whole_drive_counts
+
+    # --- looking at cushions --------------------------------------------------------------------
 
     def options(self) -> list[Option]:
         """Return the best option, or the nearest miss, of every hammer in catalogue order."""
         hammers = range(len(self.rig.job.hammers))
         stacks = range(len(self.rig.stacks))
-        certificates: dict[int, str] = {}
         if len(stacks) <= LARGEST_WHOLE_SPACE:
-            self.look([(h, c) for h in hammers for c in stacks])
+            self._look_at_targets([(h, c) for h in hammers for c in stacks])
             certificates = dict.fromkeys(hammers, self._whole())
         else:
             certificates = self._study()
-        chosen = {h: self._choose(h) for h in hammers}
-        self._find_tops([(h, c) for h, best in chosen.items() for c in best])
+        best = self._best()
+        softer = self._softer(best)
+        shown = [pair for pair in (*best.items(), *softer.items()) if pair[1] is not None]
+        self._find_ends([(h, c) for h, c in shown if c is not None])
         return [
             replace(
-                self._option(h, best) if best else self._miss(h),
+                self._miss(h) if c is None else self._option(h, c, softer.get(h)),
                 certificate=certificates[h],
                 analyses=int(self.rig.spent_on[h]),
             )
-            for h, best in chosen.items()
+            for h, c in best.items()
         ]
 
     def _whole(self) -> str:
@@ -117,7 +106,7 @@ class Planner:
 
         seed = self.rig.job.search.seed
         hammers = range(len(self.rig.job.hammers))
-        running = [h for h in hammers if any(self.rig.runs(s, h) for s in range(self.last + 1))]
+        running = [h for h in hammers if self._runs(h)]
         self.look([(h, 0) for h in running])
         studies = {
             h: Study(self.rig.kinds, self.rig.sizes, seed + h) for h in hammers if h not in running
@@ -138,107 +127,91 @@ class Planner:
         }
 
     def look(self, pairs: Iterable[Pair]) -> None:
-        """Find the windows of pairs not yet looked at, stage by stage, dropping those that fail."""
-        fresh = [(h, c) for h, c in dict.fromkeys(pairs) if c not in self._looked[h]]
+        """Plan all stages of pairs not yet looked at; those that fail the target stop there."""
+        pairs = list(dict.fromkeys(pairs))
+        self._look_at_targets(pairs)
+        self._look_on_the_way([pair for pair in pairs if self._target_works(*pair)])
+
+    def _runs(self, hammer: int) -> list[int]:
+        """Return the stages at which the pile must not run and does: at none a blow can help."""
+        stages = range(len(self.rig.job.stages))
+        if self.rig.job.drive is not None:
+            stages = [course.target for course in self.courses if course.required]  # type: ignore[assignment]
+        return [stage for stage in stages if self.rig.runs(stage, hammer)]
+
+    def _look_at_targets(self, pairs: list[Pair]) -> None:
+        """Find the windows at the targets of pairs not yet looked at."""
+        fresh = [pair for pair in pairs if pair not in self._targets]
+        if not fresh:
+            return
+        per_pair = []
         for h, c in fresh:
-            self._looked[h].append(c)
-        # Weight against resistance takes no blow, and rules a hammer out on any cushion.
-        for stage in range(self.last + 1):
-            self._look_at_stage(stage, [pair for pair in fresh if self.rig.runs(stage, pair[0])])
-            fresh = [pair for pair in fresh if not self.rig.runs(stage, pair[0])]
-        for stage in (self.last, *range(self.last)):
-            self._look_at_stage(stage, fresh)
-            fresh = [(h, c) for h, c in fresh if self._plans[stage, h, c].verdict == DRIVES]
-        if self.rig.job.search.objective == "time":
-            self._hasten(fresh)
-
-    def _look_at_stage(self, stage: int, pairs: list[Pair]) -> None:
-        if not pairs:
-            return
-        hammer, stack = np.array(pairs).T
-        windows = self.finder.find(Cells(np.full(hammer.size, stage), hammer, stack))
-        for row, (h, c) in enumerate(pairs):
-            self._plans[stage, h, c] = self._stage_plan(windows, row)
-
-    def _stage_plan(self, windows: Windows, row: int) -> StagePlan:
-        stage, hammer, stack = key = tuple(int(column[row]) for column in windows.cells)
-        stroke = float(windows.low[row])
-        state = int(windows.state[row])
-        verdict = VERDICT_OF[state]
-        if verdict == NOT_REACHED and stage != self.last:
-            verdict = REFUSES
-        does = self._does(
-            key, stroke, windows.set[row], windows.compression[row], windows.tension[row]
-        )
-        untold = state in (RUNS, UNSOUND)
-        return StagePlan(
-            stage=self.rig.job.stages[stage],
-            low=stroke,
-            top=None,
-            verdict=verdict,
-            shortfall=math.inf if untold else self._shortfall(stage, does),
-            lifted=bool(windows.lifted[row]),
-            why=self.rig.why_unsound(stage, hammer, stack) if state == UNSOUND else "",
-            **does,
-        )
-
-    def _does(
-        self, key: Key, stroke: float, set_: float, compression: float, tension: float
-    ) -> dict[str, Any]:
-        """Return what a stroke does, as the fields of a `StagePlan`."""
-        stage, hammer, stack = key
-        job = self.rig.job
-        runs = self.rig.runs(stage, hammer)
-        return {
-            "stroke": stroke,
-            "set": float(set_),
-            "compression": float(compression),
-            "tension": float(tension),
-            "compression_use": float(compression) / job.limits.compression,
-            "tension_use": float(tension) / job.limits.tension,
-            "blow_energy": job.hammers[hammer].blow_energy(stroke),
-            "blow_rate": job.hammers[hammer].blow_rate(stroke),
-            "transferred": math.nan if runs else self._transferred(stage, hammer, stack, stroke),
-        }
-
-    def _shortfall(self, stage: int, does: dict[str, Any]) -> float:
-        """Return the largest excess over what is demanded, the reserve kept back [-]."""
-        demands = self.finder.demands
-        needed, reached = float(demands.set_needed[stage]), does["set"]
-        short = needed / reached if reached > 0 else 1e9
-        squeezed = does["compression"] / demands.compression
-        return float(max(short, squeezed, does["tension"] / demands.tension)) - 1
-
-    def _transferred(self, stage: int, hammer: int, stack: int, stroke: float) -> float:
-        wears = len(self.rig.wears)
-        same = (np.full(wears, stage), np.full(wears, hammer), np.full(wears, stack))
-        answers = self.rig.answer(*same, np.arange(wears), np.full(wears, stroke))
-        return float(answers.transferred.min())
-
-    def _hasten(self, pairs: list[Pair]) -> None:
-        """Move each plan to the highest stroke of its window, where the pile goes in fastest.
-
-        The set grows at least in proportion to the stroke, and the blow rate falls at most in
-        inverse proportion to it, so their product is largest at the top.
-        """
-        if not pairs:
-            return
-        self._find_tops(pairs)
-        keys = [(s, h, c) for s in range(self.last + 1) for h, c in pairs]
+            # Weight against resistance takes no blow, and rules a hammer out on any cushion.
+            stages = self._runs(h)[:1] or [course.target for course in self.courses]
+            per_pair.append([(stage, h, c) for stage in stages])
+        keys = [key for keys in per_pair for key in keys]
         cells = Cells(*np.array(keys).T)
-        tops = np.array([self._plans[key].top for key in keys], float)
-        at = self.finder.setting_numbers(cells.hammer, tops)
-        sets, _ = self.finder.sets(cells, at)
-        compression, tension, _ = self.finder.stresses(cells, at)
-        for row, key in enumerate(keys):
-            does = self._does(key, float(tops[row]), sets[row], compression[row], tension[row])
-            self._plans[key] = replace(
-                self._plans[key], shortfall=self._shortfall(key[0], does), **does
-            )
+        found = self.finder.find(cells)
+        if self._objective == "time":
+            # The pile goes in fastest at the highest stroke: the set grows at least in proportion
+            # to it, and the blow rate falls at most in inverse proportion.
+            works = np.flatnonzero(found.state == OPEN)
+            if works.size:
+                some = cells.take(works)
+                tops = self.finder.tops(some, found.at[works])
+                found.put(works, self.finder.strike(some, tops))
+        row = 0
+        for pair, keys_of_pair in zip(fresh, per_pair, strict=True):
+            rows = range(row, row + len(keys_of_pair))
+            self._targets[pair] = tuple(stage_plan(self.finder, found, r) for r in rows)
+            row += len(keys_of_pair)
+
+    def _look_on_the_way(self, pairs: list[Pair]) -> None:
+        """Plan the stages before the targets of pairs not yet planned."""
+        fresh = [pair for pair in pairs if pair not in self._ways]
+        walks = [w for pair in fresh for w in self._walks(*pair)]
+        walk(self.finder, walks)
+        for pair in fresh:
+            plans = [p for w in walks if (w.hammer, w.stack) == pair for p in w.plans]
+            order = {stage.name: place for place, stage in enumerate(self.rig.job.stages)}
+            self._ways[pair] = tuple(sorted(plans, key=lambda p: order[p.stage.name]))
+
+    def _walks(self, hammer: int, stack: int) -> list[Walk]:
+        last = int(self.finder.last_settings(np.array([hammer]))[0])
+        return [
+            Walk(course, hammer, stack, target, last if self._objective == "time" else target.at)
+            for course, target in zip(self.courses, self._targets[hammer, stack], strict=True)
+        ]
+
+    def stage_plans(self, hammer: int, stack: int) -> tuple[StagePlan, ...]:
+        """Return the plans of the stages looked at, in the order of the stages."""
+        return self._ways.get((hammer, stack), self._targets[hammer, stack])
+
+    def target_plan(self, hammer: int, stack: int) -> StagePlan:
+        """Return the plan at the target of the required course that costs the most."""
+        targets = self._required(self._targets[hammer, stack])
+        return max(targets, key=lambda plan: (plan_cost(plan, self._objective), plan.shortfall))
+
+    def _required(self, plans: Iterable[StagePlan]) -> list[StagePlan]:
+        """Return the plans of required courses."""
+        names = {course.case for course in self.courses if course.required}
+        return [plan for plan in plans if plan.stage.case in names]
+
+    # --- what a pair is worth -------------------------------------------------------------------
 
     def cost(self, hammer: int, stack: int) -> float:
-        """Return what the objective makes of a pair at the target stage; the least is the best."""
-        return plan_cost(self._plans[self.last, hammer, stack], self.rig.job.search.objective)
+        """Return what the objective makes of a pair; the least is the best."""
+        if self._cost_is_known_at_target or (hammer, stack) not in self._ways:
+            return plan_cost(self.target_plan(hammer, stack), self._objective)
+        taken = [plan.taken for plan in self._required(self._ways[hammer, stack]) if plan.taken]
+        return max((t.seconds if t.seconds is not None else math.inf) for t in taken)
+
+    def works(self, hammer: int, stack: int) -> bool:
+        """Return whether a pair has been looked at, and works at all stages of every course."""
+        return (hammer, stack) in self._ways and self._failing(hammer, stack) is None
+
+    def _target_works(self, hammer: int, stack: int) -> bool:
+        return all(p.verdict == DRIVES for p in self._required(self._targets[hammer, stack]))
 
     def _excess(self, hammer: int, stack: int) -> float:
         """Return how far a pair is from working; feasible at <= 0."""
@@ -249,24 +222,9 @@ class Planner:
 
     def _failing(self, hammer: int, stack: int) -> StagePlan | None:
         """Return the failing stage with the worst news, or None where all stages work."""
-        failing = [p for p in self.stage_plans(hammer, stack) if p.verdict != DRIVES]
+        plans = self._required(self.stage_plans(hammer, stack))
+        failing = [plan for plan in plans if plan.verdict not in FINE]
         return min(failing, key=lambda p: VERDICTS.index(p.verdict), default=None)
-
-    def _choose(self, hammer: int) -> list[int]:
-        """Return the best of the working stacks, and the softer runner-up if there is one."""
-        working = [c for c in self._looked[hammer] if self._failing(hammer, c) is None]
-        if not working:
-            return []
-        best = min(working, key=lambda c: self._merit(hammer, c))
-        hard = self._uses(hammer, best)
-        softer = []
-        for c in working:
-            uses = self._uses(hammer, c)
-            gains = [before - after for before, after in zip(hard, uses, strict=True)]
-            affordable = self.cost(hammer, c) <= RUNNER_UP_COST * self.cost(hammer, best)
-            if affordable and min(gains) >= 0 and max(gains) >= RUNNER_UP_GAIN:
-                softer.append(c)
-        return [best, *sorted(softer, key=lambda c: (max(self._uses(hammer, c)), c))[:1]]
 
     def _merit(self, hammer: int, stack: int) -> tuple[float, ...]:
         """Ties of cost go to the thinner cushion, then lower compression, then catalogue order.
@@ -275,59 +233,141 @@ class Planner:
         """
         pile = self.rig.stacks[stack].pile
         thickness = (pile.sheets or pile.thickness) if pile else 0
-        target = self._plans[self.last, hammer, stack]
-        return (self.cost(hammer, stack), thickness, target.compression, stack)
+        compression = self.target_plan(hammer, stack).compression
+        return (self.cost(hammer, stack), thickness, compression, stack)
 
     def _uses(self, hammer: int, stack: int) -> tuple[float, float]:
         """Return the worst uses of both stress limits over the stages."""
-        plans = self.stage_plans(hammer, stack)
+        plans = self._required(self.stage_plans(hammer, stack))
         return max(p.compression_use for p in plans), max(p.tension_use for p in plans)
 
-    def stage_plans(self, hammer: int, stack: int) -> tuple[StagePlan, ...]:
-        """Return the plans of the stages looked at, in driving order."""
-        looked = (self._plans.get((s, hammer, stack)) for s in range(self.last + 1))
-        return tuple(plan for plan in looked if plan is not None)
+    # --- choosing -------------------------------------------------------------------------------
 
-    def _find_tops(self, pairs: list[Pair]) -> None:
-        """Scan windows upwards for their ends."""
-        stages = range(self.last + 1)
-        keys = [(s, h, c) for s in stages for h, c in pairs if self._plans[s, h, c].top is None]
+    def _best(self) -> dict[int, int | None]:
+        """Return the best working stack of every hammer, None where there is none.
+
+        The cheapest stack at the target is planned first. Where it works at every stage it is the
+        best; else the next one is, until none is left.
+        """
+        queues: dict[int, list[int]] = {}
+        for h, c in self._targets:
+            queue = queues.setdefault(h, [])
+            if self._target_works(h, c):
+                queue.append(c)
+        for h, queue in queues.items():
+            queue.sort(key=lambda c: self._merit(h, c))
+        best: dict[int, int | None] = dict.fromkeys(sorted(queues), None)
+        at_once = 1 if self._cost_is_known_at_target else len(self.rig.stacks)
+        while going := [h for h, queue in queues.items() if queue]:
+            batch = {h: [queues[h].pop(0) for _ in queues[h][:at_once]] for h in going}
+            self._look_on_the_way([(h, c) for h, stacks in batch.items() for c in stacks])
+            for h, stacks in batch.items():
+                working = [c for c in stacks if self.works(h, c)]
+                if working:
+                    best[h] = min(working, key=lambda c: self._merit(h, c))
+                    queues[h].clear()
+        return best
+
+    def _softer(self, best: dict[int, int | None]) -> dict[int, int]:
+        """Return the softest of the stacks that gain enough for little, for every hammer."""
+        queues = {h: self._softer_at_target(h, c) for h, c in best.items() if c is not None}
+        found: dict[int, int] = {}
+        self._look_on_the_way([(h, c) for h, queue in queues.items() for c in queue])
+        for h, queue in queues.items():
+            hard = self._uses(h, best[h])  # type: ignore[arg-type]
+            gaining = [c for c in queue if self.works(h, c) and _gains(hard, self._uses(h, c))]
+            if gaining:
+                found[h] = min(gaining, key=lambda c: (max(self._uses(h, c)), c))
+        return found
+
+    def _softer_at_target(self, hammer: int, best: int) -> list[int]:
+        """Return the stacks that may be a runner-up, as far as the target tells."""
+        most = RUNNER_UP_COST * self.cost(hammer, best)
+        hard = self._uses(hammer, best)
+        return [
+            c
+            for h, c in self._targets
+            if h == hammer
+            and c != best
+            and self._target_works(h, c)
+            and self.cost(h, c) <= most
+            and all(
+                use <= limit
+                for plan in self._required(self._targets[h, c])
+                for use, limit in zip((plan.compression_use, plan.tension_use), hard, strict=True)
+            )
+        ]
+
+    def _find_ends(self, pairs: list[Pair]) -> None:
+        """Find the ends of the windows around the planned strokes of pairs.
+
+        Of a drive's stages only the targets', since it has too many others.
+        """
+        keys = [
+            (self.rig.job.stages.index(plan.stage), *pair)
+            for pair in pairs
+            for plan in self._ways[pair]
+            if plan.verdict == DRIVES and (self.rig.job.drive is None or self._is_target(plan))
+        ]
         if not keys:
             return
-        lows = np.array([self._plans[key].low for key in keys])
-        tops = self.finder.tops(Cells(*np.array(keys).T), lows)
-        for key, top in zip(keys, tops, strict=True):
-            self._plans[key] = replace(self._plans[key], top=float(top))
+        plans = {pair: {p.stage.name: p for p in self._ways[pair]} for pair in pairs}
+        names = [self.rig.job.stages[stage].name for stage, _, _ in keys]
+        at = np.array([plans[h, c][name].at for name, (_, h, c) in zip(names, keys, strict=True)])
+        cells = Cells(*np.array(keys).T)
+        lows, tops = self.finder.ends(cells, at)
+        low, top = (self.finder.stroke(cells.hammer, ends).tolist() for ends in (lows, tops))
+        for row, (_, h, c) in enumerate(keys):
+            plan = plans[h, c][names[row]]
+            plans[h, c][names[row]] = replace(plan, low=low[row], top=top[row])
+        for pair in pairs:
+            self._ways[pair] = tuple(plans[pair].values())
 
-    def _option(self, hammer: int, chosen: list[int]) -> Option:
-        job = self.rig.job
-        plans = self.stage_plans(hammer, chosen[0])
-        target = plans[-1]
-        reduced = any(plan.top is not None and plan.top < target.stroke for plan in plans)
-        governs = "set"
-        if target.stroke > target.low:
-            governs = (
-                "stroke range" if target.stroke >= job.hammers[hammer].stroke_max else "stress"
-            )
-        elif target.lifted:
-            governs = "tension"
-        elif target.stroke <= job.hammers[hammer].stroke_min:
-            governs = "stroke range"
-        if governs == "stress":
-            larger = target.compression_use > target.tension_use
-            governs = "compression" if larger else "tension"
+    def _is_target(self, plan: StagePlan) -> bool:
+        stages = self.rig.job.stages
+        return any(stages[course.target] == plan.stage for course in self.courses)
+
+    # --- telling --------------------------------------------------------------------------------
+
+    def _option(self, hammer: int, stack: int, softer: int | None = None) -> Option:
+        plans = self.stage_plans(hammer, stack)
+        name = self.target_plan(hammer, stack).stage.name
+        target = next(plan for plan in plans if plan.stage.name == name)
         return Option(
-            hammer=job.hammers[hammer],
-            verdict=REDUCED if reduced else DRIVES,
-            governs=governs,
-            stack=self.rig.stacks[chosen[0]],
+            hammer=self.rig.job.hammers[hammer],
+            verdict=REDUCED if self._is_reduced(plans) else DRIVES,
+            governs=self._governs(hammer, target),
+            stack=self.rig.stacks[stack],
             plans=plans,
-            runner_up=self._option(hammer, chosen[1:]) if chosen[1:] else None,
+            target=target,
+            cost=self.cost(hammer, stack),
+            runner_up=None if softer is None else self._option(hammer, softer),
         )
+
+    def _is_reduced(self, plans: tuple[StagePlan, ...]) -> bool:
+        """Return whether the stroke must stay below the target's at a stage on the way."""
+        target = {plan.stage.case: plan for plan in plans if self._is_target(plan)}
+        return any(
+            plan.stroke < target[plan.stage.case].stroke
+            for plan in self._required(plans)
+            if plan.verdict != GOES_DOWN
+        )
+
+    def _governs(self, hammer: int, target: StagePlan) -> str:
+        """Return what keeps the target's stroke from being lower or, for speed, higher."""
+        strokes = self.finder.strokes[hammer]
+        if self._objective == "time":
+            if target.at == strokes.size - 1:
+                return "stroke range"
+            return "compression" if target.compression_use > target.tension_use else "tension"
+        if target.lifted:
+            return "tension"
+        return "stroke range" if target.at == 0 else "set"
 
     def _miss(self, hammer: int) -> Option:
         """Return the nearest miss: the stack whose failing stage falls short by the least."""
-        nearest = min(self._looked[hammer], key=lambda c: (self._excess(hammer, c), c))
+        stacks = [c for h, c in self._targets if h == hammer]
+        nearest = min(stacks, key=lambda c: (self._excess(hammer, c), c))
         failing = self._failing(hammer, nearest)
         assert failing is not None
         return Option(
@@ -336,12 +376,20 @@ class Planner:
             governs=GOVERNS[failing.verdict],
             stack=self.rig.stacks[nearest],
             plans=self.stage_plans(hammer, nearest),
+            target=self.target_plan(hammer, nearest),
+            cost=math.inf,
             failing=failing,
         )
 
 
+def _gains(hard: tuple[float, float], soft: tuple[float, float]) -> bool:
+    """Return whether no use of a stress limit rises and one falls enough."""
+    gains = [before - after for before, after in zip(hard, soft, strict=True)]
+    return min(gains) >= 0 and max(gains) >= RUNNER_UP_GAIN
+
+
 def plan_cost(plan: StagePlan, objective: str) -> float:
-    """Return what an objective makes of the target's plan; the least is the best.
+    """Return what an objective makes of a target's plan; the least is the best.
 
     ``energy``: blow energy [J]; ``time``: time to drive a metre, infinite where the blow rate is
     not known [s/m].

@@ -8,7 +8,7 @@ from matchup.analysis.rig import Rig, Tell
 from matchup.model.job import Job
 from matchup.search.cure import find_cures
 from matchup.search.option import Option, Ranking
-from matchup.search.plan import Planner, plan_cost
+from matchup.search.plan import Planner
 from matchup.search.reach import find_reach
 
 
@@ -32,7 +32,7 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
     failing = [option for option in options if not option.drives]
     return Ranking(
         job=job,
-        options=tuple(sorted(driving, key=lambda o: plan_cost(o.target, job.search.objective))),
+        options=tuple(sorted(driving, key=lambda option: option.cost)),
         rejected=tuple(sorted(failing, key=_shortfall)),
         analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
         runtime=time.perf_counter() - started,

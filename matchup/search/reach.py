@@ -8,8 +8,9 @@ from dataclasses import replace
 
 import numpy as np
 
+from matchup.analysis.cells import OPEN, Cells, job_demands
 from matchup.analysis.rig import Rig, Tell
-from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
+from matchup.analysis.window import WindowFinder
 from matchup.model.job import Job
 from matchup.model.stage import Stage
 from matchup.search.option import DRIVES, NOT_ANALYSED, PILE_RUNS, Option
@@ -54,16 +55,19 @@ def find_reach(
         return list(options), 0
     below = math.floor(math.log(1 / LOWEST) / math.log(FINENESS))
     ratios = HIGHEST ** (np.arange(-below, STEPS + 1) / STEPS)
-    stages = tuple(scaled(job.stages[-1], float(ratio)) for ratio in ratios)
+    targets = list({option.target.stage.name: option.target.stage for option in whole}.values())
+    stages = tuple(scaled(stage, float(ratio)) for stage in targets for ratio in ratios)
     hammers = tuple(option.hammer for option in whole)
-    rig = Rig(replace(job, stages=stages, hammers=hammers), workers, tell)
+    rig = Rig(replace(job, stages=stages, hammers=hammers, drive=None), workers, tell)
     finder = WindowFinder(rig, job_demands(rig))
+    # Place of each option's target, at once its resistance, among the scaled ones.
+    at_one = np.array([targets.index(o.target.stage) * ratios.size + below for o in whole])
     stack = np.array([rig.stacks.index(option.stack) for option in whole])
     works = np.array([option.target.verdict == DRIVES for option in whole])
     upward, downward = np.flatnonzero(works), np.flatnonzero(~works)
 
     def is_open(rows: Integers, at: Integers) -> Flags:
-        return np.asarray(finder.find(Cells(below + at, rows, stack[rows])).state == OPEN)
+        return np.asarray(finder.find(Cells(at_one[rows] + at, rows, stack[rows])).state == OPEN)
 
     closes = first_step(lambda r, n: ~is_open(upward[r], n), upward.size, STEPS, STRIDE)
     opens = first_step(lambda r, n: is_open(downward[r], -n), downward.size, below, STRIDE)

@@ -6,8 +6,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from matchup.analysis.rig import Rig
-from matchup.analysis.window import (
+from matchup.analysis.cells import (
     COMPRESSION,
     NO_SET,
     OPEN,
@@ -15,9 +14,10 @@ from matchup.analysis.window import (
     TENSION,
     UNSOUND,
     Cells,
-    WindowFinder,
     job_demands,
 )
+from matchup.analysis.rig import Rig
+from matchup.analysis.window import WindowFinder
 from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
@@ -107,19 +107,19 @@ def map_strokes(job: Job, hammer: Hammer, stage: Stage, workers: int | None = No
     at = np.tile(picked, shape[0])
     place = np.zeros(stack.size, np.int64)
     cells = Cells(place, place, stack)
-    sets, sound = finder.sets(cells, at)
-    compression, tension, sound_too = finder.stresses(cells, at)
-    state = finder.judge(place, sets, compression, tension, sound & sound_too)
+    struck = finder.strike(cells, at)
     return StrokeMap(
         job=job,
         hammer=hammer,
         stage=stage,
         stacks=rig.stacks,
         strokes=settings[picked],
-        states=tuple(tuple(STATE_OF[s] for s in row) for row in state.reshape(shape).tolist()),
-        sets=sets.reshape(shape),
-        compression_uses=(compression / job.limits.compression).reshape(shape),
-        tension_uses=(tension / job.limits.tension).reshape(shape),
+        states=tuple(
+            tuple(STATE_OF[s] for s in row) for row in struck.state.reshape(shape).tolist()
+        ),
+        sets=struck.set.reshape(shape),
+        compression_uses=(struck.compression / job.limits.compression).reshape(shape),
+        tension_uses=(struck.tension / job.limits.tension).reshape(shape),
         analyses=rig.spent,
     )
 
@@ -133,7 +133,7 @@ def _hidden_windows(finder: WindowFinder, picked: Integers) -> Integers:
     if not opened.size:
         return np.empty(0, np.int64)
     cells = Cells(place[opened], place[opened], stacks[opened])
-    first = finder.setting_numbers(cells.hammer, windows.low[opened])
-    last = finder.setting_numbers(cells.hammer, finder.tops(cells, windows.low[opened]))
+    first = windows.at[opened]
+    last = finder.tops(cells, first)
     after = np.searchsorted(picked, first)
     return np.unique(first[(after == picked.size) | (picked[after % picked.size] > last)])

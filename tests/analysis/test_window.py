@@ -7,9 +7,10 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from matchup.analysis import window
+from matchup.analysis import cells as window
+from matchup.analysis.cells import Cells, job_demands, settings
 from matchup.analysis.rig import Rig
-from matchup.analysis.window import Cells, WindowFinder, job_demands, settings
+from matchup.analysis.window import WindowFinder
 from matchup.model.job import Job
 from matchup.model.limits import stress_limits
 from tests import jobs
@@ -43,7 +44,7 @@ def all_cells(rig: Rig) -> Cells:
     return Cells(*(column.ravel() for column in np.indices(shape)))
 
 
-def find(job: Job, workers: int | None = 1) -> tuple[WindowFinder, window.Windows]:
+def find(job: Job, workers: int | None = 1) -> tuple[WindowFinder, window.Found]:
     rig = Rig(job, workers)
     finder = WindowFinder(rig, job_demands(rig))
     return finder, finder.find(all_cells(rig))
@@ -57,18 +58,17 @@ def test_the_window_found_is_the_one_of_a_scan_over_every_setting(name: str) -> 
     keep = 1 - job.search.reserve
     compression, tension = keep * job.limits.compression, keep * job.limits.tension
     opened = np.flatnonzero(windows.state == window.OPEN)
-    tops = np.full(windows.low.size, np.nan)
-    tops[opened] = finder.tops(
-        Cells(*(column[opened] for column in windows.cells)), windows.low[opened]
-    )
-    for row, place in enumerate(zip(*windows.cells, strict=True)):
+    tops = np.full(windows.stroke.size, np.nan)
+    some = windows.cells.take(opened)
+    tops[opened] = finder.stroke(some.hammer, finder.tops(some, windows.at[opened]))
+    for row, place in enumerate(zip(*windows.cells[:3], strict=True)):
         stage, hammer, stack = map(int, place)
         cell = jobs.scan(plain, stage, hammer, stack)
         needed = (1 + job.search.reserve) * job.stages[stage].set_needed
         expected = jobs.plain_window(cell, needed, compression, tension)
         where = f"{job.stages[stage].name}, {job.hammers[hammer].name}, stack {stack}"
         assert STATES[int(windows.state[row])] == expected.state, where
-        assert windows.low[row] == pytest.approx(cell.strokes[expected.at], rel=1e-12), where
+        assert windows.stroke[row] == pytest.approx(cell.strokes[expected.at], rel=1e-12), where
         assert bool(windows.lifted[row]) == expected.lifted, where
         assert windows.set[row] == pytest.approx(cell.sets[expected.at], rel=1e-9), where
         assert windows.compression[row] == pytest.approx(cell.compression[expected.at], rel=1e-9)
@@ -90,7 +90,7 @@ def test_where_stresses_hold_only_without_the_stroke_tolerance_the_window_is_clo
         cushions=jobs.space((jobs.PLYWOOD,), (6,), wears=("new",)), hammers=(jobs.hydraulic(3.0),)
     )
     _, windows = find(job)
-    stroke = windows.low[0]
+    stroke = windows.stroke[0]
     zero = np.zeros(3, np.int64)
     answers = Rig(job, 1).answer(zero, zero, zero, zero, stroke * np.array([0.98, 1.0, 1.02]))
     less, planned, more = answers.compression
@@ -98,7 +98,7 @@ def test_where_stresses_hold_only_without_the_stroke_tolerance_the_window_is_clo
     for limit, state in ((0.5 * (planned + more), window.COMPRESSION), (1.001 * more, window.OPEN)):
         limits = stress_limits(job.pile, compression_stress=limit, tension_stress=50e6)
         _, tried = find(replace(job, limits=limits))
-        assert tried.low[0] == stroke
+        assert tried.stroke[0] == stroke
         assert tried.state[0] == state
 
 
@@ -126,7 +126,7 @@ def test_a_set_reached_only_at_the_largest_stroke_between_two_steps_is_found() -
     assert cell.strokes == pytest.approx([0.1, 0.6, 1.1, 1.17])
     stage = replace(base.stages[0], set_needed=0.5 * (cell.sets[2] + cell.sets[3]))
     _, windows = find(replace(base, hammers=(odd,), stages=(stage,)))
-    assert windows.low[0] == 1.17
+    assert windows.stroke[0] == 1.17
 
 
 def test_no_blow_is_computed_twice(monkeypatch: pytest.MonkeyPatch) -> None:
@@ -142,7 +142,7 @@ def test_no_blow_is_computed_twice(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(rig_module, "strike", counted)
     finder, windows = find(CASES["concrete, tight limits"])
     opened = np.flatnonzero(windows.state == window.OPEN)
-    finder.tops(Cells(*(column[opened] for column in windows.cells)), windows.low[opened])
+    finder.tops(windows.cells.take(opened), windows.at[opened])
     finder.find(all_cells(finder.rig))
     # Told apart as the solver tells them apart: NaN stands for the hammer's own cushion.
     distinct = {tuple(-1.0 if x != x else x for x in blow) for blow in struck}
@@ -158,6 +158,6 @@ def test_windows_do_not_depend_on_the_number_of_workers() -> None:
         assert np.array_equal(column, same, equal_nan=True)
 
 
-def _columns(windows: window.Windows) -> list[np.ndarray]:
-    names = ("state", "low", "set", "compression", "tension", "lifted")
+def _columns(windows: window.Found) -> list[np.ndarray]:
+    names = ("state", "stroke", "set", "compression", "tension", "lifted")
     return [getattr(windows, name) for name in names]

@@ -7,8 +7,9 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from matchup.analysis.cells import OPEN, Cells, job_demands
 from matchup.analysis.rig import Rig
-from matchup.analysis.window import OPEN, Cells, WindowFinder, job_demands
+from matchup.analysis.window import WindowFinder
 from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job

@@ -1,0 +1,225 @@
+"""The way to a target: a stroke for every stage, and what a drive takes down to each station.
+
+On the way the stroke is kept as near to the target's as works. In a drive the pile may go down
+under its weight, and the pile cushion ages by the blows that it took.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass, field, replace
+from typing import Any
+
+import numpy as np
+
+from matchup.analysis.cells import (
+    COMPRESSION,
+    EVERY_WEAR,
+    NO_SET,
+    OPEN,
+    RUNS,
+    TENSION,
+    UNSOUND,
+    Cells,
+    Found,
+)
+from matchup.analysis.window import WindowFinder
+from matchup.model.job import Course
+from matchup.search.option import (
+    DRIVES,
+    FINE,
+    GOES_DOWN,
+    NOT_ANALYSED,
+    NOT_REACHED,
+    OVER_COMPRESSION,
+    OVER_TENSION,
+    PILE_RUNS,
+    REFUSES,
+    StagePlan,
+    Taken,
+)
+
+VERDICT_OF = {
+    RUNS: PILE_RUNS,
+    UNSOUND: NOT_ANALYSED,
+    NO_SET: NOT_REACHED,
+    COMPRESSION: OVER_COMPRESSION,
+    TENSION: OVER_TENSION,
+    OPEN: DRIVES,
+}
+
+
+def stage_plan(finder: WindowFinder, found: Found, row: int) -> StagePlan:
+    """Return what was found at a row as a plan."""
+    rig = finder.rig
+    stage, hammer, stack = (int(found.cells[column][row]) for column in range(3))  # type: ignore[index]
+    state = int(found.state[row])
+    limits, demands = rig.job.limits, finder.demands
+    stroke, set_ = float(found.stroke[row]), float(found.set[row])
+    compression, tension = float(found.compression[row]), float(found.tension[row])
+    short = demands.set_needed[stage] / set_ if set_ > 0 else 1e9
+    excess = max(short, compression / demands.compression, tension / demands.tension) - 1
+    wear = EVERY_WEAR if found.cells.wear is None else int(found.cells.wear[row])
+    return StagePlan(
+        stage=rig.job.stages[stage],
+        at=int(found.at[row]),
+        stroke=stroke,
+        low=None,
+        top=None,
+        set=set_,
+        compression=compression,
+        tension=tension,
+        compression_use=compression / limits.compression,
+        tension_use=tension / limits.tension,
+        blow_energy=rig.job.hammers[hammer].blow_energy(stroke),
+        transferred=float(found.transferred[row]),
+        blow_rate=rig.job.hammers[hammer].blow_rate(stroke),
+        verdict=VERDICT_OF[state],
+        shortfall=math.inf if state in (RUNS, UNSOUND) else float(excess),
+        lifted=bool(found.lifted[row]),
+        why=rig.why_unsound(stage, hammer, stack) if state == UNSOUND else "",
+        wear="" if wear == EVERY_WEAR else rig.wears[wear],
+    )
+
+
+@dataclass(slots=True)
+class Walk:
+    """One hammer and stack on its way along a course.
+
+    Parameters
+    ----------
+    course : Course
+    hammer, stack : int
+        Places in a rig.
+    target : StagePlan
+        Planned already, for every wear state asked for: nobody knows how worn the cushion is then.
+    wanted : int
+        Setting number to keep as near to as works.
+    plans : list of StagePlan
+        Filled on the way, until a stage fails.
+    taken : Taken
+    """
+
+    course: Course
+    hammer: int
+    stack: int
+    target: StagePlan
+    wanted: int
+    plans: list[StagePlan] = field(default_factory=list)
+    taken: Taken = field(default_factory=Taken)
+
+    @property
+    def goes_on(self) -> bool:
+        """Whether there is a stage ahead that can be got to."""
+        ahead = len(self.plans) < len(self.course.stages)
+        return ahead and (not self.plans or self.plans[-1].verdict in FINE)
+
+
+def walk(finder: WindowFinder, walks: Sequence[Walk]) -> None:
+    """Plan all stages of walks, side by side; each stops at a stage that fails.
+
+    Parameters
+    ----------
+    finder : WindowFinder
+    walks : sequence of Walk
+        Modified in place.
+    """
+    rig = finder.rig
+    while going := [one for one in walks if one.goes_on]:
+        stages = [one.course.stages[len(one.plans)] for one in going]
+        wears = [_wear_ahead(finder, one, stage) for one, stage in zip(going, stages, strict=True)]
+        on_way = [i for i, one in enumerate(going) if stages[i] != one.course.target]
+        planned = {i: one.target for i, one in enumerate(going)}
+        if on_way:
+            cells = Cells(
+                np.array([stages[i] for i in on_way]),
+                np.array([going[i].hammer for i in on_way]),
+                np.array([going[i].stack for i in on_way]),
+                np.array([wears[i] for i in on_way]),
+            )
+            found = finder.nearest(cells, np.array([going[i].wanted for i in on_way]))
+            for row, i in enumerate(on_way):
+                planned[i] = _on_the_way(stage_plan(finder, found, row), rig.job.drive is not None)
+        for i, one in enumerate(going):
+            plan = planned[i]
+            if rig.job.drive is not None:
+                plan = replace(plan, taken=_onward(finder, one, plan))
+                assert plan.taken is not None
+                one.taken = plan.taken
+            one.plans.append(plan)
+
+
+def _on_the_way(plan: StagePlan, in_drive: bool) -> StagePlan:
+    """Return the plan with what its state means on the way to a target."""
+    if plan.verdict == PILE_RUNS and in_drive:
+        none = dict.fromkeys(("compression", "tension", "compression_use", "tension_use"), 0.0)
+        none |= dict.fromkeys(("blow_energy", "transferred", "shortfall"), 0.0)
+        still: dict[str, Any] = {**none, "stroke": math.nan, "set": math.inf, "blow_rate": None}
+        return replace(plan, verdict=GOES_DOWN, **still)
+    if plan.verdict == NOT_REACHED:
+        return replace(plan, verdict=REFUSES)
+    return plan
+
+
+def _wear_ahead(finder: WindowFinder, one: Walk, stage: int) -> int:
+    """Return the wear state in which the cushion arrives at the next stage.
+
+    In a drive it follows from the blows taken down to the last station, and as many more as its
+    set foretells. Where the catalogue does not say how long a cushion stays new, and for stages
+    given by hand, every wear state asked for counts.
+    """
+    rig = finder.rig
+    cushion = rig.stacks[one.stack].pile
+    if rig.job.drive is None or cushion is None or cushion.material.new_for is None:
+        return EVERY_WEAR
+    ahead = _at_pause(one, stage, finder).on_cushion
+    if one.plans and one.plans[-1].verdict == DRIVES:
+        last = one.plans[-1]
+        ahead += (rig.job.stages[stage].penetration - last.stage.penetration) / last.set
+    wear = "new" if ahead < cushion.material.new_for else "worn"
+    return rig.wears.index(wear) if wear in rig.wears else EVERY_WEAR
+
+
+def _at_pause(one: Walk, stage: int, finder: WindowFinder) -> Taken:
+    """Return what was taken before a stage; a used-up cushion is replaced at a pause."""
+    cushion = finder.rig.stacks[one.stack].pile
+    paused = finder.rig.job.stages[stage].after_pause > 0
+    life = cushion.material.life if cushion else None
+    if paused and life is not None and one.taken.on_cushion >= life:
+        return replace(one.taken, on_cushion=0.0, cushions=one.taken.cushions + 1)
+    return one.taken
+
+
+def _onward(finder: WindowFinder, one: Walk, plan: StagePlan) -> Taken:
+    """Return what the drive takes down to a station.
+
+    Blows per length are taken to vary in a straight line between stations; where the pile goes
+    down under its weight it takes none, down to where the resistance between stations exceeds it.
+    """
+    stage = one.course.stages[len(one.plans)]
+    taken = _at_pause(one, stage, finder)
+    if not one.plans or plan.verdict not in FINE or plan.verdict == GOES_DOWN:
+        return taken
+    last = one.plans[-1]
+    length = plan.stage.penetration - last.stage.penetration
+    if last.verdict == GOES_DOWN:
+        weight = finder.rig.chains.weights[one.hammer]
+        low, high = last.stage.resistance, plan.stage.resistance
+        length *= 1 - (weight - low) / (high - low) if high > low else 1
+        blows = length / plan.set
+        seconds = None if plan.blow_rate is None else blows / plan.blow_rate
+    else:
+        halves = (0.5 * length / last.set, 0.5 * length / plan.set)
+        blows = sum(halves)
+        rates = (last.blow_rate, plan.blow_rate)
+        seconds = None
+        if rates[0] is not None and rates[1] is not None:
+            seconds = halves[0] / rates[0] + halves[1] / rates[1]
+    known = taken.seconds is not None and seconds is not None
+    return replace(
+        taken,
+        blows=taken.blows + blows,
+        seconds=taken.seconds + seconds if known else None,  # type: ignore[operator]
+        on_cushion=taken.on_cushion + blows,
+    )
