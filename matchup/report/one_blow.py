@@ -49,7 +49,7 @@ def _figures(blow: Blow, units: Units) -> Table:
             f"{share_text(blow.tension_use)} of the limit, "
             f"{units.text(blow.tension_at, 'length')} from the head",
         ),
-        ("hammer cushion", units.retold(blow.hammer_cushion), ""),
+        ("hammer cushion", "", units.retold(blow.hammer_cushion)),
         ("peak head force", units.text(blow.head_force, "force"), ""),
         ("blow energy", units.text(blow.blow_energy, "energy"), "ram weight times stroke"),
         (

@@ -27,7 +27,13 @@ DIGITS = {
     ("mass", "metric"): 0,
     ("mass", "us"): 0,
 }
-TOLD_IN = {"mm": "thickness", "GPa": "modulus", "kg/m3": "density", "s/m": "damping"}
+TOLD_IN = {
+    "mm": "thickness",
+    "cm2": "area",
+    "GPa": "modulus",
+    "kg/m3": "density",
+    "s/m": "damping",
+}
 """Units in which readers tell of values, and the quantity that each stands for."""
 MOST_DIGITS = 3
 """Decimals more than usual, at most, to tell a value from its bound."""
