@@ -75,7 +75,7 @@ class _Grid:
         room = max(1, width - margin)
         step = max(1, min(WIDEST_STEP, room // found.strokes.size))
         shown = _columns(found, room // step)
-        lines = [" " * margin + self._ruler(shown, step)]
+        lines = [" " * margin + self._ruler(shown, step, room)]
         lines += [
             f"{label:<{margin}}" + "".join(f"{SIGNS[row[i]]:<{step}}" for i in shown)
             for label, row in zip(labels, found.states, strict=True)
@@ -87,14 +87,15 @@ class _Grid:
         """Return the grid as it stands on a terminal."""
         return f"<pre>{html.escape(self.to_text(WIDTH_IN_NOTEBOOK))}</pre>"
 
-    def _ruler(self, shown: Sequence[int], step: int) -> str:
+    def _ruler(self, shown: Sequence[int], step: int, room: int) -> str:
         """Return stroke labels over every so many columns that they stand apart."""
         every = -(-LABEL_WIDTH // step)
-        wide = every * step
-        return "".join(
-            f"{self.units.value(float(self.found.strokes[i]), 'stroke'):<{wide}.2f}"
+        labels = [
+            f"{self.units.value(float(self.found.strokes[i]), 'stroke'):.2f}"
             for i in shown[::every]
-        )
+        ]
+        ruler = "".join(f"{label:<{every * step}}" for label in labels).rstrip()
+        return ruler if len(ruler) <= room else ruler[: -len(labels[-1])]
 
     def _legend(self, shown: int) -> str:
         seen = {state for row in self.found.states for state in row}
