@@ -6,10 +6,10 @@ quantity is given, a string with its unit is accepted too.
 
 from __future__ import annotations
 
-import html
 import os
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
@@ -24,17 +24,12 @@ from matchup.model.selection import (
     select_cell,
     select_hammer,
 )
-from matchup.report.document import blow_document
-from matchup.report.mapped import map_document, map_table, map_text
-from matchup.report.one_blow import blow_text, envelope_table, trace_table
-from matchup.report.ranked import (
-    check_document,
-    check_text,
-    options_table,
-    ranking_document,
-    ranking_text,
-    schedule_table,
-)
+from matchup.report.document import blow_document, check_document, ranking_document
+from matchup.report.mapped import map_document, map_page, map_table
+from matchup.report.one_blow import blow_page, envelope_table, trace_table
+from matchup.report.options import options_table, schedule_table
+from matchup.report.page import Page, page_html, page_text
+from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table
 from matchup.search.option import Option, Ranking
@@ -60,8 +55,26 @@ __all__ = [
 JobLike = Job | str | os.PathLike[str]
 
 
+class _Shown:
+    """What all results have in common: a page that becomes text and HTML."""
+
+    def page(self, display: str | None = None) -> Page:
+        """Return the result as blocks of prose and tables."""
+        raise NotImplementedError
+
+    def to_text(self, display: str | None = None, width: int = 100) -> str:
+        """Return the result as it is printed, in ``metric`` or ``us`` units or the job's."""
+        return page_text(self.page(display), width)
+
+    def _repr_html_(self) -> str:
+        return page_html(self.page())
+
+    def __str__(self) -> str:
+        return self.to_text()
+
+
 @dataclass(frozen=True)
-class RankingResult:
+class RankingResult(_Shown):
     """A ranking that knows how to show itself.
 
     Parameters
@@ -70,6 +83,11 @@ class RankingResult:
     """
 
     ranking: Ranking
+
+    @property
+    def job(self) -> Job:
+        """The job that was ranked."""
+        return self.ranking.job
 
     @property
     def options(self) -> tuple[Option, ...]:
@@ -81,45 +99,29 @@ class RankingResult:
         """The hammers that do not, nearest miss first."""
         return self.ranking.rejected
 
-    def units(self, display: str | None = None) -> Units:
-        """Return the display units: the job's, or ``metric`` or ``us``."""
-        return Units(display or self.ranking.job.display)
+    def page(self, display: str | None = None) -> Page:
+        """Return the ranking as blocks of prose and tables."""
+        return ranking_page(self.ranking, _units(self.job, display))
 
     def to_frame(self) -> pd.DataFrame:
-        """Return every hammer as a row of a tidy data frame, in the units its columns name."""
-        import pandas as pd
+        """Return every hammer as a row of a tidy data frame, best first.
 
-        documents = ranking_document(self.ranking, self.units())
-        rows = []
-        for group in ("options", "rejected"):
-            for document in documents[group]:  # type: ignore[attr-defined]
-                cushion = document["cushion"] or {}
-                low, high = document["stroke_window_m"] or (None, None)
-                flat = {k: v for k, v in document.items() if not isinstance(v, (dict, list))}
-                flat |= {f"cushion_{key}": value for key, value in cushion.items()}
-                rows.append(flat | {"stroke_low_m": low, "stroke_high_m": high})
-        return pd.DataFrame(rows).drop(
-            columns=["cushion", "stroke_window_m", "runner_up"], errors="ignore"
-        )
-
-    def to_text(self, display: str | None = None, width: int = 100) -> str:
-        """Return the ranking as it is printed."""
-        return ranking_text(self.ranking, self.units(display), width)
+        Columns are those of the JSON document, with its fixed units in their names whatever the
+        display: ``stroke_m``, ``set_mm``, ``blow_energy_kJ``. Cushion and window are spread over
+        columns; what is nested deeper is left to `to_dict`.
+        """
+        document = ranking_document(self.ranking, _units(self.job, None))
+        return _frame([*document["options"], *document["rejected"]])
 
     def to_csv(self, display: str | None = None) -> str:
         """Return the table of all hammers as CSV."""
         everyone = (*self.options, *self.rejected)
-        return options_table(everyone, self.units(display)).to_csv()
+        objective = self.job.search.objective
+        return options_table(everyone, _units(self.job, display), objective).to_csv()
 
     def to_dict(self, display: str | None = None) -> dict[str, object]:
-        """Return the JSON document as plain data."""
-        return ranking_document(self.ranking, self.units(display))
-
-    def _repr_html_(self) -> str:
-        return f"<pre>{html.escape(self.to_text())}</pre>"
-
-    def __str__(self) -> str:
-        return self.to_text()
+        """Return the JSON document as plain data; `display` changes its sentences alone."""
+        return ranking_document(self.ranking, _units(self.job, display))
 
 
 @dataclass(frozen=True)
@@ -136,21 +138,21 @@ class CheckResult(RankingResult):
         """The hammer's best plan, or its nearest miss."""
         return (*self.options, *self.rejected)[0]
 
-    def to_text(self, display: str | None = None, width: int = 100) -> str:
-        """Return the answer as it is printed."""
-        return check_text(self.ranking, self.units(display), width)
+    def page(self, display: str | None = None) -> Page:
+        """Return the answer as blocks of prose and tables."""
+        return check_page(self.ranking, _units(self.job, display))
 
     def to_csv(self, display: str | None = None) -> str:
         """Return what the hammer does at every stage as CSV."""
-        return schedule_table((self.option,), self.units(display)).to_csv()
+        return schedule_table((self.option,), _units(self.job, display)).to_csv()
 
     def to_dict(self, display: str | None = None) -> dict[str, object]:
-        """Return the JSON document as plain data."""
-        return check_document(self.ranking, self.units(display))
+        """Return the JSON document as plain data; `display` changes its sentences alone."""
+        return check_document(self.ranking, _units(self.job, display))
 
 
 @dataclass(frozen=True)
-class WindowResult:
+class WindowResult(_Shown):
     """Stroke against cushion for one hammer.
 
     Parameters
@@ -165,37 +167,25 @@ class WindowResult:
         """Whether any stroke works on any cushion."""
         return self.map.is_open
 
-    def units(self, display: str | None = None) -> Units:
-        """Return the display units: the job's, or ``metric`` or ``us``."""
-        return Units(display or self.map.job.display)
+    def page(self, display: str | None = None) -> Page:
+        """Return the map as blocks of prose and a grid."""
+        return map_page(self.map, _units(self.map.job, display))
 
     def to_frame(self) -> pd.DataFrame:
-        """Return every cell as a row of a data frame."""
-        import pandas as pd
-
-        return pd.DataFrame(map_table(self.map, self.units()).to_records())
-
-    def to_text(self, display: str | None = None, width: int = 100) -> str:
-        """Return the map as it is printed."""
-        return map_text(self.map, self.units(display), width)
+        """Return every cell as a row of a tidy data frame, in the JSON document's fixed units."""
+        return _frame(map_document(self.map)["cells"])
 
     def to_csv(self, display: str | None = None) -> str:
         """Return every cell as CSV."""
-        return map_table(self.map, self.units(display)).to_csv()
+        return map_table(self.map, _units(self.map.job, display)).to_csv()
 
     def to_dict(self) -> dict[str, object]:
         """Return the JSON document as plain data."""
         return map_document(self.map)
 
-    def _repr_html_(self) -> str:
-        return f"<pre>{html.escape(self.to_text())}</pre>"
-
-    def __str__(self) -> str:
-        return self.to_text()
-
 
 @dataclass(frozen=True)
-class BlowResult:
+class BlowResult(_Shown):
     """One blow that knows how to show itself.
 
     Parameters
@@ -207,27 +197,23 @@ class BlowResult:
     blow: Blow
     job: Job
 
-    def units(self, display: str | None = None) -> Units:
-        """Return the display units: the job's, or ``metric`` or ``us``."""
-        return Units(display or self.job.display)
+    def page(self, display: str | None = None) -> Page:
+        """Return the blow as blocks of prose and a table."""
+        return blow_page(self.blow, self.job, _units(self.job, display))
 
     def trace_table(self, display: str | None = None) -> Table:
         """Return head and toe against time."""
-        return trace_table(self.blow, self.units(display))
+        return trace_table(self.blow, _units(self.job, display))
 
     def envelope_table(self, display: str | None = None) -> Table:
         """Return the largest stresses along the pile."""
-        return envelope_table(self.blow, self.units(display))
+        return envelope_table(self.blow, _units(self.job, display))
 
     def to_frame(self) -> pd.DataFrame:
-        """Return head and toe against time as a data frame."""
+        """Return head and toe against time, in the JSON document's fixed units."""
         import pandas as pd
 
-        return pd.DataFrame(self.trace_table().to_records())
-
-    def to_text(self, display: str | None = None, width: int = 100) -> str:
-        """Return the blow as it is printed."""
-        return blow_text(self.blow, self.job, self.units(display), width)
+        return pd.DataFrame(blow_document(self.blow, traces=True)["trace"])
 
     def to_csv(self, display: str | None = None) -> str:
         """Return head and toe against time as CSV."""
@@ -237,11 +223,27 @@ class BlowResult:
         """Return the JSON document as plain data."""
         return blow_document(self.blow, traces)
 
-    def _repr_html_(self) -> str:
-        return f"<pre>{html.escape(self.to_text())}</pre>"
 
-    def __str__(self) -> str:
-        return self.to_text()
+def _units(job: Job, display: str | None) -> Units:
+    return Units(display or job.display)
+
+
+def _frame(documents: Sequence[dict[str, Any]]) -> pd.DataFrame:
+    """Return flat rows of documents: a cushion and a window as columns, the rest of it left out."""
+    import pandas as pd
+
+    rows = []
+    for document in documents:
+        row = {k: v for k, v in document.items() if not isinstance(v, (dict, list))}
+        row.pop("cushion", None)
+        cushion = document["cushion"] or dict.fromkeys(("material", "sheets", "thickness_mm"))
+        row |= {f"cushion_{key}": value for key, value in cushion.items()}
+        if "stroke_window_m" in document:
+            row.pop("stroke_window_m", None)
+            low, high = document["stroke_window_m"] or (None, None)
+            row |= {"stroke_low_m": low, "stroke_high_m": high}
+        rows.append(row)
+    return pd.DataFrame(rows)
 
 
 def rank(

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from functools import partial
 from pathlib import Path
 from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import Common, screen_width, show_document, show_result
+from matchup.cli.show import Common, screen_width, show_result
 
 
 def blow(
@@ -46,11 +47,8 @@ def blow(
         hammer_cushion=hammer_cushion,
         best=best,
     )
-    if common.json and traces:
-        show_document(result.to_dict(traces))
-        return 0
-    show_result(result, common)
-    if traces:
+    show_result(result, common, partial(result.to_dict, traces))
+    if traces and not common.json:
         for table in (result.envelope_table(common.display), result.trace_table(common.display)):
             print(f"\n{table.to_text(screen_width())}")
     return 0

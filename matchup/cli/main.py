@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import io
 import os
 import sys
 from collections.abc import Sequence
@@ -12,6 +13,7 @@ from matchup import __version__
 from matchup.cli.show import show_problems
 from matchup.errors import InputError, MatchupError, Problem
 
+FAULT = 1
 WRONG_USAGE = 2
 INTERRUPTED = 130
 
@@ -47,26 +49,49 @@ def main(arguments: Sequence[str] | None = None) -> int:
         Without the program's name; None takes them from the system.
     """
     words = list(sys.argv[1:] if arguments is None else arguments)
+    as_json = "--json" in words
+    for stream in (sys.stdout, sys.stderr):
+        # A name that the console can't write must not end the run.
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="backslashreplace")
     try:
-        status = app(words, exit_on_error=False, print_error=True, result_action="return_value")
+        status = _run(words, as_json)
         sys.stdout.flush()
-        return status if isinstance(status, int) else 0
-    except CycloptsError:
-        return WRONG_USAGE
-    except InputError as error:
-        show_problems(error.problems, "--json" in words)
-        return 1
-    except MatchupError as error:
-        problem = Problem(None, None, "", str(error), "")
-        show_problems([problem], "--json" in words)
-        return 1
+        return status
     except KeyboardInterrupt:
         print("stopped", file=sys.stderr)
         return INTERRUPTED
     except BrokenPipeError:
-        # The reader has gone; keep the interpreter from complaining while it shuts down.
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        _drop_output()
         return 0
+    except OSError as error:
+        _drop_output()
+        print(f"the output can't be written: {error.strerror or error}.", file=sys.stderr)
+        return FAULT
+
+
+def _run(words: Sequence[str], as_json: bool) -> int:
+    """Run a command; show what a user can have caused, and return the exit status."""
+    try:
+        status = app(
+            words, exit_on_error=False, print_error=not as_json, result_action="return_value"
+        )
+    except CycloptsError as error:
+        if as_json:
+            show_problems([Problem(None, None, "", str(error).strip(), "")], as_json)
+        return WRONG_USAGE
+    except InputError as error:
+        show_problems(error.problems, as_json)
+        return FAULT
+    except MatchupError as error:
+        show_problems([Problem(None, None, "", str(error), "")], as_json)
+        return FAULT
+    return status if isinstance(status, int) else 0
+
+
+def _drop_output() -> None:
+    """Keep the interpreter from complaining, while it shuts down, that nobody takes its output."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def run() -> None:

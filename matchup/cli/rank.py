@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import Annotated
 
 from cyclopts import Parameter
+from cyclopts.validators import Number
 
 from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
 
@@ -13,7 +14,9 @@ from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
 def rank(
     job: Annotated[Path, Parameter(help="Job file.")],
     *,
-    seed: Annotated[int | None, Parameter(help="Replaces the job's seed.")] = None,
+    seed: Annotated[
+        int | None, Parameter(help="Replaces the job's seed.", validator=Number(gte=0))
+    ] = None,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
     """Rank every hammer of the job's catalogue."""

@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 import json
+import os
 import shutil
 import sys
 import time
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
+from contextlib import suppress
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Literal, Protocol
 
 from cyclopts import Parameter
+from cyclopts.validators import Number
 
 from matchup.errors import InputError, Problem
 
@@ -24,17 +27,33 @@ THE_ANSWER_IS_NO = 3
 """Exit status of a command that ran, and whose answer is no."""
 
 
+def _can_be_written(_: object, path: Path | None) -> None:
+    """Refuse a file that can't be written before anything is computed for it."""
+    if path is None:
+        return
+    if not path.name or path.is_dir():
+        raise ValueError("Must be a file, not a folder.")
+    if not path.parent.is_dir():
+        raise ValueError(f"Must be in a folder that exists; {path.parent} does not.")
+    if not os.access(path if path.exists() else path.parent, os.W_OK):
+        raise ValueError("Must be a file that can be written; permission denied.")
+
+
 @Parameter(name="*")
 @dataclass(frozen=True)
 class Common:
     """Options that all commands share."""
 
     json: Annotated[bool, Parameter(negative="", help="One JSON document on stdout.")] = False
-    csv: Annotated[Path | None, Parameter(help="Write the table to this file.")] = None
+    csv: Annotated[
+        Path | None, Parameter(help="Write the table to this file.", validator=_can_be_written)
+    ] = None
     display: Annotated[
         Literal["metric", "us"] | None, Parameter(help="Units of the output; default: the job's.")
     ] = None
-    workers: Annotated[int | None, Parameter(help="Threads; default: all processors.")] = None
+    workers: Annotated[
+        int | None, Parameter(help="Threads; default: all processors.", validator=Number(gte=1))
+    ] = None
     quiet: Annotated[bool, Parameter(negative="", help="No messages on stderr.")] = False
 
 
@@ -46,8 +65,8 @@ def screen_width() -> int:
 
 
 def show_document(document: object) -> None:
-    """Print one JSON document."""
-    print(json.dumps(document, indent=1, ensure_ascii=False, allow_nan=False))
+    """Print one JSON document, in plain ASCII so that no console's encoding matters."""
+    print(json.dumps(document, indent=1, allow_nan=False))
 
 
 def show_problems(problems: Sequence[Problem], as_json: bool) -> None:
@@ -56,7 +75,8 @@ def show_problems(problems: Sequence[Problem], as_json: bool) -> None:
         show_document({"problems": [problem.as_dict() for problem in problems]})
         return
     for problem in problems:
-        print(problem, file=sys.stderr)
+        # A problem of no place at all is its sentence alone.
+        print(str(problem).removeprefix(": "), file=sys.stderr)
     if len(problems) > 1:
         print(f"{len(problems)} problems found.", file=sys.stderr)
 
@@ -74,13 +94,23 @@ class Showable(Protocol):
         """Return the JSON document."""
 
 
-def show_result(result: Showable, common: Common) -> None:
-    """Write and print a result as the user asked for it."""
+def show_result(
+    result: Showable, common: Common, document: Callable[[], dict[str, object]] | None = None
+) -> None:
+    """Write and print a result as the user asked for it.
+
+    Parameters
+    ----------
+    result : Showable
+    common : Common
+    document : callable or None
+        Makes the JSON document; None takes the result's own.
+    """
     if common.csv:
         write_file(common.csv, result.to_csv(common.display))
         tell(common, f"wrote {common.csv}")
     if common.json:
-        show_document(result.to_dict())
+        show_document((document or result.to_dict)())
     else:
         print(result.to_text(common.display, screen_width()))
 
@@ -125,7 +155,7 @@ class Progress:
 
 
 def write_file(path: Path, text: str, place: str = "--csv") -> None:
-    """Write a text file whole or not at all.
+    """Write a text file whole or not at all; a device or a pipe gets it as it comes.
 
     Parameters
     ----------
@@ -137,15 +167,23 @@ def write_file(path: Path, text: str, place: str = "--csv") -> None:
     InputError
         If it can't be written.
     """
+    try:
+        if path.exists() and not path.is_file():
+            path.write_text(text, encoding="utf-8", newline="")
+        else:
+            _write_whole(path, text)
+    except OSError as error:
+        why = f"the answer: {error.strerror or error}"
+        problem = Problem(str(path), None, place, "must be a file that can be written", why)
+        raise InputError([problem]) from None
+
+
+def _write_whole(path: Path, text: str) -> None:
     part = path.with_name(path.name + ".part")
     try:
         part.write_text(text, encoding="utf-8", newline="")
         part.replace(path)
-    except OSError as error:
-        part.unlink(missing_ok=True)
-        why = error.strerror or str(error)
-        problem = Problem(str(path), None, place, "must be a file that can be written", why)
-        raise InputError([problem]) from None
     except BaseException:
-        part.unlink(missing_ok=True)
+        with suppress(OSError):
+            part.unlink(missing_ok=True)
         raise

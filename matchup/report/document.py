@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 import math
+from typing import Any
 
 from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
 from matchup.model.job import Job
 from matchup.report.sentences import reason
 from matchup.report.shown import Units
-from matchup.search.option import Cure, Option, StagePlan
+from matchup.search.option import Cure, Option, Ranking, StagePlan
 
 SCHEMA_VERSION = 1
 
@@ -56,6 +57,7 @@ def cure_document(cure: Cure | None) -> dict[str, object] | None:
         "ram_mass_kg": number(cure.ram_mass),
         "ram_within_limits": cure.ram_within if cure.ram_mass else None,
         "set_within_limits_mm": number(cure.set_within, 1e3),
+        "stroke_within_limits_m": number(cure.stroke_within),
     }
 
 
@@ -118,7 +120,43 @@ def _stage_document(plan: StagePlan) -> dict[str, object]:
     }
 
 
-def blow_document(blow: Blow, traces: bool = False) -> dict[str, object]:
+def ranking_document(ranking: Ranking, units: Units) -> dict[str, Any]:
+    """Return the ranking as the JSON document."""
+    job = ranking.job
+    return {
+        "schema_version": SCHEMA_VERSION,
+        "title": job.title,
+        "objective": job.search.objective,
+        "limits": limits_document(job),
+        "options": [
+            option_document(option, job, units, place)
+            for place, option in enumerate(ranking.options, 1)
+        ],
+        "rejected": [option_document(option, job, units, None) for option in ranking.rejected],
+        "notices": list(job.notices),
+        "analyses": ranking.analyses,
+        "runtime_s": ranking.runtime,
+    }
+
+
+def check_document(ranking: Ranking, units: Units) -> dict[str, Any]:
+    """Return the answer for one hammer as the JSON document."""
+    job = ranking.job
+    option = (*ranking.options, *ranking.rejected)[0]
+    place = 1 if option.drives else None
+    return {
+        "schema_version": SCHEMA_VERSION,
+        "title": job.title,
+        "can": option.drives,
+        "limits": limits_document(job),
+        **option_document(option, job, units, place),
+        "notices": list(job.notices),
+        "analyses": ranking.analyses,
+        "runtime_s": ranking.runtime,
+    }
+
+
+def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
     """Return one blow; with `traces` also the envelope along the pile and the time histories."""
     document: dict[str, object] = {
         "schema_version": SCHEMA_VERSION,

@@ -1,9 +1,15 @@
-"""A stroke map as text, table and document."""
+"""A stroke map as page, table and document."""
 
 from __future__ import annotations
 
+import html
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Any
+
 import numpy as np
 
+from matchup.model.cushion import Stack
 from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
@@ -11,6 +17,7 @@ from matchup.report.document import (
     limits_document,
     number,
 )
+from matchup.report.page import Headline, Page, Prose
 from matchup.report.sentences import CAUTION, basis
 from matchup.report.shown import Units, percent
 from matchup.report.table import Column, Table, wrapped
@@ -25,50 +32,93 @@ from matchup.search.stroke_map import (
 )
 
 SIGNS = {OPEN_CELL: "#", SHORT: ".", SQUEEZED: "c", PULLED: "t", RUNNING: "r", UNTRUSTED: "?"}
+WIDEST_STEP = 3
+"""Characters from one stroke to the next, where there is room."""
+LABEL_WIDTH = 6
+WIDTH_IN_NOTEBOOK = 100
 
 
-def map_text(found: StrokeMap, units: Units, width: int = 100) -> str:
-    """Return the map for a terminal: a line for each cushion, thin to thick, strokes across."""
-    open_cells = sum(state == OPEN_CELL for row in found.states for state in row)
-    cells = sum(len(row) for row in found.states)
-    answer = "no window is open" if not open_cells else f"{open_cells} of {cells} cells are open"
-    head = f"{found.hammer.name} at stage {found.stage.name!r}: {answer}."
-    labels = [_label(found, row, units) for row in range(len(found.stacks))]
-    margin = max(len(label) for label in labels) + 2
-    step = 3
-    fitting = max(1, (width - margin) // step)
-    shown = np.unique(
-        np.rint(np.linspace(0, found.strokes.size - 1, min(fitting, found.strokes.size))).astype(
-            int
-        )
-    )
-    lines = [
-        " " * margin + _ruler([units.value(float(found.strokes[i]), "stroke") or 0 for i in shown]),
+def map_page(found: StrokeMap, units: Units) -> Page:
+    """Return the map: the answer, the grid, what it rests on."""
+    head = f"{found.hammer.name} at stage {found.stage.name!r}: {_answer(found, units)}."
+    grid = _Grid(found, units)
+    return [Headline(head), grid, Prose((*basis(found.job, units), CAUTION))]
+
+
+def _answer(found: StrokeMap, units: Units) -> str:
+    """Return on how many cushions it works, and between which strokes."""
+    if not found.is_open:
+        return "no stroke works" + (" on any cushion" if len(found.stacks) > 1 else "")
+    working = [row for row in found.states if OPEN_CELL in row]
+    strokes = [
+        float(found.strokes[i]) for row in working for i, s in enumerate(row) if s == OPEN_CELL
     ]
-    lines += [
-        f"{label:<{margin}}" + "".join(f"{SIGNS[found.states[row][i]]:<{step}}" for i in shown)
-        for row, label in enumerate(labels)
-    ]
-    legend = ", ".join(f"{sign} {state}" for state, sign in SIGNS.items() if _occurs(found, state))
-    note = f"Across: stroke in {units.unit('stroke')}. {legend}."
-    feet = [wrapped(line, width, "  ") for line in (note, *basis(found.job, units), CAUTION)]
-    text = "\n".join(line.rstrip() for line in lines)
-    return f"{wrapped(head, width)}\n\n{text}\n\n" + "\n".join(feet)
+    low, high = (units.text(stroke, "stroke") for stroke in (min(strokes), max(strokes)))
+    between = f"at {low}" if low == high else f"at strokes of {low} to {high}"
+    if len(found.stacks) == 1:
+        return f"it works {between}"
+    return f"it works on {len(working)} of {len(found.stacks)} cushions, {between}"
 
 
-def _occurs(found: StrokeMap, state: str) -> bool:
-    return any(state in row for row in found.states)
+@dataclass(frozen=True, slots=True)
+class _Grid:
+    """The map itself: a line for each cushion, thin to thick, strokes across."""
+
+    found: StrokeMap
+    units: Units
+
+    def to_text(self, width: int) -> str:
+        """Return the grid, its columns as wide as fits, and what the signs mean."""
+        found = self.found
+        labels = [_label(stack, self.units) for stack in found.stacks]
+        margin = max(map(len, labels)) + 2
+        room = max(1, width - margin)
+        step = max(1, min(WIDEST_STEP, room // found.strokes.size))
+        shown = _columns(found, room // step)
+        lines = [" " * margin + self._ruler(shown, step, room)]
+        lines += [
+            f"{label:<{margin}}" + "".join(f"{SIGNS[row[i]]:<{step}}" for i in shown)
+            for label, row in zip(labels, found.states, strict=True)
+        ]
+        text = "\n".join(line.rstrip() for line in lines)
+        return f"{text}\n\n{wrapped(self._legend(len(shown)), width, '  ')}"
+
+    def to_html(self) -> str:
+        """Return the grid as it stands on a terminal."""
+        return f"<pre>{html.escape(self.to_text(WIDTH_IN_NOTEBOOK))}</pre>"
+
+    def _ruler(self, shown: Sequence[int], step: int, room: int) -> str:
+        """Return stroke labels over every so many columns that they stand apart."""
+        every = -(-LABEL_WIDTH // step)
+        labels = [
+            f"{self.units.value(float(self.found.strokes[i]), 'stroke'):.2f}"
+            for i in shown[::every]
+        ]
+        ruler = "".join(f"{label:<{every * step}}" for label in labels).rstrip()
+        return ruler if len(ruler) <= room else ruler[: -len(labels[-1])]
+
+    def _legend(self, shown: int) -> str:
+        seen = {state for row in self.found.states for state in row}
+        signs = ", ".join(f"{sign} {state}" for state, sign in SIGNS.items() if state in seen)
+        strokes = self.found.strokes.size
+        some = "" if shown == strokes else f", {shown} of {strokes} for want of width"
+        return f"Across: stroke in {self.units.unit('stroke')}{some}. {signs}."
 
 
-def _ruler(strokes: list[float]) -> str:
-    """Return stroke labels over every second column, which are three characters wide."""
-    return "".join(f"{stroke:<6.2f}" for stroke in strokes[::2])
+def _columns(found: StrokeMap, room: int) -> list[int]:
+    """Return the columns to show: all, or those where windows open and others evenly between."""
+    count = found.strokes.size
+    if count <= room:
+        return list(range(count))
+    opening = sorted({row.index(OPEN_CELL) for row in found.states if OPEN_CELL in row})[:room]
+    others = [i for i in range(count) if i not in opening]
+    spread = np.linspace(0, len(others) - 1, room - len(opening)).round().astype(int)
+    return sorted({*opening, *(others[int(i)] for i in spread)})
 
 
-def _label(found: StrokeMap, row: int, units: Units) -> str:
-    stack = found.stacks[row]
+def _label(stack: Stack, units: Units) -> str:
     label = units.cushion(stack.pile)
-    return f"{label}, {stack.hammer.text}" if stack.hammer else label
+    return f"{label}, {units.retold(stack.hammer.text)}" if stack.hammer else label
 
 
 def map_table(found: StrokeMap, units: Units) -> Table:
@@ -83,20 +133,20 @@ def map_table(found: StrokeMap, units: Units) -> Table:
     )
     rows = tuple(
         (
-            _label(found, row, units),
+            _label(stack, units),
             units.value(float(stroke), "stroke"),
             found.states[row][column],
             units.value(float(found.sets[row, column]), "set"),
             percent(float(found.compression_uses[row, column])),
             percent(float(found.tension_uses[row, column])),
         )
-        for row in range(len(found.stacks))
+        for row, stack in enumerate(found.stacks)
         for column, stroke in enumerate(found.strokes)
     )
     return Table(columns, rows)
 
 
-def map_document(found: StrokeMap) -> dict[str, object]:
+def map_document(found: StrokeMap) -> dict[str, Any]:
     """Return the map as the JSON document."""
     cells = [
         {

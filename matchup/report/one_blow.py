@@ -1,24 +1,29 @@
-"""One blow as text."""
+"""One blow as page and tables."""
 
 from __future__ import annotations
 
 from matchup.analysis.cells import is_setting
 from matchup.analysis.single import Blow
 from matchup.model.job import Job
-from matchup.report.sentences import CAUTION, basis
-from matchup.report.shown import Units
-from matchup.report.table import Column, Table, wrapped
+from matchup.report.page import Headline, Page, Prose
+from matchup.report.sentences import CAUTION, basis, set_text
+from matchup.report.shown import Units, share_text
+from matchup.report.table import Column, Table
 
 
-def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
-    """Return one blow for a terminal: what it does to pile and ground, then how far to trust it."""
+def blow_page(blow: Blow, job: Job, units: Units) -> Page:
+    """Return one blow: what it does to pile and ground, then how far to trust it."""
     on = "" if blow.cushion is None else f" on {units.cushion_words(blow.cushion)} ({blow.wear})"
-    enough = "reached" if blow.set >= blow.stage.set_needed else "not reached"
+    gives = set_text(blow.set, blow.stage, job, units)
     head = (
-        f"{blow.hammer.name}, stroke {units.text(blow.stroke, 'stroke')}{on}, "
-        f"stage {blow.stage.name!r}: set {units.text(blow.set, 'set')} "
-        f"({units.text(blow.stage.set_needed, 'set')} needed: {enough})."
+        f"{blow.hammer.name} at stage {blow.stage.name!r}: stroke "
+        f"{units.text(blow.stroke, 'stroke')}{on} gives {gives}."
     )
+    lines = (*blow_notices(blow, job, units), *basis(job, units), CAUTION)
+    return [Headline(head), _figures(blow, units), Prose(lines)]
+
+
+def _figures(blow: Blow, units: Units) -> Table:
     count = units.blow_count(blow.set)
     rows = [
         ("set", units.text(blow.set, "set"), f"largest toe displacement less {blow.set_rule}"),
@@ -35,16 +40,16 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
         (
             "peak compression",
             units.text(blow.compression, "stress"),
-            f"{100 * blow.compression_use:.0f}% of the limit, "
+            f"{share_text(blow.compression_use)} of the limit, "
             f"{units.text(blow.compression_at, 'length')} from the head",
         ),
         (
             "peak tension",
             units.text(blow.tension, "stress"),
-            f"{100 * blow.tension_use:.0f}% of the limit, "
+            f"{share_text(blow.tension_use)} of the limit, "
             f"{units.text(blow.tension_at, 'length')} from the head",
         ),
-        ("hammer cushion", blow.hammer_cushion, ""),
+        ("hammer cushion", "", units.retold(blow.hammer_cushion)),
         ("peak head force", units.text(blow.head_force, "force"), ""),
         ("blow energy", units.text(blow.blow_energy, "energy"), "ram weight times stroke"),
         (
@@ -55,11 +60,11 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
         (
             "impact velocity",
             f"{units.value(blow.impact_velocity, 'velocity'):.2f} {units.unit('velocity')}",
-            f"efficiency {100 * blow.hammer.efficiency:.0f} %",
+            f"efficiency {100 * blow.hammer.efficiency:.0f}%",
         ),
         (
             "energy audit",
-            f"{100 * blow.balance:+.2f} %",
+            f"{100 * abs(blow.balance):.2f}%",
             "unaccounted for, of the ram's energy at impact",
         ),
         (
@@ -73,10 +78,7 @@ def blow_text(blow: Blow, job: Job, units: Units, width: int = 100) -> str:
         Column("value", "value"),
         Column("remark", "remark", wrap=60),
     )
-    parts = [wrapped(head, width), Table(columns, tuple(rows)).to_text(width)]
-    lines = [*blow_notices(blow, job, units), *basis(job, units), CAUTION]
-    parts.append("\n".join(wrapped(line, width, "  ") for line in lines))
-    return "\n\n".join(parts)
+    return Table(columns, tuple(rows))
 
 
 def blow_notices(blow: Blow, job: Job, units: Units) -> list[str]:

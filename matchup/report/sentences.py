@@ -2,14 +2,17 @@
 
 from __future__ import annotations
 
+import re
+from collections.abc import Sequence
+
 from matchup.model.cushion import Stack
 from matchup.model.job import Job
-from matchup.report.shown import Units
+from matchup.model.stage import Stage
+from matchup.report.shown import Units, share_text
+from matchup.search.cure import BEYOND, HEAVIER
 from matchup.search.option import (
     NOT_ANALYSED,
     NOT_REACHED,
-    OVER_COMPRESSION,
-    OVER_TENSION,
     PILE_RUNS,
     REDUCED,
     REFUSES,
@@ -23,6 +26,7 @@ CAUTION = (
     "A screening aid: confirm by trial driving and dynamic testing; local codes and the licensed "
     "engineer in charge decide."
 )
+SHORT_OF_SET = (NOT_REACHED, REFUSES)
 
 
 def verdict_sentence(ranking: Ranking, units: Units) -> str:
@@ -30,57 +34,111 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
     options = ranking.options
     count = len(options) + len(ranking.rejected)
     if not options:
-        hammers = "the hammer" if count == 1 else f"none of the {count} hammers"
-        return f"{hammers} can drive this pile within the limits."
+        return _nobody(ranking.rejected)
     best = options[0]
-    objective = "fastest" if ranking.job.search.objective == "time" else "least energy"
+    plan = best.target
+    who = "the hammer" if count == 1 else f"{len(options)} of {count} hammers"
+    objective, figure = "least energy", f"{units.text(plan.blow_energy, 'energy')} a blow"
+    if ranking.job.search.objective == "time":
+        objective, speed = "fastest", units.speed(plan.speed)
+        figure = "its blow rate not known" if speed is None else f"{speed:.2f} {units.speed_unit}"
     return (
-        f"{len(options)} of {count} hammers can drive this pile within the limits; {objective}: "
-        f"{best.hammer.name} at {units.text(best.target.stroke, 'stroke')}"
-        f"{on_stack(best.stack, units)}, {units.text(best.target.blow_energy, 'energy')} a blow."
+        f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
+        f"{units.text(plan.stroke, 'stroke')}{on_stack(best.stack, units)}, {figure}."
     )
+
+
+def _nobody(rejected: Sequence[Option]) -> str:
+    """Return that no hammer can, and why the nearest can't."""
+    nearest = rejected[0]
+    name, count = nearest.hammer.name, len(rejected)
+    if nearest.verdict == NOT_ANALYSED:
+        return f"{name} {NOT_ANALYSED}." if count == 1 else f"none of {count} could be analysed."
+    why = nearest.verdict if nearest.verdict == PILE_RUNS else f"it {nearest.verdict}"
+    if count == 1:
+        return f"{name} can't drive this pile within the limits: {why}."
+    return (
+        f"none of the {count} hammers can drive this pile within the limits; the nearest is "
+        f"{name}: {why}."
+    )
+
+
+def cushions(stack: Stack, units: Units) -> str:
+    """Return the cushions of a stack in words; nothing where none is chosen."""
+    words = [] if stack.pile is None else [units.cushion_words(stack.pile)]
+    words += [] if stack.hammer is None else [units.retold(stack.hammer.text)]
+    return " under ".join(words)
 
 
 def on_stack(stack: Stack, units: Units) -> str:
     """Return cushions in words, to stand behind a stroke."""
-    words = "" if stack.pile is None else f" on {units.cushion_words(stack.pile)}"
-    return words + ("" if stack.hammer is None else f" under {stack.hammer.text}")
+    words = cushions(stack, units)
+    return f" on {words}" if stack.pile else (f" under {words}" if words else "")
+
+
+def needed_set(stage: Stage, job: Job) -> float:
+    """Return the least set of a stage with the job's reserve on top [m]."""
+    return (1 + job.search.reserve) * stage.set_needed
 
 
 def reason(option: Option, job: Job, units: Units) -> str:
     """Return in one sentence what an option does, or why the hammer fails and what would help."""
     plan = option.failing or option.target
-    at = f"at stage {plan.stage.name!r} " if len(job.stages) > 1 else ""
-    stroke = units.text(plan.stroke, "stroke")
-    on = on_stack(option.stack, units)
-    needed = units.text(plan.stage.set_needed, "set")
+    at = f"at stage {plan.stage.name!r}, " if len(job.stages) > 1 else ""
     if option.verdict == PILE_RUNS:
         resistance = units.text(plan.stage.resistance, "force")
         return (
             f"{at}pile, helmet, ram and what stands on it weigh more than the {resistance} of "
             "resistance"
         )
+    on = on_stack(option.stack, units)
     if option.verdict == NOT_ANALYSED:
         return f"{at}{plan.why}{on}"
-    if option.verdict in (NOT_REACHED, REFUSES):
-        text = (
-            f"{at}full stroke of {stroke}{on} gives a set of {units.text(plan.set, 'set')} where "
-            f"{needed} is needed, with {_uses(plan)}"
-        )
-    elif option.verdict in (OVER_COMPRESSION, OVER_TENSION):
-        text = f"{at}a set of {needed} needs {stroke}{on}, with {_uses(plan)}"
+    if option.drives:
+        uses = _uses(option.compression_use, option.tension_use, job)
+        stroke = units.text(plan.stroke, "stroke")
+        does = f"{stroke}{on} gives {set_text(plan.set, plan.stage, job, units)}"
     else:
-        text = (
-            f"{at}a set of {units.text(plan.set, 'set')} ({needed} needed) at {stroke}{on}, with "
-        )
-        text += _uses(plan) + _held_back(option, units)
-    return text + _cured(option.cure, option, units)
+        uses = _uses(plan.compression_use, plan.tension_use, job)
+        does = _failing_stroke(option, plan, job, units)
+    helps = _held_back(option, units) + _cured(option.cure, option, units)
+    return f"{at}{does}; {uses}{helps}"
 
 
-def _uses(plan: StagePlan) -> str:
+def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> str:
+    """Return the stroke that explains a failure, and the set that it gives."""
+    hammer = option.hammer
+    stroke = f"{units.text(plan.stroke, 'stroke')}{on_stack(option.stack, units)}"
+    gives = f"gives {set_text(plan.set, plan.stage, job, units)}"
+    if hammer.stroke_min == hammer.stroke_max:
+        return f"its only stroke of {stroke} {gives}"
+    if option.verdict in SHORT_OF_SET:
+        return f"full stroke of {stroke} {gives}"
+    if plan.stroke <= hammer.stroke_min:
+        return f"already its lowest stroke of {stroke} {gives}"
+    if hammer.stroke_step:
+        return f"the lowest step that reaches the set, {stroke}, {gives}"
+    needed = units.text(needed_set(plan.stage, job), "set")
+    return f"a set of {needed} needs a stroke of {stroke}"
+
+
+def set_text(set_: float, stage: Stage, job: Job, units: Units) -> str:
+    """Return a set beside the needed one, in words."""
+    needed = needed_set(stage, job)
+    reached, asked = units.together(set_, needed, "set")
+    asked += " needed with the reserve" if job.search.reserve else " needed"
+    if set_ < needed:
+        return f"a set of {reached} of the {asked}"
+    return f"a set of {reached} ({asked})"
+
+
+def _uses(compression: float, tension: float, job: Job) -> str:
+    """Return the use of both stress limits."""
+    keep = job.search.reserve
+    allowed = f", where the reserve leaves {share_text(1 - keep)}" if keep else ""
     return (
-        f"{100 * plan.compression_use:.0f}% of the compression limit and "
-        f"{100 * plan.tension_use:.0f}% of the tension limit"
+        f"compression is at {share_text(compression)} and tension at {share_text(tension)} of "
+        f"the limit{allowed}"
     )
 
 
@@ -101,21 +159,65 @@ def _cured(cure: Cure | None, option: Option, units: Units) -> str:
     if cure is None:
         return ""
     words = []
-    if cure.stack is not None:
-        words.append(f"{units.cushion_words(cure.stack.pile)} would do")
-    elif cure.stack_looked:
-        words.append("no cushion up to twice the thickest allowed helps")
-    if cure.set_within is not None:
-        words.append(f"within the limits the set is {units.text(cure.set_within, 'set')}")
-    if cure.ram_mass is not None:
-        within = "" if cure.ram_within else ", though not within the stress limits"
+    if cure.set_within is not None and cure.stroke_within is not None:
         words.append(
-            f"a ram of {units.text(cure.ram_mass, 'mass')} in place of "
-            f"{units.text(option.hammer.ram_mass, 'mass')} would reach it{within}"
+            f"within the limits it reaches a set of {units.text(cure.set_within, 'set')}, at "
+            f"{units.text(cure.stroke_within, 'stroke')}"
         )
-    elif option.verdict in (NOT_REACHED, REFUSES):
-        words.append("no ram up to eight times as heavy would reach it")
-    return "; " + "; ".join(words) if words else ""
+    if cure.stack is not None:
+        words.append(f"{cushions(cure.stack, units)}, more than allowed, would do")
+    elif cure.stack_looked:
+        words.append(f"no cushion up to {BEYOND} times the thickest allowed helps")
+    if cure.ram_looked:
+        words.append(_ram(cure, option, units))
+    return "".join(f"; {part}" for part in words)
+
+
+def _ram(cure: Cure, option: Option, units: Units) -> str:
+    """Return which ram would do, in words."""
+    short = option.verdict in SHORT_OF_SET
+    if cure.ram_mass is None:
+        return f"no ram up to {HEAVIER:g} times as heavy {'would reach it' if short else 'helps'}"
+    ram = (
+        f"a ram of {units.text(cure.ram_mass, 'mass')} in place of "
+        f"{units.text(option.hammer.ram_mass, 'mass')} would"
+    )
+    if not short:
+        return f"{ram} do, at a lower stroke"
+    return f"{ram} reach it" + ("" if cure.ram_within else ", though not within the stress limits")
+
+
+def softer_sentence(option: Option, objective: str, units: Units) -> str:
+    """Return what the softer runner-up of an option gains and costs, in words."""
+    softer = option.runner_up
+    if softer is None:
+        return ""
+    changes = [
+        f"{name} from {share_text(before)} to {share_text(after)}"
+        for name, before, after in (
+            ("compression", option.compression_use, softer.compression_use),
+            ("tension", option.tension_use, softer.tension_use),
+        )
+        if f"{before:.2f}" != f"{after:.2f}"
+    ]
+    return (
+        f"Softer for {option.hammer.name}: {cushions(softer.stack, units)} at "
+        f"{units.text(softer.target.stroke, 'stroke')}; {', '.join(changes)} of the limit, "
+        f"{_at_what_cost(option.target, softer.target, objective)}."
+    )
+
+
+def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
+    """Return what the runner-up takes more of than the best plan, in words."""
+    what, ratio = "energy", softer.blow_energy / best.blow_energy
+    if objective == "time":
+        if not best.speed or not softer.speed:
+            return "at a speed not known"
+        what, ratio = "speed", softer.speed / best.speed
+    change = f"{100 * abs(ratio - 1):.0f}%"
+    if change == "0%":
+        return f"at the same {what}"
+    return f"for {change} {'more' if ratio > 1 else 'less'} {what}"
 
 
 def basis(job: Job, units: Units) -> list[str]:
@@ -126,9 +228,51 @@ def basis(job: Job, units: Units) -> list[str]:
         f"({limits.compression_text}); tension {units.text(limits.tension, 'stress')} "
         f"({limits.tension_text})."
     ]
+    keep = job.search.reserve
+    if keep:
+        lines.append(
+            f"Reserve: {100 * keep:.3g}% kept back from set and limits: the set must be "
+            f"{1 + keep:.4g} times the one needed, stresses at most {100 * (1 - keep):.3g}% of the "
+            "limits."
+        )
     lines += [f"Warning: {text}." for text in limits.warnings]
-    notes = dict.fromkeys([*job.pile.notes, *(note for s in job.stages for note in s.notes)])
-    if notes:
-        lines.append("Taken by default: " + "; ".join(notes) + ".")
+    if notes := _notes(job, units):
+        lines.append(f"Taken by default: {'; '.join(notes)}.")
     lines += [f"Notice: {text.rstrip('.')}." for text in job.notices]
     return lines
+
+
+def _notes(job: Job, units: Units) -> list[str]:
+    """Return what was taken by default, with the stages for what is not the same at all."""
+    stages: dict[str, list[str]] = {}
+    for stage in job.stages:
+        for note in stage.notes:
+            stages.setdefault(note, []).append(repr(stage.name))
+    return [units.retold(note) for note in job.pile.notes] + [
+        units.retold(note) + ("" if len(names) == len(job.stages) else f" at {' and '.join(names)}")
+        for note, names in stages.items()
+    ]
+
+
+def searched(ranking: Ranking) -> str:
+    """Return how the answers were found, hammers of one kind of answer told together."""
+    groups: dict[str, list[list[int]]] = {}
+    for option in (*ranking.options, *ranking.rejected):
+        shape = re.sub(r"\d+", "#", option.certificate)
+        groups.setdefault(shape, []).append(
+            [int(n) for n in re.findall(r"\d+", option.certificate)]
+        )
+    told = []
+    for shape, numbers in groups.items():
+        text = shape
+        for column in zip(*numbers, strict=True):
+            low, high = min(column), max(column)
+            text = text.replace("#", f"{low}" if low == high else f"{low} to {high}", 1)
+        many = f"{len(numbers)} hammer{'s' if len(numbers) > 1 else ''} "
+        told.append(text if len(groups) == 1 else many + text)
+    spent = (
+        f"{ranking.analyses} blows in {ranking.runtime:.1f} s"
+        if ranking.analyses
+        else "no blow was needed, the weight decides"
+    )
+    return f"Searched: {'; '.join(told)}; {spent}."

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import math
+import re
 from dataclasses import dataclass
 
 from matchup.model.cushion import Cushion
-from matchup.units import display_unit, to_display
+from matchup.units import display_unit, parse_quantity, to_display
 
 DIGITS = {
     ("stroke", "metric"): 2,
@@ -26,6 +27,16 @@ DIGITS = {
     ("mass", "metric"): 0,
     ("mass", "us"): 0,
 }
+TOLD_IN = {
+    "mm": "thickness",
+    "cm2": "area",
+    "GPa": "modulus",
+    "kg/m3": "density",
+    "s/m": "damping",
+}
+"""Units in which readers tell of values, and the quantity that each stands for."""
+MOST_DIGITS = 3
+"""Decimals more than usual, at most, to tell a value from its bound."""
 COUNTED_LENGTH = {"metric": (0.25, "25cm", "25 cm"), "us": (0.3048, "ft", "ft")}
 
 
@@ -53,6 +64,47 @@ class Units:
         """Return number and unit."""
         value = to_display(si, quantity, self.system)
         return f"{value:.{self.digits(quantity)}f} {self.unit(quantity)}"
+
+    def together(self, si: float, bound: float, quantity: str) -> tuple[str, str]:
+        """Return a value and its bound with units, in as many decimals as tell them apart."""
+        value, other = (to_display(v, quantity, self.system) for v in (si, bound))
+        digits = self.digits(quantity)
+        most = digits + (MOST_DIGITS if value != other else 0)
+        while digits < most and f"{value:.{digits}f}" == f"{other:.{digits}f}":
+            digits += 1
+        unit = self.unit(quantity)
+        return f"{value:.{digits}f} {unit}", f"{other:.{digits}f} {unit}"
+
+    @property
+    def speed_unit(self) -> str:
+        """The unit of a penetration speed."""
+        return "ft/min" if self.system == "us" else "m/min"
+
+    @property
+    def speed_key(self) -> str:
+        """A column key with that unit."""
+        return f"speed_{self.speed_unit.replace('/', '_per_')}"
+
+    def speed(self, si: float | None) -> float | None:
+        """Return a penetration speed in its unit."""
+        return None if si is None else 60 * to_display(si, "velocity", self.system)
+
+    def retold(self, text: str) -> str:
+        """Return a reader's words with the values told in metric units shown in these units.
+
+        What stands in brackets is a source, and stays as it is printed there.
+        """
+        if self.system == "metric":
+            return text
+        told, bracket, source = text.partition(" (")
+
+        def shown(found: re.Match[str]) -> str:
+            quantity = TOLD_IN[found[2]]
+            value = self.value(parse_quantity(found[0], quantity), quantity) or 0.0
+            return f"{float(f'{value:.3g}'):g} {self.unit(quantity)}"
+
+        units = "|".join(TOLD_IN)
+        return re.sub(rf"(\d+\.?\d*) ({units})\b", shown, told) + bracket + source
 
     def blow_count(self, set_: float) -> float | None:
         """Return blows per 25 cm or per foot; None where the pile does not move."""
@@ -83,6 +135,20 @@ class Units:
         if cushion.sheets:
             return f"{cushion.sheets} {cushion.material.name}"
         return f"{self.text(cushion.thickness, 'thickness')} {cushion.material.name}"
+
+
+def share_text(share: float) -> str:
+    """Return a share of a limit as whole percent, with decimals where it is hardly above or below.
+
+    Nobody shall read 100% of something that is exceeded, or that is not.
+    """
+    usual = f"{100 * share:.0f}%"
+    if usual != "100%" or share == 1:
+        return usual
+    close = f"{100 * share:.1f}%"
+    if close != "100.0%":
+        return close
+    return "just over 100%" if share > 1 else "just under 100%"
 
 
 def percent(share: float | None) -> float | None:

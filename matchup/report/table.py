@@ -3,10 +3,13 @@
 from __future__ import annotations
 
 import csv
+import html
 import io
+import re
 import textwrap
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import TypeVar
 
 from tabulate import DataRow, TableFormat, tabulate
 
@@ -21,6 +24,14 @@ NARROW = TableFormat(
     with_header_hide=None,
 )
 """One space between columns: eleven of them have to fit 100 characters."""
+
+
+NO_BREAK = "\u00a0"
+Row = TypeVar("Row")
+
+
+class AtLeast(float):
+    """A number that is a lower bound: a plus for people, the number in files."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,6 +50,12 @@ class Column:
         Widest text before it is wrapped; None never wraps.
     keep : int
         Columns with the lowest numbers are left out first where a line is too narrow; 9 stays.
+    short : mapping of str to str
+        Short forms in which people see some of the texts; a file holds them whole.
+    notes : mapping of str to str
+        What some of the texts mean, told under the table where they occur.
+    once : bool
+        Whether people see a text that is the same as in the row above only there.
     """
 
     key: str
@@ -46,6 +63,13 @@ class Column:
     digits: int | None = None
     wrap: int | None = None
     keep: int = 9
+    short: Mapping[str, str] = field(default_factory=dict)
+    notes: Mapping[str, str] = field(default_factory=dict)
+    once: bool = False
+
+
+Field = tuple[Column, Callable[[Row], object]]
+"""A column and what it shows of a row."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,28 +92,58 @@ class Table:
             columns.remove(least)
             left_out.append(" ".join(self.columns[least].header.split()))
             text = self._render(columns)
+        notes = self._notes(columns)
         if left_out:
-            note = f"(left out for want of width: {', '.join(left_out)})"
-            text += "\n" + "\n".join(textwrap.wrap(note, width))
-        return text
+            notes.append(f"(left out for want of width: {', '.join(left_out)})")
+        return "\n".join([text, *(wrapped(note, width) for note in notes)])
 
     def _render(self, columns: Sequence[int]) -> str:
         picked = [self.columns[i] for i in columns]
         header = _lines([column.header for column in picked], at_bottom=True)
         body = [
             line
-            for row in self.rows
-            for line in _lines([_cell(row[i], c) for i, c in zip(columns, picked, strict=True)])
+            for above, row in zip((None, *self.rows), self.rows, strict=False)
+            for line in _lines(
+                [
+                    "" if c.once and above and above[i] == row[i] else _cell(row[i], c)
+                    for i, c in zip(columns, picked, strict=True)
+                ]
+            )
         ]
         text = tabulate(
             header + body,
             tablefmt=NARROW,
             disable_numparse=True,
-            colalign=["left" if column.digits is None else "right" for column in picked],
+            colalign=self._alignment(picked),
         )
         lines = [line.rstrip() for line in text.splitlines()]
         lines.insert(len(header), "-" * max(map(len, lines)))
         return "\n".join(lines)
+
+    def to_html(self) -> str:
+        """Return the table for a notebook; every text is escaped."""
+        table = tabulate(
+            [[_cell(v, c) for v, c in zip(row, self.columns, strict=True)] for row in self.rows],
+            [" ".join(column.header.split()) for column in self.columns],
+            tablefmt="html",
+            disable_numparse=True,
+            colalign=self._alignment(self.columns) if self.rows else None,
+        )
+        notes = self._notes(range(len(self.columns)))
+        return "".join([table, *(f"<p>{html.escape(note)}</p>" for note in notes)])
+
+    @staticmethod
+    def _alignment(columns: Sequence[Column]) -> list[str]:
+        return ["left" if column.digits is None else "right" for column in columns]
+
+    def _notes(self, columns: Iterable[int]) -> list[str]:
+        """Return what the texts in the columns shown mean, each once."""
+        return [
+            note
+            for i in columns
+            for text, note in self.columns[i].notes.items()
+            if any(row[i] == text for row in self.rows)
+        ]
 
     def to_csv(self) -> str:
         """Return the table as CSV with plain numbers; absent values are empty."""
@@ -104,6 +158,14 @@ class Table:
         """Return the rows as dictionaries."""
         keys = [column.key for column in self.columns]
         return [dict(zip(keys, row, strict=True)) for row in self.rows]
+
+
+def tabled(rows: Sequence[Row], fields: Sequence[Field[Row]]) -> Table:
+    """Return a table of things, each column with what it shows of a thing."""
+    return Table(
+        tuple(column for column, _ in fields),
+        tuple(tuple(show(row) for _, show in fields) for row in rows),
+    )
 
 
 def _lines(cells: Sequence[str], at_bottom: bool = False) -> list[list[str]]:
@@ -121,13 +183,18 @@ def _cell(value: object, column: Column) -> str:
     if value is None:
         return "-"
     if column.digits is not None and isinstance(value, (int, float)):
-        return f"{value:.{column.digits}f}"
-    text = str(value)
+        return f"{value:.{column.digits}f}{'+' if isinstance(value, AtLeast) else ''}"
+    text = column.short.get(str(value), str(value))
     if column.wrap:
         text = "\n".join(textwrap.wrap(text, column.wrap)) or text
     return text
 
 
 def wrapped(text: str, width: int, indent: str = "") -> str:
-    """Return a paragraph in lines of at most `width`, later lines indented."""
-    return "\n".join(textwrap.wrap(text, width, subsequent_indent=indent, break_on_hyphens=False))
+    """Return a paragraph in lines of at most `width`, later lines indented.
+
+    A number and what follows it, mostly its unit, stay in one line.
+    """
+    kept = re.sub(r"(?<=\d) (?=[a-zA-Z])", NO_BREAK, text)
+    lines = textwrap.wrap(kept, width, subsequent_indent=indent, break_on_hyphens=False)
+    return "\n".join(lines).replace(NO_BREAK, " ")

@@ -1,0 +1,163 @@
+"""Options and their plans as tables."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+
+from matchup.report.sentences import needed_set
+from matchup.report.shown import Units, percent
+from matchup.report.table import AtLeast, Column, Field, Row, Table, tabled
+from matchup.search.option import REDUCED, Option, Ranking, StagePlan
+
+VERDICT = Column(
+    "verdict",
+    "verdict",
+    wrap=11,
+    short={REDUCED: "drives*"},
+    notes={REDUCED: "* at an earlier stage with less stroke than at the target"},
+)
+GOVERNS = Column(
+    "governs",
+    "governs",
+    wrap=8,
+    keep=3,
+    short={"stroke range": "range"},
+    notes={"stroke range": "range: the stroke is at an end of the hammer's own range"},
+)
+
+
+def options_table(options: Sequence[Option], units: Units, objective: str = "energy") -> Table:
+    """Return the table of options, best first."""
+    fields: list[Field[Option]] = [
+        (VERDICT, lambda o: o.verdict),
+        (Column("hammer", "hammer", wrap=14), lambda o: o.hammer.name),
+    ]
+    if objective == "time":
+        speed = Column(units.speed_key, f"speed\n{units.speed_unit}", 2)
+        fields.append((speed, lambda o: units.speed(o.target.speed)))
+    fields += [
+        _measured("stroke", "stroke", "stroke", units, lambda o: o.target.stroke),
+        (Column("cushion", "pile\ncushion", wrap=12), lambda o: units.cushion(o.stack.pile)),
+    ]
+    if any(option.stack.hammer for option in options):
+        cushion = Column("hammer_cushion", "hammer\ncushion", wrap=12)
+        fields.append((cushion, lambda o: _hammer_cushion(o, units)))
+    fields += [
+        _measured("set", "set", "set", units, lambda o: o.target.set),
+        (_blow_count(units), lambda o: units.blow_count(o.target.set)),
+        _measured("blow_energy", "energy", "energy", units, lambda o: o.target.blow_energy),
+        (
+            Column("compression_percent", "compr.\n% of\nlimit", 0),
+            lambda o: percent(o.compression_use),
+        ),
+        (Column("tension_percent", "tension\n% of\nlimit", 0), lambda o: percent(o.tension_use)),
+        (GOVERNS, lambda o: o.governs),
+        (_window(units, keep=2), lambda o: _range(o.target, units)),
+        (Column("reach", "reach", 2, keep=4), _reach),
+        (Column("blows_per_minute", "blows\n/min", 0, keep=1), lambda o: _rate(o.target)),
+    ]
+    return tabled(options, fields)
+
+
+def schedule_table(options: Sequence[Option], units: Units) -> Table:
+    """Return what options do at every stage."""
+    fields: list[Field[tuple[Option, StagePlan]]] = [
+        (Column("hammer", "hammer", wrap=14, once=True), lambda row: row[0].hammer.name),
+        (Column("stage", "stage", wrap=18), lambda row: row[1].stage.name),
+        _measured(
+            "penetration",
+            "penetration",
+            "length",
+            units,
+            lambda row: row[1].stage.penetration,
+            keep=1,
+        ),
+        _measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
+        (_window(units), lambda row: _range(row[1], units)),
+        _measured("set", "set", "set", units, lambda row: row[1].set),
+        _measured("set_needed", "needed", "set", units, lambda row: row[1].stage.set_needed),
+        (_blow_count(units), lambda row: units.blow_count(row[1].set)),
+        (
+            Column("compression_percent", "compr.\n% limit", 0),
+            lambda row: percent(row[1].compression_use),
+        ),
+        (Column("tension_percent", "tension\n% limit", 0), lambda row: percent(row[1].tension_use)),
+    ]
+    return tabled([(option, plan) for option in options for plan in option.plans], fields)
+
+
+def _measured(
+    key: str,
+    header: str,
+    quantity: str,
+    units: Units,
+    of: Callable[[Row], float],
+    keep: int = 9,
+) -> Field[Row]:
+    """Return a column of values of one quantity, with the usual decimals."""
+    column = Column(
+        units.key(key, quantity),
+        f"{header}\n{units.unit(quantity)}",
+        units.digits(quantity),
+        keep=keep,
+    )
+    return column, lambda row: units.value(of(row), quantity)
+
+
+def _blow_count(units: Units) -> Column:
+    counted = units.counted
+    return Column(f"blows_per_{counted.replace(' ', '')}", f"blows\n/{counted}", 0)
+
+
+def _window(units: Units, keep: int = 9) -> Column:
+    return Column("stroke_window", f"window\n{units.unit('stroke')}", keep=keep)
+
+
+def _hammer_cushion(option: Option, units: Units) -> str | None:
+    return None if option.stack.hammer is None else units.retold(option.stack.hammer.text)
+
+
+def _range(plan: StagePlan, units: Units) -> str | None:
+    low, high = units.value(plan.low, "stroke"), units.value(plan.top, "stroke")
+    return None if low is None or high is None else f"{low:.2f}-{high:.2f}"
+
+
+def _reach(option: Option) -> float | None:
+    if option.reach is None or not option.reach_is_open:
+        return option.reach
+    return AtLeast(option.reach)
+
+
+def _rate(plan: StagePlan) -> float | None:
+    return None if plan.blow_rate is None else 60 * plan.blow_rate
+
+
+def margins_table(option: Option, ranking: Ranking, units: Units) -> Table:
+    """Return how far an option is from each limit; a negative margin is an excess."""
+    job = ranking.job
+    plan = option.failing or option.target
+    needed = needed_set(plan.stage, job)
+    reached, asked = units.together(plan.set, needed, "set")
+    what = "set" if len(job.stages) == 1 else f"set at {plan.stage.name!r}"
+    rows: list[tuple[object, ...]] = [
+        (what, reached, f"at least {asked}", 100 * (plan.set / needed - 1))
+    ]
+    keep = 1 - job.search.reserve
+    for name, found, limit in (
+        ("compression", max(p.compression for p in option.plans), keep * job.limits.compression),
+        ("tension", max(p.tension for p in option.plans), keep * job.limits.tension),
+    ):
+        if math.isfinite(found):
+            peak, most = units.together(found, limit, "stress")
+            rows.append((f"peak {name}", peak, f"at most {most}", 100 * (1 - found / limit)))
+    if option.reach is not None:
+        reach = f"{option.reach:.2f}{'+' if option.reach_is_open else ''}"
+        rows.append(("reach", reach, "at least 1.00", 100 * (option.reach - 1)))
+    columns = (
+        Column("what", "what"),
+        Column("found", "found"),
+        Column("needed", "needed"),
+        Column("margin_percent", "margin\n%", 1),
+    )
+    return Table(columns, tuple(rows))

@@ -1,0 +1,35 @@
+"""The example jobs and what they give, each computed once in a test run."""
+
+from __future__ import annotations
+
+from functools import cache
+from pathlib import Path
+
+import matchup
+
+FOLDER = Path(__file__).parents[1] / "examples" / "hollowmere_landing"
+NAMES = ("dolphin_tube", "fender_piles", "final_set", "three_stages")
+
+
+def path(name: str) -> Path:
+    return FOLDER / f"{name}.toml"
+
+
+@cache
+def ranking(name: str) -> matchup.RankingResult:
+    return matchup.rank(path(name))
+
+
+@cache
+def check(name: str, hammer: str) -> matchup.CheckResult:
+    return matchup.check(ranking(name).job, hammer)
+
+
+@cache
+def window(name: str, hammer: str) -> matchup.WindowResult:
+    return matchup.window(ranking(name).job, hammer)
+
+
+@cache
+def best_blow(name: str, hammer: str) -> matchup.BlowResult:
+    return matchup.blow(ranking(name).job, hammer, best=True)
