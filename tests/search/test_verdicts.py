@@ -108,7 +108,8 @@ def test_a_stroke_held_back_at_a_stage_lies_below_the_targets_and_is_told() -> N
     held = found.plans[0]
     assert held.top is not None
     assert held.top < found.target.stroke
-    assert f"stroke kept to {held.stroke:.2f} m at 'soft clay'" in reason(found, job, Units("metric"))
+    kept = f"stroke kept to {held.stroke:.2f} m at 'soft clay'"
+    assert kept in reason(found, job, Units("metric"))
 
 
 def test_a_pile_that_runs_is_an_answer_with_no_blow_spent_on_it() -> None:
