@@ -118,7 +118,8 @@ def strike(
     head, substeps = head_rows(chains, *strikes[1:])
     ground = np.ascontiguousarray(chains.ground_of[strikes.stage, strikes.hammer])
     blows = Blows(ground, substeps, head)
-    order = _groups(substeps)
+    # The trace is of the first blow, so details keep the order.
+    order = _groups(substeps, None if detail else _stopping_times(chains, strikes))
     count = strikes.stroke.size
     longest = max(math.ceil(LONGEST_BLOW / chains.bar.step), 2 * least_steps)
     out = np.zeros((count, len(COLUMNS)))
@@ -138,9 +139,10 @@ def strike(
             trace if first == 0 else trace[:0],
         )
 
-    size = LANES * GROUPS_PER_TASK
-    spans = [(first, min(first + size, order.size)) for first in range(0, order.size, size)]
     workers = workers or os.cpu_count() or 1
+    groups = order.size // LANES
+    size = LANES * min(GROUPS_PER_TASK, max(1, math.ceil(groups / workers)))
+    spans = [(first, min(first + size, order.size)) for first in range(0, order.size, size)]
     if workers == 1 or len(spans) == 1:
         for first, last in spans:
             run(first, last)
@@ -150,11 +152,25 @@ def strike(
     return _results(chains, strikes, out, envelope, trace)
 
 
-def _groups(substeps: Integers) -> Integers:
-    """Return the rows in groups of `LANES` with equal sub-steps, short groups filled up."""
+def _stopping_times(chains: Chains, strikes: Strikes) -> Floats:
+    """Return roughly how long blows last: the time in which resistance stops the ram's momentum."""
+    hammers = chains.hammers
+    momentum = np.array([h.ram_mass * h.impact_velocity(1.0) for h in hammers])[strikes.hammer]
+    resistance = np.array([stage.resistance for stage in chains.stages])[strikes.stage]
+    surplus = resistance - chains.weights[strikes.hammer]
+    return np.asarray(momentum * np.sqrt(strikes.stroke) / np.maximum(surplus, 1.0))
+
+
+def _groups(substeps: Integers, lasting: Floats | None) -> Integers:
+    """Return the rows in groups of `LANES` with equal sub-steps, short groups filled up.
+
+    A group takes as long as its longest blow, so blows that last alike stand together.
+    """
     order: list[Integers] = []
     for kind in np.unique(substeps):
         rows = np.flatnonzero(substeps == kind)
+        if lasting is not None:
+            rows = rows[np.argsort(-lasting[rows], kind="stable")]
         missing = -rows.size % LANES
         order.append(np.concatenate((rows, np.repeat(rows[-1:], missing))))
     return np.concatenate(order).astype(np.int64) if order else np.empty(0, np.int64)

@@ -161,7 +161,11 @@ class Rig:
         fresh = np.column_stack(
             (struck.set, struck.compression, struck.tension, struck.transferred, struck.sound)
         )
-        self._answers = np.concatenate((self._answers, fresh))
+        if self.spent + stroke.size > len(self._answers):
+            room = np.empty((2 * (self.spent + stroke.size), 5))
+            room[: self.spent] = self._answers[: self.spent]
+            self._answers = room
+        self._answers[self.spent : self.spent + stroke.size] = fresh
         self.spent += stroke.size
         self.spent_on += np.bincount(hammer, minlength=self.spent_on.size)
 

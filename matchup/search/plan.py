@@ -260,6 +260,8 @@ class Planner:
         at_once = 1 if self._cost_is_known_at_target else len(self.rig.stacks)
         while going := [h for h, queue in queues.items() if queue]:
             batch = {h: [queues[h].pop(0) for _ in queues[h][:at_once]] for h in going}
+            # Where cheap ones fail, the next few fail likely too: fewer and fuller batches.
+            at_once *= 2
             self._look_on_the_way([(h, c) for h, stacks in batch.items() for c in stacks])
             for h, stacks in batch.items():
                 working = [c for c in stacks if self.works(h, c)]
