@@ -1,0 +1,399 @@
+"""From the readings of a cone penetration test, in any file format, to a sounding.
+
+The format readers find the channels; everything that is the same for all formats is said once
+here: which depth and which cone resistance are taken, what is done with zero drift, rows out of
+order and rows at the same depth, and which values can't be.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, field, replace
+from pathlib import Path
+
+import numpy as np
+
+from matchup.errors import ModelError, Problem
+from matchup.inputs.findings import Findings
+from matchup.model.sounding import FloatArray, Sounding
+from matchup.units import QUANTITIES, UnitError, format_quantity, parse_number, unit_factor
+
+LOWEST = {"tip": -100e3, "corrected_tip": -100e3, "sleeve": -15e3, "pore_pressure": -5e6}
+"""Lowest values that a cone in order can give. Down to these, a negative cone resistance or
+sleeve friction is drift of the zero reading (accuracy of class 2 of ISO 22476-1:2012; from
+memory) and is set to zero; a pore pressure is that of 500 m of water drawn off. [Pa]"""
+HIGHEST = {"tip": 200e6, "corrected_tip": 200e6, "sleeve": 5e6, "pore_pressure": 50e6}
+"""Values beyond these are voids or in another unit than stated; no cone measures them.
+Common practice, no published source. [Pa]"""
+LARGEST_OVERLAP = 0.5
+"""Rows that go back up by more, through depths already covered, are of another test. [m]"""
+MISSING_END = 0.5
+"""A note is made where readings end further than this above the stated final depth. [m]"""
+
+
+@dataclass(frozen=True, slots=True)
+class Channel:
+    """One column of readings.
+
+    Parameters
+    ----------
+    place : str
+        What the file calls it.
+    values : (n,) float64 array
+        In SI; NaN where void.
+    typed : sequence of str
+        The same as typed, with unit.
+    """
+
+    place: str
+    values: FloatArray
+    typed: Sequence[str]
+
+
+@dataclass(frozen=True, slots=True)
+class Stated:
+    """A single value that a file states of a test.
+
+    Parameters
+    ----------
+    value : float
+        In SI.
+    place : str
+        What the file calls it.
+    line : int or None
+    typed : str
+    """
+
+    value: float
+    place: str
+    line: int | None
+    typed: str
+
+
+@dataclass(slots=True)
+class Readings:
+    """One test as a format reader found it.
+
+    Parameters
+    ----------
+    file : str
+        As the user named it.
+    name : str
+        Location or test id.
+    lines : sequence of int or None
+        Line of each row.
+    wanted : mapping
+        What the format calls each channel that it may hold, by the keys ``depth``, ``length``
+        (penetration length, where the format tells it from depth), ``tip``, ``corrected_tip``,
+        ``sleeve``, ``pore_pressure``.
+    channels : dict
+        The channels found, by the same keys.
+    stated : dict
+        Single values that the file states, by the keys ``area_ratio``, ``predrilled``, ``water``
+        (as in `Sounding`) and ``final_depth``.
+    notes : list of str
+    one_test : bool
+        Whether the format vouches that all rows are of one test.
+    which : str
+        How the user can name one of several tests, if these rows are of several.
+    """
+
+    file: str
+    name: str
+    lines: Sequence[int | None]
+    wanted: Mapping[str, str]
+    channels: dict[str, Channel] = field(default_factory=dict)
+    stated: dict[str, Stated] = field(default_factory=dict)
+    notes: list[str] = field(default_factory=list)
+    one_test: bool = False
+    which: str = "Keep the rows of one test."
+
+    def value(self, key: str) -> float | None:
+        """Return a single value, None where the file does not state it."""
+        return self.stated[key].value if key in self.stated else None
+
+
+@dataclass(frozen=True, slots=True)
+class Column:
+    """One column of readings as typed.
+
+    Parameters
+    ----------
+    place : str
+        What the file calls it.
+    unit : str
+        As the file states it.
+    line : int or None
+        Where the unit stands.
+    cells : sequence of str
+        Empty where void.
+    void : float or None
+        A number that stands for a void, in the column's own unit.
+    """
+
+    place: str
+    unit: str
+    line: int | None
+    cells: Sequence[str]
+    void: float | None = None
+
+
+def add_column(readings: Readings, key: str, column: Column, findings: Findings) -> None:
+    """Read a column's numbers into a channel of `readings`, or note why that can't be done."""
+    quantity = "length" if key in ("depth", "length") else "stress"
+    factor = unit_of(readings.file, column.line, column.place, column.unit, quantity, findings)
+    values = np.full(len(column.cells), np.nan)
+    for row, cell in enumerate(column.cells):
+        if not cell:
+            continue
+        try:
+            number = parse_number(cell)
+        except UnitError as error:
+            findings.add(readings.file, readings.lines[row], column.place, error.must, cell)
+            continue
+        if number != column.void:
+            values[row] = number * factor
+    typed = [f"{cell} {column.unit}" for cell in column.cells]
+    readings.channels[key] = Channel(column.place, values, typed)
+
+
+def unit_of(
+    file: str, line: int | None, place: str, unit: str, quantity: str, findings: Findings
+) -> float:
+    """Return the factor to SI of a unit that the file states; NaN and a problem if it has none."""
+    if not unit and quantity == "number":
+        return 1.0
+    if not unit:
+        do = f"Write for example {QUANTITIES[quantity].examples}."
+        findings.add(file, line, place, "must have its unit", "none", do)
+        return np.nan
+    try:
+        return unit_factor(unit, quantity)
+    except UnitError as error:
+        findings.add(file, line, place, error.must, unit, error.do)
+        return np.nan
+
+
+def add_value(readings: Readings, key: str, column: Column, findings: Findings) -> None:
+    """Read a single value, the first cell of `column`; an empty one is not stated."""
+    cell = column.cells[0]
+    if not cell:
+        return
+    quantity = "number" if key == "area_ratio" else "length"
+    file, line, place = readings.file, column.line, column.place
+    factor = unit_of(file, line, place, column.unit, quantity, findings)
+    try:
+        value = parse_number(cell) * factor
+    except UnitError as error:
+        findings.add(file, line, place, error.must, cell)
+        return
+    readings.stated[key] = Stated(value, place, line, f"{cell} {column.unit}".rstrip(" -"))
+
+
+def condensed(problems: Iterable[Problem]) -> list[Problem]:
+    """Return problems with those that differ only in line and value told once, with a count."""
+    groups: dict[Problem, list[Problem]] = {}
+    for problem in problems:
+        groups.setdefault(replace(problem, line=None, found=""), []).append(problem)
+    told = []
+    for first, *more in groups.values():
+        rows = f"{len(more)} more row{'s' if len(more) > 1 else ''}"
+        found = f"{first.found} (and so in {rows})" if more else first.found
+        told.append(replace(first, found=found))
+    return told
+
+
+def sounding_of(readings: Readings, findings: Findings) -> Sounding | None:
+    """Return the sounding that readings make, or note everything that stands against it.
+
+    * Depth corrected for inclination comes before penetration length, if it is there wherever
+      the length is.
+    * Depths that are all negative are taken as measured downwards.
+    * Cone resistance is qc as measured; qt is taken where there is no qc, or where the file
+      gives qt for every qc but no area ratio by which qc could be corrected.
+    * Rows are sorted by depth; rows at the same depth become one, with each channel's mean.
+      Runs of rows that overlap by more than `LARGEST_OVERLAP` are two tests, and refused.
+
+    Parameters
+    ----------
+    readings : Readings
+        Its notes are added to.
+    findings : Findings
+        Takes problems; modified in place.
+    """
+    before = len(findings.problems)
+    depth = _depth(readings, findings)
+    corrected = _takes_corrected(readings)
+    tip = _stress(readings, "corrected_tip" if corrected else "tip", findings)
+    sleeve = _stress(readings, "sleeve", findings)
+    pore_pressure = _stress(readings, "pore_pressure", findings)
+    if np.isnan(tip).all() and not _has_problem_at(readings, ("tip", "corrected_tip"), findings):
+        must = f"must have a cone resistance: {readings.wanted['tip']}"
+        found = "voids only" if {"tip", "corrected_tip"} & set(readings.channels) else "none"
+        findings.add(readings.file, None, "", must, found)
+    if len(findings.problems) == before:
+        _check_order(readings, depth, findings)
+    if len(findings.problems) > before:
+        return None
+    if corrected:
+        readings.notes.append(
+            "Cone resistance is the file's own qt, corrected for pore pressure behind the cone."
+        )
+    for what, values in (("sleeve friction", sleeve), ("pore pressure u2", pore_pressure)):
+        if np.isnan(values).all():
+            readings.notes.append(f"The file has no {what}.")
+    depth, (tip, sleeve, pore_pressure) = _ordered(readings, depth, (tip, sleeve, pore_pressure))
+    _note_missing_end(readings, depth)
+    try:
+        return Sounding(
+            name=readings.name or Path(readings.file).stem,
+            depth=depth,
+            tip=tip,
+            sleeve=sleeve,
+            pore_pressure=pore_pressure,
+            corrected=corrected,
+            area_ratio=readings.value("area_ratio"),
+            predrilled=readings.value("predrilled") or 0.0,
+            water=readings.value("water"),
+            notes=tuple(readings.notes),
+        )
+    except ModelError as error:
+        stated = readings.stated.items()
+        findings.add_model_error(
+            error,
+            readings.file,
+            {key: value.line for key, value in stated},
+            {key: value.typed for key, value in stated},
+            {key: value.place for key, value in stated},
+        )
+        return None
+
+
+def _depth(readings: Readings, findings: Findings) -> FloatArray:
+    """Return depths below the surface; empty, with a problem, where there are none."""
+    channels = readings.channels
+    vertical, length = channels.get("depth"), channels.get("length")
+    channel = vertical or length
+    if vertical and length and np.any(np.isnan(vertical.values) & ~np.isnan(length.values)):
+        channel = length
+    if channel is None:
+        keys = [key for key in ("length", "depth") if key in readings.wanted]
+        must = f"must have a depth: {' or '.join(readings.wanted[key] for key in keys)}"
+        findings.add(readings.file, None, "", must, "none")
+        return np.empty(0)
+    if "length" in readings.wanted:
+        readings.notes.append(
+            "Depth is the penetration length, not corrected for inclination."
+            if channel is length
+            else "Depth is corrected for inclination, as the file gives it."
+        )
+    depth = channel.values
+    if np.any(depth < 0) and not np.any(depth > 0):
+        readings.notes.append("Depths are negative in the file; taken as measured downwards.")
+        depth = np.abs(depth)
+    if not _has_problem_at(readings, ("depth", "length"), findings):
+        for row in np.flatnonzero(depth < 0):
+            do = "Take out the rows above the surface."
+            _add(readings, channel, int(row), "must be a depth below the surface", findings, do)
+        for row in np.flatnonzero(np.isnan(depth)):
+            _add(readings, channel, int(row), "must not be void", findings)
+    return depth
+
+
+def _takes_corrected(readings: Readings) -> bool:
+    measured, corrected = readings.channels.get("tip"), readings.channels.get("corrected_tip")
+    if measured is None or corrected is None:
+        return measured is None and corrected is not None
+    there = ~np.isnan(measured.values)
+    complete = bool(np.all(~np.isnan(corrected.values[there])))
+    return not there.any() or (readings.value("area_ratio") is None and complete)
+
+
+def _stress(readings: Readings, key: str, findings: Findings) -> FloatArray:
+    """Return a channel within what a cone can measure; NaN throughout where it is not there."""
+    channel = readings.channels.get(key)
+    if channel is None:
+        return np.full(len(readings.lines), np.nan)
+    values = channel.values
+    low, high = LOWEST[key], HIGHEST[key]
+    lowest, highest = (format_quantity(limit, "stress", "metric") for limit in (low, high))
+    for row in np.flatnonzero(values < low):
+        do = "Mark voids as the format does, or correct the zero reading."
+        _add(readings, channel, int(row), f"must be at least {lowest}", findings, do)
+    for row in np.flatnonzero(values > high):
+        do = "Check the unit, and mark voids as the format does."
+        _add(readings, channel, int(row), f"must be at most {highest}", findings, do)
+    if key == "pore_pressure":
+        return values
+    drift = values[values < 0]
+    if drift.size and np.all(drift >= low):
+        least = format_quantity(float(drift.min()), "stress", "metric")
+        readings.notes.append(
+            f"{channel.place}: {drift.size} values below zero, down to {least}, set to zero."
+        )
+    return np.where(values < 0, 0.0, values)
+
+
+def _check_order(readings: Readings, depth: FloatArray, findings: Findings) -> None:
+    """Note depths that can't be of one test: too few, or covered twice."""
+    distinct = len(np.unique(depth))
+    if distinct < 2:
+        must = "must have readings at two depths or more"
+        findings.add(readings.file, None, "", must, f"{distinct}")
+        return
+    starts = np.flatnonzero(np.diff(depth) < 0) + 1
+    runs = np.split(depth, starts)
+    spans = sorted((float(run[0]), float(run[-1])) for run in runs)
+    deepest = np.maximum.accumulate([bottom for _, bottom in spans])
+    for (top, _), above in zip(spans[1:], deepest, strict=False):
+        if top < above - LARGEST_OVERLAP and not readings.one_test:
+            must = "must be one test; rows go through the same depths twice"
+            found = f"{top:.2f} m to {above:.2f} m again"
+            line = readings.lines[int(starts[0])]
+            findings.add(readings.file, line, "", must, found, readings.which)
+            return
+
+
+def _ordered(
+    readings: Readings, depth: FloatArray, channels: Sequence[FloatArray]
+) -> tuple[FloatArray, list[FloatArray]]:
+    """Return channels by increasing depth, one row to a depth."""
+    if np.any(np.diff(depth) < 0):
+        readings.notes.append("Rows were out of depth order and have been sorted.")
+    unique, place = np.unique(depth, return_inverse=True)
+    doubled = len(depth) - len(unique)
+    if doubled:
+        rows = "1 row has" if doubled == 1 else f"{doubled} rows have"
+        readings.notes.append(f"{rows} the depth of another; their mean is taken.")
+    return unique, [_means(place, values, len(unique)) for values in channels]
+
+
+def _means(place: np.ndarray, values: FloatArray, count: int) -> FloatArray:
+    """Return the mean of the values at each place, voids left out; NaN where all are void."""
+    there = ~np.isnan(values)
+    number = np.bincount(place[there], minlength=count)
+    total = np.bincount(place[there], weights=values[there], minlength=count)
+    means = np.full(count, np.nan)
+    np.divide(total, number, out=means, where=number > 0)
+    return means
+
+
+def _note_missing_end(readings: Readings, depth: FloatArray) -> None:
+    final = readings.value("final_depth")
+    if final is not None and depth[-1] < final - MISSING_END:
+        readings.notes.append(
+            f"Readings end at {depth[-1]:.2f} m, above the stated final depth of {final:.2f} m."
+        )
+
+
+def _add(
+    readings: Readings, channel: Channel, row: int, must: str, findings: Findings, do: str = ""
+) -> None:
+    found = channel.typed[row].strip()
+    findings.add(readings.file, readings.lines[row], channel.place, must, found, do)
+
+
+def _has_problem_at(readings: Readings, keys: Iterable[str], findings: Findings) -> bool:
+    """Return whether a channel has been complained of already."""
+    places = {readings.channels[key].place for key in keys if key in readings.channels}
+    return any(p.file == readings.file and p.place in places for p in findings.problems)
