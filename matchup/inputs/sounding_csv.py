@@ -8,6 +8,7 @@ from pathlib import Path
 import numpy as np
 
 from matchup.inputs.columns import Record, Spec, read_records
+from matchup.inputs.constants import constant_of
 from matchup.inputs.findings import Findings, did_you_mean
 from matchup.inputs.readings import Channel, Readings, Stated, sounding_of
 from matchup.inputs.table import read_table
@@ -68,7 +69,10 @@ def read_csv(path: Path, findings: Findings, location: str | None = None) -> Sou
         if any(column in record.values for record in records):
             readings.channels[key] = _channel(column, records)
     for key in CONSTANT:
-        _add_constant(readings, key, records, findings)
+        first = constant_of(table.file, records, key, findings)
+        if first is not None:
+            value, typed = first.number(key) or 0.0, first.typed[key]
+            readings.stated[key] = Stated(value, f"`{key}`", first.line, typed)
     return sounding_of(readings, findings)
 
 
@@ -96,20 +100,3 @@ def _channel(column: str, records: Sequence[Record]) -> Channel:
     values = np.array([np.nan if number is None else number for number in numbers])
     place = next(record.places[column] for record in records if column in record.places)
     return Channel(place.partition(" of ")[0], values, [r.typed.get(column, "") for r in records])
-
-
-def _add_constant(
-    readings: Readings, column: str, records: Sequence[Record], findings: Findings
-) -> None:
-    """Read the one value of a column that may not change along the depth."""
-    first: Stated | None = None
-    for record in records:
-        value = record.number(column)
-        if value is None:
-            continue
-        place, typed = f"`{column}`", record.typed[column]
-        if first is None:
-            first = readings.stated[column] = Stated(value, place, record.line, typed)
-        elif value != first.value:
-            must = f"must be the same in every row; line {first.line} has {first.typed}"
-            findings.add(readings.file, record.line, place, must, typed)
