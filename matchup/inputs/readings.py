@@ -219,9 +219,8 @@ def sounding_of(readings: Readings, findings: Findings) -> Sounding | None:
     readings : Readings
         Its notes are added to.
     findings : Findings
-        Takes problems; modified in place.
+        Of this file alone: problems that are there already stand against the sounding too.
     """
-    before = len(findings.problems)
     depth = _depth(readings, findings)
     corrected = _takes_corrected(readings)
     tip = _stress(readings, "corrected_tip" if corrected else "tip", findings)
@@ -231,9 +230,9 @@ def sounding_of(readings: Readings, findings: Findings) -> Sounding | None:
         must = f"must have a cone resistance: {readings.wanted['tip']}"
         found = "voids only" if {"tip", "corrected_tip"} & set(readings.channels) else "none"
         findings.add(readings.file, None, "", must, found)
-    if len(findings.problems) == before:
+    if not findings.problems:
         _check_order(readings, depth, findings)
-    if len(findings.problems) > before:
+    if findings.problems:
         return None
     if corrected:
         readings.notes.append(

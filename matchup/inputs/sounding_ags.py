@@ -66,7 +66,7 @@ def read_ags(
     text : str
         What it holds.
     findings : Findings
-        Takes problems; modified in place.
+        Of this file alone; takes problems, modified in place.
     location : str or None
         LOCA_ID, or LOCA_ID/SCPG_TESN for one push of several; needed where the file has more
         than one.

@@ -56,7 +56,7 @@ def read_bro(
     text : str
         What it holds.
     findings : Findings
-        Takes problems; modified in place.
+        Of this file alone; takes problems, modified in place.
     location : str or None
         The registry's number of the test; needed where the file has more than one.
     """

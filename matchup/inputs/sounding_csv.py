@@ -48,16 +48,15 @@ def read_csv(path: Path, findings: Findings, location: str | None = None) -> Sou
     ----------
     path : Path
     findings : Findings
-        Takes problems; modified in place.
+        Of this file alone; takes problems, modified in place.
     location : str or None
         In the column ``location``; needed where the table has more than one.
     """
     table = read_table(path, findings)
     if table is None:
         return None
-    before = len(findings.problems)
     records = read_records(table, COLUMNS, findings)
-    if len(findings.problems) > before:
+    if findings.problems:
         return None
     name, records = _chosen(table.file, records, location, findings)
     if not records:

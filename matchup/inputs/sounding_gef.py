@@ -63,7 +63,7 @@ def read_gef(
     text : str
         What it holds.
     findings : Findings
-        Takes problems; modified in place.
+        Of this file alone; takes problems, modified in place.
     location : str or None
         If given, must be the file's test id.
     """
@@ -79,14 +79,13 @@ def read_gef(
     name = _text(header, "TESTID") or _text(header, "PROJECTID")
     if location is not None and location != name:
         findings.add(file, None, "#TESTID", f"must be {location}", name or "none")
-    before = len(findings.problems)
     rows = _rows(file, lines[first:], first, header, findings)
     readings = Readings(file, name, [row.line for row in rows], WANTED)
     _read_columns(readings, header, rows, findings)
     _read_variables(readings, header, findings)
-    if len(findings.problems) == before:
+    if not findings.problems:
         _check_count(readings, header, findings)
-    return sounding_of(readings, findings)
+    return sounding_of(readings, findings) if rows else None
 
 
 def _header(lines: Sequence[str]) -> tuple[_Header, int | None]:
@@ -213,6 +212,9 @@ def _read_variables(readings: Readings, header: _Header, findings: Findings) -> 
 
 def _check_count(readings: Readings, header: _Header, findings: Findings) -> None:
     """Note rows that the header announces and that are not there."""
+    if not readings.lines:
+        findings.add(readings.file, None, "#EOH", "must be followed by rows of readings", "none")
+        return
     for entry in header.get("LASTSCAN", []):
         count, announced = len(readings.lines), _whole(entry.text)
         if announced is not None and count < announced:
