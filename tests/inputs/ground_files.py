@@ -86,6 +86,34 @@ def bro_record(length: str, depth: str, tip: str, sleeve: str, pore_pressure: st
 
 
 VOID = "-999999"
+BRO_FIELDS = [
+    "penetrationLength",
+    "depth",
+    "elapsedTime",
+    "coneResistance",
+    "correctedConeResistance",
+    "netConeResistance",
+    "magneticFieldStrengthX",
+    "magneticFieldStrengthY",
+    "magneticFieldStrengthZ",
+    "magneticFieldStrengthTotal",
+    "electricalConductivity",
+    "inclinationEW",
+    "inclinationNS",
+    "inclinationX",
+    "inclinationY",
+    "inclinationResultant",
+    "magneticInclination",
+    "magneticDeclination",
+    "localFriction",
+    "poreRatio",
+    "temperature",
+    "porePressureU1",
+    "porePressureU2",
+    "porePressureU3",
+    "frictionRatio",
+]
+BRO_GIVEN = {"penetrationLength", "depth", "coneResistance", "localFriction", "porePressureU2"}
 BRO_RECORDS = [
     bro_record("0.500", "0.500", "0.400", VOID, VOID),
     bro_record("2.000", "1.997", "6.000", "0.040", "0.020"),
@@ -129,6 +157,14 @@ BRO = f"""\
             <cptcommon:values>1.0,0.1,-999999,0.02,-999999;</cptcommon:values>
           </cptcommon:disResult>
         </cptcommon:dissipationTest>
+        <cptcommon:parameters>
+          {
+    "".join(
+        f"<cptcommon:{name}>{'ja' if name in BRO_GIVEN else 'nee'}</cptcommon:{name}>"
+        for name in BRO_FIELDS
+    )
+}
+        </cptcommon:parameters>
       </conePenetrometerSurvey>
     </CPT_O>
   </dispatchDocument>
