@@ -197,7 +197,7 @@ def condensed(problems: Iterable[Problem]) -> list[Problem]:
         groups.setdefault(replace(problem, line=None, found=""), []).append(problem)
     told = []
     for first, *more in groups.values():
-        rows = f"{len(more)} more row{'s' if len(more) > 1 else ''}"
+        rows = _counted(len(more), "more row")
         found = f"{first.found} (and so in {rows})" if more else first.found
         told.append(replace(first, found=found))
     return told
@@ -242,7 +242,7 @@ def sounding_of(readings: Readings, findings: Findings) -> Sounding | None:
         if np.isnan(values).all():
             readings.notes.append(f"The file has no {what}.")
     depth, (tip, sleeve, pore_pressure) = _ordered(readings, depth, (tip, sleeve, pore_pressure))
-    _note_missing_end(readings, depth)
+    _note_extent(readings, depth)
     try:
         return Sounding(
             name=readings.name or Path(readings.file).stem,
@@ -328,7 +328,8 @@ def _stress(readings: Readings, key: str, findings: Findings) -> FloatArray:
     if drift.size and np.all(drift >= low):
         least = format_quantity(float(drift.min()), "stress", "metric")
         readings.notes.append(
-            f"{channel.place}: {drift.size} values below zero, down to {least}, set to zero."
+            f"{channel.place}: {_counted(drift.size, 'value')} below zero, down to {least}, set "
+            "to zero."
         )
     return np.where(values < 0, 0.0, values)
 
@@ -362,8 +363,8 @@ def _ordered(
     unique, place = np.unique(depth, return_inverse=True)
     doubled = len(depth) - len(unique)
     if doubled:
-        rows = "1 row has" if doubled == 1 else f"{doubled} rows have"
-        readings.notes.append(f"{rows} the depth of another; their mean is taken.")
+        rows = _counted(doubled, "row")
+        readings.notes.append(f"{rows} at the depth of another; their mean is taken.")
     return unique, [_means(place, values, len(unique)) for values in channels]
 
 
@@ -377,8 +378,14 @@ def _means(place: np.ndarray, values: FloatArray, count: int) -> FloatArray:
     return means
 
 
-def _note_missing_end(readings: Readings, depth: FloatArray) -> None:
-    final = readings.value("final_depth")
+def _note_extent(readings: Readings, depth: FloatArray) -> None:
+    """Note readings within the pre-drilled part, and those missing above the final depth."""
+    predrilled, final = readings.value("predrilled") or 0.0, readings.value("final_depth")
+    loose = int(np.count_nonzero(depth < predrilled))
+    if loose:
+        readings.notes.append(
+            f"{_counted(loose, 'reading')} above the pre-drilled depth of {predrilled:.2f} m, kept."
+        )
     if final is not None and depth[-1] < final - MISSING_END:
         readings.notes.append(
             f"Readings end at {depth[-1]:.2f} m, above the stated final depth of {final:.2f} m."
@@ -390,6 +397,10 @@ def _add(
 ) -> None:
     found = channel.typed[row].strip()
     findings.add(readings.file, readings.lines[row], channel.place, must, found, do)
+
+
+def _counted(number: int, what: str) -> str:
+    return f"{number} {what}" + ("s" if number != 1 else "")
 
 
 def _has_problem_at(readings: Readings, keys: Iterable[str], findings: Findings) -> bool:

@@ -158,7 +158,7 @@ def test_ags_pushes_at_one_location_are_joined(tmp_path):
     holds(sounding.tip, [1e6, 3e6, 6e6])
     holds(sounding.sleeve, [8e3, 9e3, NAN])
     assert "Pushes joined: B8/1, B8/2." in sounding.notes
-    assert "1 row has the depth of another; their mean is taken." in sounding.notes
+    assert "1 row at the depth of another; their mean is taken." in sounding.notes
     assert any("groundwater level of 1.20 m" in note for note in sounding.notes)
     assert sounding.water is None
     assert len(good(tmp_path, AGS, "B8/2").depth) == 2
@@ -268,3 +268,32 @@ def test_workbook(tmp_path):
     stream = io.BytesIO()
     book.save(stream)
     holds(good(tmp_path, stream.getvalue()).tip, [0.4e6, 0.5e6, 12e6])
+
+
+# --- what is only noted -------------------------------------------------------------------------
+
+
+def test_readings_above_the_predrilled_depth_are_kept_and_told(tmp_path):
+    sounding = good(tmp_path, changed(GEF, ("13, 0.50, m", "13, 1.20, m")))
+    assert len(sounding.depth) == 5
+    assert "2 readings above the pre-drilled depth of 1.20 m, kept." in sounding.notes
+
+
+def test_ags_area_ratios_that_differ_between_pushes_are_not_used(tmp_path):
+    text = changed(AGS, ('"DATA","B8","2","PC","","0.75"', '"DATA","B8","2","PC","","0.60"'))
+    sounding = good(tmp_path, text, "B8")
+    assert sounding.area_ratio is None
+    assert "Area ratios differ between pushes (0.75, 0.60); none is used." in sounding.notes
+    assert good(tmp_path, text, "B8/2").area_ratio == 0.6
+
+
+def test_bro_from_another_reference_point_and_with_groundwater(tmp_path):
+    text = changed(
+        BRO,
+        (">maaiveld<", ">kade<"),
+        ("</CPT_O>", "<groundwaterLevel>1.4</groundwaterLevel></CPT_O>"),
+    )
+    sounding = good(tmp_path, text)
+    assert "Depths are from: kade." in sounding.notes
+    assert any("groundwater level of 1.4 m" in note for note in sounding.notes)
+    assert sounding.water is None

@@ -123,7 +123,7 @@ def test_drift_of_the_zero_reading_is_set_to_zero_and_told(tmp_path):
     text = changed(CSV, ("0.5,0.4,", "0.5,-0.04,"))
     sounding = good(tmp_path, text)
     assert sounding.tip[0] == 0.0
-    assert "`qc`: 1 values below zero, down to -0.04 MPa, set to zero." in sounding.notes
+    assert "`qc`: 1 value below zero, down to -0.04 MPa, set to zero." in sounding.notes
 
 
 def test_voids_that_are_not_marked_are_not_readings(tmp_path):
@@ -388,6 +388,15 @@ def test_bro_borehole(tmp_path):
     problem = only(bad(tmp_path, BOREHOLE))
     assert problem.must == "must be a cone penetration test"
     assert problem.found == "a borehole description (BHR_GT_O)"
+
+
+def test_xml_that_swells_is_refused(tmp_path):
+    """Entities within entities would fill the memory; the parser stops them."""
+    entities = '<!ENTITY a "aaaaaaaaaa">' + "".join(
+        f'<!ENTITY {chr(98 + n)} "{10 * f"&{chr(97 + n)};"}">' for n in range(9)
+    )
+    problem = only(bad(tmp_path, f"<!DOCTYPE x [{entities}]><x>&j;</x>"))
+    assert problem.must == "must be complete, well-formed XML"
 
 
 def test_other_xml(tmp_path):
