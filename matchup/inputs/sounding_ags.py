@@ -13,7 +13,8 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 
 from matchup.inputs.findings import Findings, did_you_mean
-from matchup.inputs.readings import Column, Readings, add_column, add_value, sounding_of
+from matchup.inputs.readings import Column, Readings, add_column, add_value
+from matchup.inputs.sounding_rules import sounding_of
 from matchup.model.sounding import Sounding
 
 HEADINGS = {

@@ -10,7 +10,8 @@ import numpy as np
 from matchup.inputs.columns import Record, Spec, read_records
 from matchup.inputs.constants import constant_of
 from matchup.inputs.findings import Findings, did_you_mean
-from matchup.inputs.readings import Channel, Readings, Stated, sounding_of
+from matchup.inputs.readings import Channel, Readings, Stated
+from matchup.inputs.sounding_rules import sounding_of
 from matchup.inputs.table import read_table
 from matchup.model.sounding import Sounding
 

@@ -12,7 +12,8 @@ from collections.abc import Sequence
 from typing import NamedTuple
 
 from matchup.inputs.findings import Findings
-from matchup.inputs.readings import Column, Readings, add_column, add_value, sounding_of
+from matchup.inputs.readings import Column, Readings, add_column, add_value
+from matchup.inputs.sounding_rules import sounding_of
 from matchup.model.sounding import Sounding
 from matchup.units import UnitError, parse_number
 

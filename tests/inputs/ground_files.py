@@ -216,3 +216,13 @@ def good(folder: Path, text: str | bytes, location: str | None = None) -> Soundi
 def bad(folder: Path, text: str | bytes, location: str | None = None) -> list[Problem]:
     """Return the problems of a file that must not be readable."""
     return read(folder, text, location=location)[1]
+
+
+def only(problems):
+    """Return the one problem; all of them in the message if there are more."""
+    assert len(problems) == 1, "\n".join(map(str, problems))
+    return problems[0]
+
+
+def told(problems):
+    return {(p.line, p.place, p.must, p.found) for p in problems}
