@@ -30,6 +30,7 @@ def plan(
 ) -> StagePlan:
     """A plan with uses of a limit of 100 MPa on either side, a blow energy of 1 kJ per cm."""
     given = {
+        "at": 0,
         "low": stroke,
         "top": stroke,
         "blow_energy": 1e5 * stroke,
@@ -61,6 +62,7 @@ def option(
 ) -> Option:
     plans = plans or (plan(),)
     given = {"governs": "set", "stack": sheets(4), "certificate": "exact: all 8 cushions"}
+    given |= {"target": plans[-1], "cost": plans[-1].blow_energy}  # type: ignore[dict-item]
     if verdict not in (DRIVES, "drives with reduced stroke"):
         given["failing"] = plans[0]  # type: ignore[assignment]
     return Option(

@@ -98,7 +98,7 @@ def test_a_driving_option_tells_the_worst_uses_of_all_stages():
 def test_a_reduced_stroke_is_told_by_stage():
     held = replace(plan(0.3, 12.0, 0.2, 0.91, EARLY), top=0.3)
     said = reason(option(held, plan(0.5), verdict=REDUCED), STAGED, METRIC)
-    assert said.endswith("; stroke at most 0.30 m at 'soft clay'")
+    assert said.endswith("; stroke kept to 0.30 m at 'soft clay'")
 
 
 def test_a_weak_hammer_is_told_at_full_stroke():
