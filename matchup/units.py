@@ -7,7 +7,6 @@ whitelist can't. Units are read only where files and options are read, and writt
 from __future__ import annotations
 
 import difflib
-import math
 import re
 from typing import NamedTuple
 
@@ -83,6 +82,8 @@ _BLOW_COUNT = {
     "blows/10cm": 0.1,
     "blows/20cm": 0.2,
     "blows/30cm": 0.3,
+    "blows/foot": FOOT,
+    "blows/inch": INCH,
 }
 _UNITS: dict[str, dict[str, float]] = {
     "length": _LENGTH,
@@ -127,6 +128,9 @@ _UNITS: dict[str, dict[str, float]] = {
         "MJ": 1e6,
         "N m": 1.0,
         "kN m": 1e3,
+        "Nm": 1.0,
+        "kNm": 1e3,
+        "MNm": 1e6,
         "ft-lb": POUND_FORCE * FOOT,
         "ft-lbf": POUND_FORCE * FOOT,
         "ft-kip": KIP * FOOT,
@@ -168,6 +172,8 @@ QUANTITIES = {
     "number": Quantity("number", "-", "-", "-"),
 }
 
+LARGEST = 1e30
+"""No value of a job is as large in SI units, nor as small as its inverse."""
 _AMBIGUOUS = {
     "ton": "t (1000 kg), short ton (2000 lb), long ton (2240 lb) or, as a weight, kip",
     "tons": "t (1000 kg), short ton (2000 lb), long ton (2240 lb) or, as a weight, kip",
@@ -178,7 +184,7 @@ _PLAIN = str.maketrans(
     {"²": "2", "³": "3", "^": "", "·": " ", "\u2212": "-", "\u00a0": " ", "\u202f": " "}
 )
 """Typographic variants made plain; the last three are a minus sign and no-break spaces."""
-_NUMBER = re.compile(r"[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?")
+_NUMBER = re.compile(r"[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?", re.ASCII)
 
 
 class UnitError(ValueError):
@@ -245,12 +251,12 @@ def parse_number(text: str) -> float:
     Raises
     ------
     UnitError
-        If it is not a finite number written with a decimal point.
+        If it is not a number of possible size written with a decimal point.
     """
     plain = text.translate(_PLAIN).strip()
-    if _NUMBER.fullmatch(plain) and math.isfinite(float(plain)):
-        return float(plain)
-    raise UnitError("must be a finite number with a decimal point and no thousands separator")
+    if not _NUMBER.fullmatch(plain):
+        raise UnitError("must be a number with a decimal point and no thousands separator")
+    return _sensible(float(plain))
 
 
 def parse_quantity(text: str, quantity: str) -> float:
@@ -275,19 +281,27 @@ def parse_quantity(text: str, quantity: str) -> float:
         hint = "A decimal comma is not read here: write a point. " if "," in plain else ""
         raise UnitError(
             "must be one number with a unit",
-            f"{hint}Write for example {_example(quantity)}.",
+            f"{hint}Write for example {example_of(quantity)}.",
         )
-    value = float(match.group())
-    if not math.isfinite(value):
-        raise UnitError("must be a finite number with a unit")
-    if not rest.strip():
+    return _sensible(_in_si(float(match.group()), rest.strip(), quantity))
+
+
+def _sensible(value: float) -> float:
+    """Return a value whose products and quotients neither overflow nor vanish."""
+    if value != 0 and not 1 / LARGEST <= abs(value) <= LARGEST:
+        raise UnitError("must be a number of possible size")
+    return value
+
+
+def _in_si(value: float, unit: str, quantity: str) -> float:
+    if not unit:
         if quantity == "number":
             return value
-        raise UnitError("must have a unit", f"Write for example {_example(quantity)}.")
-    count = _tidy(rest).replace(" ", "")
+        raise UnitError("must have a unit", f"Write for example {example_of(quantity)}.")
+    count = _tidy(unit).replace(" ", "")
     if quantity == "set" and count.startswith(("blows/", "blow/")):
         return _set_of_count(value, count.replace("blow/", "blows/"))
-    return value * unit_factor(rest, quantity)
+    return value * unit_factor(unit, quantity)
 
 
 def _set_of_count(count: float, unit: str) -> float:
@@ -301,9 +315,13 @@ def _set_of_count(count: float, unit: str) -> float:
     return _BLOW_COUNT[unit] / count
 
 
-def _example(quantity: str) -> str:
+def example_of(quantity: str) -> str:
+    """Return how a value of the quantity may be written, for a hint."""
     kind = QUANTITIES[quantity]
-    return f'"12 {kind.metric}" or "12 {kind.us}"'
+    if quantity == "number":
+        return "0.85"
+    texts = dict.fromkeys(f'"12 {unit}"' for unit in (kind.metric, kind.us))
+    return " or ".join(texts)
 
 
 def display_unit(quantity: str, system: str) -> str:
