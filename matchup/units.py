@@ -145,31 +145,33 @@ _UNITS: dict[str, dict[str, float]] = {
 
 
 class Quantity(NamedTuple):
-    """A kind of value: its dimension, and the units it is shown in."""
+    """A kind of value: its dimension, the units it is shown in, units and a value for hints."""
 
     dimension: str
     metric: str
     us: str
     examples: str
+    sample: str
 
 
 QUANTITIES = {
-    "length": Quantity("length", "m", "ft", "m or ft"),
-    "thickness": Quantity("length", "mm", "in", "mm or in"),
-    "set": Quantity("length", "mm", "in", "mm, in, blows/25cm or blows/ft"),
-    "stroke": Quantity("length", "m", "ft", "m or ft"),
-    "area": Quantity("area", "cm2", "in2", "cm2 or in2"),
-    "mass": Quantity("mass", "kg", "lb", "kg, t, lb or, as a weight, kN or kip"),
-    "force": Quantity("force", "kN", "kip", "kN or kip"),
-    "stress": Quantity("stress", "MPa", "ksi", "MPa or ksi"),
-    "modulus": Quantity("stress", "MPa", "ksi", "MPa or ksi"),
-    "stiffness": Quantity("stiffness", "MN/m", "kip/in", "MN/m or kip/in"),
-    "density": Quantity("density", "kg/m3", "lb/ft3", "kg/m3 or lb/ft3"),
-    "energy": Quantity("energy", "kJ", "ft-kip", "kJ or ft-kip"),
-    "velocity": Quantity("velocity", "m/s", "ft/s", "m/s or ft/s"),
-    "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft"),
-    "rate": Quantity("rate", "1/min", "1/min", "1/min"),
-    "number": Quantity("number", "-", "-", "-"),
+    "length": Quantity("length", "m", "ft", "m or ft", "12"),
+    "size": Quantity("length", "mm", "in", "mm or in", "400"),
+    "thickness": Quantity("length", "mm", "in", "mm or in", "100"),
+    "set": Quantity("length", "mm", "in", "mm, in, blows/25cm or blows/ft", "4"),
+    "stroke": Quantity("length", "m", "ft", "m or ft", "0.6"),
+    "area": Quantity("area", "cm2", "in2", "cm2 or in2", "1200"),
+    "mass": Quantity("mass", "kg", "lb", "kg, t, lb or, as a weight, kN or kip", "900"),
+    "force": Quantity("force", "kN", "kip", "kN or kip", "500"),
+    "stress": Quantity("stress", "MPa", "ksi", "MPa or ksi", "30"),
+    "modulus": Quantity("stress", "MPa", "ksi", "MPa or ksi", "300"),
+    "stiffness": Quantity("stiffness", "MN/m", "kip/in", "MN/m or kip/in", "500"),
+    "density": Quantity("density", "kg/m3", "lb/ft3", "kg/m3 or lb/ft3", "2400"),
+    "energy": Quantity("energy", "kJ", "ft-kip", "kJ or ft-kip", "50"),
+    "velocity": Quantity("velocity", "m/s", "ft/s", "m/s or ft/s", "0.5"),
+    "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft", "0.3"),
+    "rate": Quantity("rate", "1/min", "1/min", "1/min", "40"),
+    "number": Quantity("number", "-", "-", "-", "0.85"),
 }
 
 LARGEST = 1e30
@@ -238,7 +240,9 @@ def unit_factor(unit: str, quantity: str) -> float:
         meanings = _AMBIGUOUS[spelling]
         raise UnitError(f"must have a unit without doubt: {spelling!r} may be {meanings}")
     if _dimension_of(spelling) is not None:
-        raise UnitError(f"must be a {quantity}, and {spelling!r} is not a unit of {quantity}", use)
+        article = "an" if quantity[0] in "aeiou" else "a"
+        must = f"must be {article} {quantity}, and {spelling!r} is not a unit of {quantity}"
+        raise UnitError(must, use)
     same = [known for known in units if known.casefold() == spelling.casefold()]
     close = same or difflib.get_close_matches(spelling, units, n=1, cutoff=0.6)
     hint = f"Did you mean {close[0]!r}? " if close else ""
@@ -318,10 +322,7 @@ def _set_of_count(count: float, unit: str) -> float:
 def example_of(quantity: str) -> str:
     """Return how a value of the quantity may be written, for a hint."""
     kind = QUANTITIES[quantity]
-    if quantity == "number":
-        return "0.85"
-    texts = dict.fromkeys(f'"12 {unit}"' for unit in (kind.metric, kind.us))
-    return " or ".join(texts)
+    return kind.sample if kind.metric == "-" else f'"{kind.sample} {kind.metric}"'
 
 
 def display_unit(quantity: str, system: str) -> str:

@@ -8,6 +8,7 @@ from dataclasses import replace
 
 from matchup.errors import ModelError, did_you_mean
 from matchup.inputs.cushions import CushionCatalogue
+from matchup.inputs.job_keys import how_to_write
 from matchup.inputs.job_text import JobText
 from matchup.inputs.schema import JobKeys, SheetRange, ThicknessRange
 from matchup.inputs.toml_lines import Path as KeyPath
@@ -70,7 +71,7 @@ def _area(text: JobText, keys: JobKeys, pile: Pile | None) -> float | None:
         return keys.pile_cushion.area
     if keys.pile.shape not in ("square", "round") and not text.is_unread("pile", "shape"):
         must = f"must be given for a pile of the shape {keys.pile.shape}"
-        text.wrong(path, must, 'For example `area = "1200 cm2"`.')
+        text.wrong(path, must, how_to_write(path))
         return None
     return pile.section.area if pile else None
 

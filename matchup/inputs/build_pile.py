@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 
 from matchup.errors import ModelError, did_you_mean
+from matchup.inputs.job_keys import how_to_write
 from matchup.inputs.job_text import JobText
 from matchup.inputs.schema import JobKeys, LimitsKeys, PileKeys
 from matchup.inputs.usual import note_unusual
@@ -78,7 +79,8 @@ def _section(text: JobText, keys: PileKeys) -> Section | None:
     for key in SIZE_KEYS:
         value = getattr(keys, key)
         if key in needed and value is None:
-            text.wrong(("pile", key), f"must be given for the shape {keys.shape}")
+            must = f"must be given for the shape {keys.shape}"
+            text.wrong(("pile", key), must, how_to_write(("pile", key)))
             sound = False
         elif value is not None and key not in (*needed, *allowed):
             also = ", ".join((*needed, *allowed))
@@ -136,6 +138,8 @@ def build_limits(text: JobText, keys: JobKeys, pile: Pile | None) -> StressLimit
 
 
 def _is_known(text: JobText, rule: str | None) -> bool:
+    if text.is_unread("limits", "rule"):
+        return False
     if rule is None or rule in RULES:
         return True
     do = did_you_mean(rule, RULES)

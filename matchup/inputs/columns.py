@@ -71,15 +71,15 @@ class Record:
     typed : dict
         The same as typed, units included.
     places : dict
-        What the file calls each column.
+        What the file calls each column, in the order of the columns.
     extra : dict
         Columns that are not known, as typed.
     unread : set of str
         Columns that are told to be wrong already; nothing more is told of them.
     torn : bool
         Whether the cells do not belong to their columns, so that none can be read.
-    problems : list of Problem
-        For the reader to pass on, unless it leaves the row out.
+    noted : list of (place, Problem)
+        With the places of their columns in the row.
     """
 
     file: str
@@ -91,7 +91,12 @@ class Record:
     extra: dict[str, str] = field(default_factory=dict)
     unread: set[str] = field(default_factory=set)
     torn: bool = False
-    problems: list[Problem] = field(default_factory=list)
+    noted: list[tuple[int, Problem]] = field(default_factory=list)
+
+    @property
+    def problems(self) -> list[Problem]:
+        """Problems in the order of the columns, for the reader to pass on or leave out."""
+        return [problem for _, problem in sorted(self.noted, key=lambda pair: pair[0])]
 
     def number(self, name: str) -> float | None:
         """Return a number or None; not a number where it could not be read."""
@@ -117,7 +122,8 @@ class Record:
         if name not in self.unread:
             place = self.places.get(name, f"`{name}`" + (f" of {self.label}" if self.label else ""))
             shown = self.typed.get(name, "") if found is None else found
-            self.problems.append(Problem(self.file, self.line, place, must, shown, do))
+            order = [*self.places].index(name) if name in self.places else len(self.places)
+            self.noted.append((order, Problem(self.file, self.line, place, must, shown, do)))
 
     def wrong_model(self, error: ModelError) -> None:
         """Note what a model object says of itself, with the text as typed."""
@@ -259,7 +265,8 @@ def _tear(record: Record, table: RawTable, row: Row) -> None:
     record.values = {"name": record.label} if record.label else {}
     do = COMMA_REMEDY if table.separator == "," else "Leave out what is too much."
     must = f"must have the header's {table.width} cells"
-    record.problems = [Problem(table.file, row.line, record.label, must, f"{row.width} cells", do)]
+    told = Problem(table.file, row.line, record.label, must, f"{row.width} cells", do)
+    record.noted = [(0, told)]
 
 
 def _may_be_shifted(table: RawTable, row: Row) -> bool:

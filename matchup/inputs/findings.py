@@ -52,6 +52,8 @@ class Findings:
 def shown_path(path: Path) -> str:
     """Return a path as it is shown: without detours, from the working directory if inside it."""
     typed = str(path)
+    if not typed.isprintable():
+        return typed.encode("unicode_escape").decode("ascii")
     try:
         plain = os.path.relpath(typed) if _lies_inside(typed) else os.path.normpath(typed)
         # With a linked folder on the way, `..` may lead elsewhere than the letters say.

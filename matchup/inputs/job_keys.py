@@ -72,7 +72,7 @@ def _tell_unknown(text: JobText, path: KeyPath) -> set[KeyPath]:
 def _tell(text: JobText, path: KeyPath, detail: ErrorDetails) -> None:
     kind, context = detail["type"], detail.get("ctx", {})
     if kind == "missing":
-        text.tell(path, "must be given", _how_to_write(path), found="")
+        text.tell(path, "must be given", how_to_write(path), found="")
     elif kind == "value_error":
         cause = context["error"]
         text.tell(path, getattr(cause, "must", str(cause)), getattr(cause, "do", ""))
@@ -96,7 +96,8 @@ def _brackets(kind: str, path: KeyPath) -> str:
     return ""
 
 
-def _how_to_write(path: KeyPath) -> str:
+def how_to_write(path: KeyPath) -> str:
+    """Return a hint at how a key that is missing may be given."""
     annotation, key = _annotation(path), path[-1]
     if quantity := _quantity(annotation):
         return f"For example `{key} = {example_of(quantity)}`."
@@ -205,7 +206,7 @@ def _literal(annotation: Any) -> Any:
 
 def _quantity(annotation: Any) -> str:
     """Return the quantity of a field or an annotation, if it has one."""
-    marks = getattr(annotation, "metadata", None) or getattr(annotation, "__metadata__", ())
+    marks: Any = getattr(annotation, "metadata", None) or getattr(annotation, "__metadata__", ())
     for mark in marks:
         if isinstance(mark, OfQuantity):
             return mark.quantity

@@ -147,5 +147,6 @@ def _note_syntax(file: str, text: str, message: str, findings: Findings) -> None
     do = next((do for pattern, do in _REMEDIES if re.search(pattern, typed)), "")
     if "overwrite" in what or "twice" in what or "declare" in what:
         do = "A key or table may be there once; several stages are [[stages]] each."
-    what = f"{what[:1].lower()}{what[1:]}".replace("\n", "line end")
+    what = f"{what[:1].lower()}{what[1:]}".replace(r"'\n'", "line end")
+    what = re.sub(r"\((?:'[^']*',? ?)+\)", lambda m: ".".join(re.findall("'([^']*)'", m[0])), what)
     findings.add(file, line, place, f"must be valid TOML ({what})", typed[:60], do)

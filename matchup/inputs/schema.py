@@ -17,6 +17,7 @@ from pydantic import (
     WithJsonSchema,
 )
 
+from matchup.errors import did_you_mean
 from matchup.model.limits import RULES
 from matchup.units import QUANTITIES, UnitError, example_of, parse_quantity
 
@@ -37,7 +38,7 @@ def _reader(quantity: str, may_be_zero: bool) -> Callable[[Any], float]:
             return math.nan
         kind = QUANTITIES[quantity]
         if not isinstance(value, str):
-            number = isinstance(value, (int, float)) and not isinstance(value, bool)
+            number = type(value) in (int, float) and math.isfinite(value)
             example = f'"{value} {kind.metric}"' if number else example_of(quantity)
             raise UnitError(
                 f"must be a text with its unit ({kind.examples})", f"Write for example {example}."
@@ -62,6 +63,7 @@ def _key(quantity: str, may_be_zero: bool = False) -> tuple[Any, ...]:
 
 
 Length = Annotated[float, *_key("length")]
+Size = Annotated[float, *_key("size")]
 Thickness = Annotated[float, *_key("thickness")]
 SetPerBlow = Annotated[float, *_key("set")]
 Area = Annotated[float, *_key("area")]
@@ -80,7 +82,9 @@ Rows = tuple[tuple[float, float], ...]
 def _read_shaft_shape(value: Any) -> str | Rows:
     if value in ("uniform", "triangular"):
         return str(value)
-    if not isinstance(value, list) or not all(isinstance(row, list) for row in value):
+    if isinstance(value, str):
+        raise UnitError(SHAPE_OF_SHAFT, did_you_mean(value, ["uniform", "triangular"]))
+    if not isinstance(value, list) or not value or not all(isinstance(r, list) for r in value):
         raise UnitError(SHAPE_OF_SHAFT, SHAPE_EXAMPLE)
     return tuple(_read_row(row) for row in value)
 
@@ -92,7 +96,7 @@ def _read_row(row: list[Any]) -> tuple[float, float]:
     try:
         return parse_quantity(depth, "length"), float(intensity)
     except UnitError as error:
-        raise UnitError(f'{error.must}, and "{depth}" is none', error.do) from None
+        raise UnitError(f'{error.must} (depth "{depth}")', error.do) from None
 
 
 _ROW = {
@@ -110,11 +114,16 @@ ShaftShape = Annotated[
 ]
 
 
-def _form(value: Any) -> str:
-    """Return which of its forms a key with several has: ``one``, ``list`` or ``range``."""
-    if isinstance(value, dict):
-        return "range"
-    return "list" if isinstance(value, list) else "one"
+_FORMS = {str: "one", int: "one", list: "list", dict: "range"}
+
+
+def _form(value: Any) -> str | None:
+    """Return which of its forms a key with several has; None for none of them."""
+    return "one" if value is UNREAD else _FORMS.get(type(value))
+
+
+def _by_form(must: str) -> Discriminator:
+    return Discriminator(_form, custom_error_type="form", custom_error_message=must)
 
 
 class Keys(BaseModel):
@@ -127,7 +136,7 @@ def _read_share(value: Any) -> float:
     if type(value) not in (int, float):
         raise UnitError("must be a number above 0 and at most 1, without a unit")
     if not 0 < value <= 1:
-        do = f"Write {value / 100:g}." if 1 < value <= 100 else ""
+        do = f"Write {value / 100:g}." if 2 <= value <= 100 else ""
         raise UnitError("must be above 0 and at most 1", do)
     return float(value)
 
@@ -157,13 +166,13 @@ class PileKeys(Keys):
     prestress: Prestress | None = None
     modulus: Stress | None = None
     density: Density | None = None
-    width: Length | None = None
-    diameter: Length | None = None
-    wall: Length | None = None
+    width: Size | None = None
+    diameter: Size | None = None
+    wall: Size | None = None
     toe: Literal["open", "closed"] | None = None
-    depth: Length | None = None
+    depth: Size | None = None
     area: Area | None = None
-    perimeter: Length | None = None
+    perimeter: Size | None = None
     toe_area: Area | None = None
 
 
@@ -192,15 +201,11 @@ Sheets = Annotated[
     Annotated[int, Tag("one")]
     | Annotated[list[int], Tag("list")]
     | Annotated[SheetRange, Tag("range")],
-    Discriminator(_form),
+    _by_form("must be a count, a list of counts or a table like { from = 4, to = 18 }"),
 ]
 Thicknesses = Annotated[
     Annotated[Thickness, Tag("one")] | Annotated[ThicknessRange, Tag("range")],
-    Discriminator(
-        _form,
-        custom_error_type="form",
-        custom_error_message="must be a text with its unit or a table with `from` and `to`",
-    ),
+    _by_form('must be a text with its unit or a table like { from = "80 mm", to = "300 mm" }'),
 ]
 
 

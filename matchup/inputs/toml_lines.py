@@ -127,6 +127,7 @@ class _Scan:
         self._value(path, line)
 
     def _value(self, path: Path, line: int) -> None:
+        start = self._at
         first = self._next()
         if first.text == "[":
             self._elements(path)
@@ -136,10 +137,17 @@ class _Scan:
             # A date and a time with a blank between them are two tokens.
             while self._sign() not in ("\n", ",", "]", "}", ""):
                 self._at += 1
-        typed = " ".join(self.text[first.start : self._tokens[self._at - 1].end].split())
-        if len(typed) > LONGEST_SHOWN:
-            typed = typed[: LONGEST_SHOWN - 3] + "..."
-        self.spots.setdefault(path, Spot(line, typed))
+        self.spots.setdefault(path, Spot(line, self._typed(start)))
+
+    def _typed(self, start: int) -> str:
+        """Return the text from a token up to here, on one line and without comments."""
+        words = ""
+        end = self._tokens[start].start
+        for token in self._tokens[start : self._at]:
+            words += (" " if token.start > end else "") + token.text
+            end = token.end
+        typed = " ".join(words.split())
+        return typed if len(typed) <= LONGEST_SHOWN else typed[: LONGEST_SHOWN - 3] + "..."
 
     def _elements(self, path: Path) -> None:
         place = 0

@@ -75,7 +75,7 @@ def unusual(what: str, value: float | None) -> str:
     low, high, quantity = USUAL[what]
     if not value < low and not value > high:
         return ""
-    least, most = (format_quantity(limit, quantity, "metric") for limit in (low, high))
+    least, most = (format_quantity(limit, quantity, "metric", 6) for limit in (low, high))
     return f"is unusual; mostly {least} to {most}: {REMEDY}"
 
 

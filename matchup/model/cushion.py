@@ -178,12 +178,11 @@ class CushionSpace:
     def __post_init__(self) -> None:
         rules = Rules("pile cushion")
         rules.must(bool(self.materials), "materials", "must name at least one cushion", "")
-        rules.must(
-            bool(self.sheets) != bool(self.thicknesses),
-            "sheets",
-            "must be given, or `thickness`, and not both",
-            "both" if self.sheets else "",
-        )
+        given = bool(self.sheets or self.thicknesses)
+        rules.must(given, "sheets", "must be given, or `thickness`", "")
+        both = bool(self.sheets and self.thicknesses)
+        must = "must not be given together with `thickness`"
+        rules.must(not both, "sheets", must, list(self.sheets))
         for sheets in self.sheets:
             rules.must(sheets >= 1, "sheets", "must be >= 1", sheets)
         for thickness in self.thicknesses:
@@ -200,7 +199,7 @@ class CushionSpace:
                 Element(f"{material.name}, whose use is {material.use}"),
             )
             rules.must(
-                not self.sheets or material.sheet is not None,
+                not self.sheets or material.sheet is not None or material.use == "hammer",
                 "materials",
                 "must be cushions with a `sheet` thickness where `sheets` are counted",
                 Element(f"{material.name}, which has none"),

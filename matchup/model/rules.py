@@ -54,7 +54,7 @@ class Rules:
     def fraction(self, field: str, value: float | None) -> None:
         """`value` must lie in (0, 1]; None (not given) passes."""
         if value is not None:
-            do = f"Write {value / 100:g}." if 1 < value <= 100 else ""
+            do = f"Write {value / 100:g}." if 2 <= value <= 100 else ""
             self.must(0 < value <= 1, field, "must be above 0 and at most 1", value, do=do)
 
     def one_of(self, field: str, value: str, choices: tuple[str, ...]) -> None:
