@@ -157,7 +157,7 @@ class Quantity(NamedTuple):
 QUANTITIES = {
     "length": Quantity("length", "m", "ft", "m or ft", "12"),
     "size": Quantity("length", "mm", "in", "mm or in", "400"),
-    "thickness": Quantity("length", "mm", "in", "mm or in", "100"),
+    "thickness": Quantity("length", "mm", "in", "mm or in", "25"),
     "set": Quantity("length", "mm", "in", "mm, in, blows/25cm or blows/ft", "4"),
     "stroke": Quantity("length", "m", "ft", "m or ft", "0.6"),
     "area": Quantity("area", "cm2", "in2", "cm2 or in2", "1200"),

@@ -48,7 +48,7 @@ def build_pile(text: JobText, keys: PileKeys) -> Pile | None:
             density=density,
             strength=_strength(keys),
             prestress=keys.prestress or 0.0,
-            notes=tuple(note for note in (modulus_note, density_note) if note),
+            notes=tuple(filter(None, (_strength_note(text, keys), modulus_note, density_note))),
         )
     except ModelError as error:
         strength = "strength_at_driving" if keys.strength_at_driving else "strength"
@@ -69,6 +69,19 @@ def _note_unusual(text: JobText, keys: PileKeys) -> None:
 
 def _strength(keys: PileKeys) -> float:
     return keys.strength if keys.strength_at_driving is None else keys.strength_at_driving
+
+
+def _strength_note(text: JobText, keys: PileKeys) -> str:
+    """Return what to say of a strength at driving; note one that can't be."""
+    if keys.strength_at_driving is None:
+        return ""
+    path = ("pile", "strength_at_driving")
+    if keys.material != "concrete":
+        text.wrong(path, "must be left out for a pile that is not of concrete")
+    young, full = text.typed(path), text.typed(("pile", "strength"))
+    if keys.strength_at_driving > keys.strength:
+        text.notice(path, f"{young} is above the strength, {full}")
+    return "strength at driving {} in place of {}".format(*(t.strip("\"'") for t in (young, full)))
 
 
 def _section(text: JobText, keys: PileKeys) -> Section | None:

@@ -168,7 +168,7 @@ class PileKeys(Keys):
     density: Density | None = None
     width: Size | None = None
     diameter: Size | None = None
-    wall: Size | None = None
+    wall: Thickness | None = None
     toe: Literal["open", "closed"] | None = None
     depth: Size | None = None
     area: Area | None = None
