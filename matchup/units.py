@@ -10,10 +10,10 @@ import difflib
 import re
 from typing import NamedTuple
 
-# Exact by definition: the inch and the avoirdupois pound (international yard and pound agreement,
+# Exact by definition: inch, foot and avoirdupois pound (international yard and pound agreement,
 # 1959), standard gravity (ISO 80000-3). All other factors follow.
 INCH = 0.0254
-FOOT = 12 * INCH
+FOOT = 0.3048
 POUND = 0.45359237
 GRAVITY = 9.80665
 POUND_FORCE = POUND * GRAVITY
@@ -281,13 +281,15 @@ def parse_quantity(text: str, quantity: str) -> float:
     plain = text.translate(_PLAIN).strip()
     match = _NUMBER.match(plain)
     rest = plain[match.end() :] if match else plain
-    if match is None or re.match(r"[\d.,']|\s+\d", rest):
+    unit = _tidy(rest)
+    more = re.match(r"[\d.,']|\s+\d", rest) and unit not in _UNITS[QUANTITIES[quantity].dimension]
+    if match is None or more:
         hint = "A decimal comma is not read here: write a point. " if "," in plain else ""
         raise UnitError(
             "must be one number with a unit",
             f"{hint}Write for example {example_of(quantity)}.",
         )
-    return _sensible(_in_si(float(match.group()), rest.strip(), quantity))
+    return _sensible(_in_si(float(match.group()), unit, quantity))
 
 
 def _sensible(value: float) -> float:
@@ -302,7 +304,7 @@ def _in_si(value: float, unit: str, quantity: str) -> float:
         if quantity == "number":
             return value
         raise UnitError("must have a unit", f"Write for example {example_of(quantity)}.")
-    count = _tidy(unit).replace(" ", "")
+    count = unit.replace(" ", "")
     if quantity == "set" and count.startswith(("blows/", "blow/")):
         return _set_of_count(value, count.replace("blow/", "blows/"))
     return value * unit_factor(unit, quantity)
