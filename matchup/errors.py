@@ -6,9 +6,17 @@ every problem of a run before they raise; nothing below the command line prints 
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+import difflib
+from collections.abc import Iterable, Sequence
 from dataclasses import asdict, dataclass
 from typing import NamedTuple
+
+
+def did_you_mean(name: str, names: Iterable[str], cutoff: float = 0.6) -> str:
+    """Return a hint at the closest of `names`, or nothing."""
+    folded = {known.casefold(): known for known in names}
+    close = difflib.get_close_matches(name.casefold(), folded, n=1, cutoff=cutoff)
+    return f"Did you mean `{folded[close[0]]}`?" if close else ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -18,7 +26,8 @@ class Problem:
     Parameters
     ----------
     file : str or None
-        The file as the user named it; None for values given in Python or as options.
+        The file, relative to the working directory where it lies inside; None for values
+        given in Python or as options.
     line : int or None
         Line of the file, counted from 1 as editors do; None where a line makes no sense.
     place : str
@@ -69,17 +78,23 @@ class AnalysisError(MatchupError):
     """A blow can't be computed or its result can't be trusted."""
 
 
+class Element(str):
+    """What is wrong about one element of a list, in words."""
+
+
 class Fault(NamedTuple):
     """A rule that a model value breaks: no file, no text as typed; readers add those.
 
     `quantity` names the entry of the units table in which `value` is to be shown, or is
-    empty where the value is dimensionless or no number.
+    empty where the value is dimensionless or no number. `value` is an empty text where there
+    is none; `do` says what to do, where `must` does not already.
     """
 
     field: str
     must: str
     value: object
     quantity: str = ""
+    do: str = ""
 
 
 class ModelError(MatchupError):
@@ -88,5 +103,8 @@ class ModelError(MatchupError):
     def __init__(self, name: str, faults: Sequence[Fault]):
         self.name = name
         self.faults = tuple(faults)
-        rules = "; ".join(f"{f.field} {f.must}, but got {f.value!r}" for f in self.faults)
+        rules = "; ".join(
+            f"{f.field} {f.must}" + (f", but got {f.value!r}" if f.value != "" else "")
+            for f in self.faults
+        )
         super().__init__(f"{name}: {rules}")

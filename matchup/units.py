@@ -7,14 +7,13 @@ whitelist can't. Units are read only where files and options are read, and writt
 from __future__ import annotations
 
 import difflib
-import math
 import re
 from typing import NamedTuple
 
-# Exact by definition: the inch and the avoirdupois pound (international yard and pound agreement,
+# Exact by definition: inch, foot and avoirdupois pound (international yard and pound agreement,
 # 1959), standard gravity (ISO 80000-3). All other factors follow.
 INCH = 0.0254
-FOOT = 12 * INCH
+FOOT = 0.3048
 POUND = 0.45359237
 GRAVITY = 9.80665
 POUND_FORCE = POUND * GRAVITY
@@ -83,6 +82,8 @@ _BLOW_COUNT = {
     "blows/10cm": 0.1,
     "blows/20cm": 0.2,
     "blows/30cm": 0.3,
+    "blows/foot": FOOT,
+    "blows/inch": INCH,
 }
 _UNITS: dict[str, dict[str, float]] = {
     "length": _LENGTH,
@@ -133,6 +134,9 @@ _UNITS: dict[str, dict[str, float]] = {
         "MJ": 1e6,
         "N m": 1.0,
         "kN m": 1e3,
+        "Nm": 1.0,
+        "kNm": 1e3,
+        "MNm": 1e6,
         "ft-lb": POUND_FORCE * FOOT,
         "ft-lbf": POUND_FORCE * FOOT,
         "ft-kip": KIP * FOOT,
@@ -147,34 +151,38 @@ _UNITS: dict[str, dict[str, float]] = {
 
 
 class Quantity(NamedTuple):
-    """A kind of value: its dimension, and the units it is shown in."""
+    """A kind of value: its dimension, the units it is shown in, units and a value for hints."""
 
     dimension: str
     metric: str
     us: str
     examples: str
+    sample: str
 
 
 QUANTITIES = {
-    "length": Quantity("length", "m", "ft", "m or ft"),
-    "thickness": Quantity("length", "mm", "in", "mm or in"),
-    "set": Quantity("length", "mm", "in", "mm, in, blows/25cm or blows/ft"),
-    "stroke": Quantity("length", "m", "ft", "m or ft"),
-    "area": Quantity("area", "cm2", "in2", "cm2 or in2"),
-    "mass": Quantity("mass", "kg", "lb", "kg, t, lb or, as a weight, kN or kip"),
-    "force": Quantity("force", "kN", "kip", "kN or kip"),
-    "stress": Quantity("stress", "MPa", "ksi", "MPa or ksi"),
-    "modulus": Quantity("stress", "MPa", "ksi", "MPa or ksi"),
-    "stiffness": Quantity("stiffness", "MN/m", "kip/in", "MN/m or kip/in"),
-    "density": Quantity("density", "kg/m3", "lb/ft3", "kg/m3 or lb/ft3"),
-    "unit weight": Quantity("unit weight", "kN/m3", "lbf/ft3", "kN/m3 or pcf"),
-    "energy": Quantity("energy", "kJ", "ft-kip", "kJ or ft-kip"),
-    "velocity": Quantity("velocity", "m/s", "ft/s", "m/s or ft/s"),
-    "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft"),
-    "rate": Quantity("rate", "1/min", "1/min", "1/min"),
-    "number": Quantity("number", "-", "-", "-"),
+    "length": Quantity("length", "m", "ft", "m or ft", "12"),
+    "size": Quantity("length", "mm", "in", "mm or in", "400"),
+    "thickness": Quantity("length", "mm", "in", "mm or in", "25"),
+    "set": Quantity("length", "mm", "in", "mm, in, blows/25cm or blows/ft", "4"),
+    "stroke": Quantity("length", "m", "ft", "m or ft", "0.6"),
+    "area": Quantity("area", "cm2", "in2", "cm2 or in2", "1200"),
+    "mass": Quantity("mass", "kg", "lb", "kg, t, lb or, as a weight, kN or kip", "900"),
+    "force": Quantity("force", "kN", "kip", "kN or kip", "500"),
+    "stress": Quantity("stress", "MPa", "ksi", "MPa or ksi", "30"),
+    "modulus": Quantity("stress", "MPa", "ksi", "MPa or ksi", "300"),
+    "stiffness": Quantity("stiffness", "MN/m", "kip/in", "MN/m or kip/in", "500"),
+    "density": Quantity("density", "kg/m3", "lb/ft3", "kg/m3 or lb/ft3", "2400"),
+    "unit weight": Quantity("unit weight", "kN/m3", "lbf/ft3", "kN/m3 or pcf", "18"),
+    "energy": Quantity("energy", "kJ", "ft-kip", "kJ or ft-kip", "50"),
+    "velocity": Quantity("velocity", "m/s", "ft/s", "m/s or ft/s", "0.5"),
+    "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft", "0.3"),
+    "rate": Quantity("rate", "1/min", "1/min", "1/min", "40"),
+    "number": Quantity("number", "-", "-", "-", "0.85"),
 }
 
+LARGEST = 1e30
+"""No value of a job is as large in SI units, nor as small as its inverse."""
 _AMBIGUOUS = {
     "ton": "t (1000 kg), short ton (2000 lb), long ton (2240 lb) or, as a weight, kip",
     "tons": "t (1000 kg), short ton (2000 lb), long ton (2240 lb) or, as a weight, kip",
@@ -185,7 +193,7 @@ _PLAIN = str.maketrans(
     {"²": "2", "³": "3", "^": "", "·": " ", "\u2212": "-", "\u00a0": " ", "\u202f": " "}
 )
 """Typographic variants made plain; the last three are a minus sign and no-break spaces."""
-_NUMBER = re.compile(r"[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?")
+_NUMBER = re.compile(r"[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?", re.ASCII)
 
 
 class UnitError(ValueError):
@@ -239,7 +247,9 @@ def unit_factor(unit: str, quantity: str) -> float:
         meanings = _AMBIGUOUS[spelling]
         raise UnitError(f"must have a unit without doubt: {spelling!r} may be {meanings}")
     if _dimension_of(spelling) is not None:
-        raise UnitError(f"must be a {quantity}, and {spelling!r} is not a unit of {quantity}", use)
+        article = "an" if quantity[0] in "aeiou" else "a"
+        must = f"must be {article} {quantity}, and {spelling!r} is not a unit of {quantity}"
+        raise UnitError(must, use)
     same = [known for known in units if known.casefold() == spelling.casefold()]
     close = same or difflib.get_close_matches(spelling, units, n=1, cutoff=0.6)
     hint = f"Did you mean {close[0]!r}? " if close else ""
@@ -252,12 +262,12 @@ def parse_number(text: str) -> float:
     Raises
     ------
     UnitError
-        If it is not a finite number written with a decimal point.
+        If it is not a number of possible size written with a decimal point.
     """
     plain = text.translate(_PLAIN).strip()
-    if _NUMBER.fullmatch(plain) and math.isfinite(float(plain)):
-        return float(plain)
-    raise UnitError("must be a finite number with a decimal point and no thousands separator")
+    if not _NUMBER.fullmatch(plain):
+        raise UnitError("must be a number with a decimal point and no thousands separator")
+    return _sensible(float(plain))
 
 
 def parse_quantity(text: str, quantity: str) -> float:
@@ -278,23 +288,33 @@ def parse_quantity(text: str, quantity: str) -> float:
     plain = text.translate(_PLAIN).strip()
     match = _NUMBER.match(plain)
     rest = plain[match.end() :] if match else plain
-    if match is None or re.match(r"[\d.,']|\s+\d", rest):
+    unit = _tidy(rest)
+    more = re.match(r"[\d.,']|\s+\d", rest) and unit not in _UNITS[QUANTITIES[quantity].dimension]
+    if match is None or more:
         hint = "A decimal comma is not read here: write a point. " if "," in plain else ""
         raise UnitError(
             "must be one number with a unit",
-            f"{hint}Write for example {_example(quantity)}.",
+            f"{hint}Write for example {example_of(quantity)}.",
         )
-    value = float(match.group())
-    if not math.isfinite(value):
-        raise UnitError("must be a finite number with a unit")
-    if not rest.strip():
+    return _sensible(_in_si(float(match.group()), unit, quantity))
+
+
+def _sensible(value: float) -> float:
+    """Return a value whose products and quotients neither overflow nor vanish."""
+    if value != 0 and not 1 / LARGEST <= abs(value) <= LARGEST:
+        raise UnitError("must be a number of possible size")
+    return value
+
+
+def _in_si(value: float, unit: str, quantity: str) -> float:
+    if not unit:
         if quantity == "number":
             return value
-        raise UnitError("must have a unit", f"Write for example {_example(quantity)}.")
-    count = _tidy(rest).replace(" ", "")
+        raise UnitError("must have a unit", f"Write for example {example_of(quantity)}.")
+    count = unit.replace(" ", "")
     if quantity == "set" and count.startswith(("blows/", "blow/")):
         return _set_of_count(value, count.replace("blow/", "blows/"))
-    return value * unit_factor(rest, quantity)
+    return value * unit_factor(unit, quantity)
 
 
 def _set_of_count(count: float, unit: str) -> float:
@@ -308,9 +328,10 @@ def _set_of_count(count: float, unit: str) -> float:
     return _BLOW_COUNT[unit] / count
 
 
-def _example(quantity: str) -> str:
+def example_of(quantity: str) -> str:
+    """Return how a value of the quantity may be written, for a hint."""
     kind = QUANTITIES[quantity]
-    return f'"12 {kind.metric}" or "12 {kind.us}"'
+    return kind.sample if kind.metric == "-" else f'"{kind.sample} {kind.metric}"'
 
 
 def display_unit(quantity: str, system: str) -> str:

@@ -2,22 +2,38 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass, field
+from itertools import pairwise
 from typing import NamedTuple
 
-from matchup.inputs.findings import Findings, did_you_mean
-from matchup.inputs.table import RawTable
+from matchup.errors import ModelError, Problem
+from matchup.inputs.findings import Findings, did_you_mean, shown_fault
+from matchup.inputs.table import RawTable, Row
 from matchup.units import QUANTITIES, UnitError, parse_number, unit_factor
 
-_HEADER = re.compile(r"^\s*([^\[\]]*?)\s*(?:\[\s*([^\]]*?)\s*\])?\s*$")
-_DATE = re.compile(
-    r"\d{4}-\d{2}-\d{2}(T[\d:]+)?( [\d:]+)?|\d{1,2}[./]\d{1,2}[./]\d{2,4}"
-    r"|\d{1,2}[-. ][A-Za-z]{3}\.?|[A-Za-z]{3}[-. ]\d{2,4}"
+_HEADER = re.compile(r"([^\[\]()]*?)\s*(?:[\[(]\s*([^\[\]()]*?)\s*[\])])?")
+_MONTHS = (
+    "jan|feb|mar|apr|may|jun|jul|aug|sep|sept|oct|nov|dec|mrz|mär|mai|okt|dez|maa|mei"
+    "|fév|fev|avr|aoû|aou|déc|ene|abr|ago|dic|gen|mag|giu|lug|set|ott"
 )
+_MONTH = f"(?:{_MONTHS})"
+_DATE = re.compile(
+    rf"\d{{4}}-\d{{1,2}}-\d{{1,2}}(?:[T ][\d:.]+)?|\d{{1,2}}[./]\d{{1,2}}[./]\d{{2,4}}"
+    rf"|\d{{1,2}}[-./ ]{{1,2}}{_MONTH}\.?(?:[-./ ]\d{{2,4}})?|{_MONTH}\.?[-./ ]\d{{1,4}}",
+    re.IGNORECASE | re.ASCII,
+)
+_COMMA = re.compile(r"[+-]?\d+,\d+", re.ASCII)
+_POINT = re.compile(r"[+-]?\d*\.\d+", re.ASCII)
+_WHOLE = re.compile(r"[+-]?\d+", re.ASCII)
 _YES = {"yes", "y", "true", "1"}
 _NO = {"no", "n", "false", "0"}
+COMMA_REMEDY = (
+    "A decimal comma, or a comma inside a cell, needs quotes around the cell; "
+    "or separate the cells with semicolons."
+)
 
 
 class Spec(NamedTuple):
@@ -45,35 +61,75 @@ class Record:
 
     Parameters
     ----------
+    file : str
     line : int
+    label : str
+        The row's name as typed, for messages.
     values : dict
-        SI numbers, texts and truth values by column; a column that is empty here is absent.
+        SI numbers, texts and truth values by column; a column that is empty here is absent, and a
+        number that could not be read is not a number.
     typed : dict
         The same as typed, units included.
     places : dict
-        What the file calls each column.
+        What the file calls each column, in the order of the columns.
     extra : dict
         Columns that are not known, as typed.
-    broken : bool
-        Whether a value could not be read.
+    unread : set of str
+        Columns that are told to be wrong already; nothing more is told of them.
+    torn : bool
+        Whether the cells do not belong to their columns, so that none can be read.
+    noted : list of (place, Problem)
+        With the places of their columns in the row.
     """
 
+    file: str
     line: int
+    label: str = ""
     values: dict[str, float | str | bool] = field(default_factory=dict)
     typed: dict[str, str] = field(default_factory=dict)
     places: dict[str, str] = field(default_factory=dict)
     extra: dict[str, str] = field(default_factory=dict)
-    broken: bool = False
+    unread: set[str] = field(default_factory=set)
+    torn: bool = False
+    noted: list[tuple[int, Problem]] = field(default_factory=list)
+
+    @property
+    def problems(self) -> list[Problem]:
+        """Problems in the order of the columns, for the reader to pass on or leave out."""
+        return [problem for _, problem in sorted(self.noted, key=lambda pair: pair[0])]
 
     def number(self, name: str) -> float | None:
-        """Return a number or None."""
-        value = self.values.get(name)
+        """Return a number or None; not a number where it could not be read."""
+        value = self.values.get(name, math.nan if name in self.unread else None)
         return value if isinstance(value, float) else None
+
+    def needed(self, name: str) -> float:
+        """Return a number that every row must have; not a number where it could not be read."""
+        value = self.number(name)
+        return math.nan if value is None else value
 
     def text(self, name: str) -> str:
         """Return a text, empty where there is none."""
         value = self.values.get(name)
         return value if isinstance(value, str) else ""
+
+    def has(self, name: str) -> bool:
+        """Return whether the row gives a value, readable or not."""
+        return name in self.values
+
+    def wrong(self, name: str, must: str, found: str | None = None, do: str = "") -> None:
+        """Note a problem of a column, unless its value could not be read in the first place."""
+        if name not in self.unread:
+            place = self.places.get(name, f"`{name}`" + (f" of {self.label}" if self.label else ""))
+            shown = self.typed.get(name, "") if found is None else found
+            order = [*self.places].index(name) if name in self.places else len(self.places)
+            self.noted.append((order, Problem(self.file, self.line, place, must, shown, do)))
+
+    def wrong_model(self, error: ModelError) -> None:
+        """Note what a model object says of itself, with the text as typed."""
+        for fault in error.faults:
+            typed = self.typed.get(fault.field) or shown_fault(fault)
+            self.wrong(fault.field, fault.must, typed, fault.do)
 
 
 class _Known(NamedTuple):
@@ -84,8 +140,16 @@ class _Known(NamedTuple):
     factor: float
 
 
+class _Header(NamedTuple):
+    """Columns that can be read, those that are not known, and those that are told to be wrong."""
+
+    known: list[_Known]
+    unknown: list[tuple[int, str]]
+    unread: set[str]
+
+
 def read_records(table: RawTable, specs: Sequence[Spec], findings: Findings) -> list[Record]:
-    """Return the rows of a table as values, noting every problem and unknown column.
+    """Return the rows of a table as values; problems of the header go to `findings`.
 
     Parameters
     ----------
@@ -94,62 +158,85 @@ def read_records(table: RawTable, specs: Sequence[Spec], findings: Findings) -> 
     findings : Findings
         Modified in place.
     """
-    known, unknown = _match_header(table, specs, findings)
-    records = [_record(table, row.line, row.cells, known, unknown, findings) for row in table.rows]
-    _check_decimal_signs(table, known, findings)
-    if unknown:
-        names = ", ".join(name for _, name in unknown)
-        findings.notices.append(f"{table.file}: kept aside, not used: {names}")
+    header = _match_header(table, specs, findings)
+    records = [_record(table, row, header) for row in table.rows]
+    _check_decimal_signs(table, records, header.known)
+    if header.unknown:
+        names = ", ".join(name for _, name in header.unknown)
+        findings.notice(table.file, table.header.line, f"kept aside, not used: {names}")
     return records
 
 
-def _match_header(
-    table: RawTable, specs: Sequence[Spec], findings: Findings
-) -> tuple[list[_Known], list[tuple[int, str]]]:
+def check_names(records: Sequence[Record]) -> None:
+    """Note names that occur twice."""
+    seen: dict[str, int] = {}
+    for record in records:
+        name = record.text("name")
+        first = seen.setdefault(name.casefold(), record.line) if name else record.line
+        if first != record.line:
+            record.wrong("name", f"must be a name of its own; line {first} has it too")
+
+
+def _match_header(table: RawTable, specs: Sequence[Spec], findings: Findings) -> _Header:
     by_name = {spec.name: spec for spec in specs}
     by_name |= {spec.instead: spec for spec in specs if spec.instead}
-    known: list[_Known] = []
-    unknown: list[tuple[int, str]] = []
+    header = _Header([], [], set())
     taken: dict[str, str] = {}
+    slips: set[str] = set()
     line = table.header.line
     for place, cell in enumerate(table.header.cells):
-        match = _HEADER.match(cell)
-        name, unit = (match.group(1), match.group(2)) if match else (cell, None)
+        match = _HEADER.fullmatch(cell)
+        name, unit = (match.group(1), match.group(2) or "") if match else (cell, "")
         key = re.sub(r"[\s-]+", "_", name.strip()).casefold()
         spec = by_name.get(key)
         if spec is None:
-            hint = did_you_mean(key, by_name) if key else ""
-            if hint:
-                findings.add(table.file, line, cell, "must be a known column", f"`{name}`", hint)
-            elif cell:
-                unknown.append((place, cell))
-            continue
-        if spec.name in taken:
+            near = _near_column(key, by_name)
+            if near:
+                must = "must be a known column, or a name unlike them"
+                findings.add(table.file, line, cell, must, f"`{name}`", f"Did you mean `{near}`?")
+                slips.add(by_name[near].name)
+            elif cell or any(row.cells[place] for row in table.rows):
+                header.unknown.append((place, cell or f"column {place + 1} without a name"))
+        elif spec.name in taken:
             must = f"must be given once, and `{taken[spec.name]}` is there already"
             findings.add(table.file, line, cell, must)
-            continue
-        taken[spec.name] = cell
-        factor = _header_factor(table.file, line, cell, spec, unit, findings)
-        if factor is not None:
-            known.append(_Known(place, spec, name.strip(), unit or "", factor))
+        else:
+            taken[spec.name] = cell
+            factor = _header_factor(table.file, line, cell, spec, unit, findings)
+            if factor is None:
+                header.unread.add(spec.name)
+            else:
+                header.known.append(_Known(place, spec, name.strip(), unit, factor))
+    header.unread.update(slips - set(taken))
     for spec in specs:
-        if spec.required and spec.name not in taken:
+        if spec.required and spec.name not in {*taken, *header.unread}:
             also = f" (or `{spec.instead}`)" if spec.instead else ""
             findings.add(table.file, line, spec.name, f"must have a column `{spec.name}`{also}")
-    return known, unknown
+            header.unread.add(spec.name)
+    return header
+
+
+def _near_column(key: str, names: Sequence[str] | dict[str, Spec]) -> str:
+    """Return the known column that a name is a slip of, if any: its start, turned or misspelt."""
+    turned = sorted(key.split("_"))
+    for name in names:
+        if key and (name.startswith(f"{key}_") or turned == sorted(name.split("_"))):
+            return name
+    hint = did_you_mean(key, names, cutoff=0.8)
+    return hint.split("`")[1] if hint else ""
 
 
 def _header_factor(
-    file: str, line: int, cell: str, spec: Spec, unit: str | None, findings: Findings
+    file: str, line: int, cell: str, spec: Spec, unit: str, findings: Findings
 ) -> float | None:
     if spec.kind not in QUANTITIES:
         return 1.0
-    if unit is None or unit == "":
+    if not unit:
         if spec.kind == "number":
             return 1.0
-        examples = QUANTITIES[spec.kind].examples
-        do = f"Write for example `{spec.name} [{examples.split()[0].rstrip(',')}]`."
-        findings.add(file, line, cell, "must have its unit in brackets", "none", do)
+        example = QUANTITIES[spec.kind].metric
+        do = f"Write for example `{spec.name} [{example}]`."
+        findings.add(file, line, cell, "must have its unit in brackets", do=do)
         return None
     try:
         return unit_factor(unit, spec.kind)
@@ -158,81 +245,103 @@ def _header_factor(
         return None
 
 
-def _record(
-    table: RawTable,
-    line: int,
-    cells: Sequence[str],
-    known: Sequence[_Known],
-    unknown: Sequence[tuple[int, str]],
-    findings: Findings,
-) -> Record:
-    record = Record(line, extra={name: cells[place] for place, name in unknown if cells[place]})
-    label = next((cells[k.place] for k in known if k.spec.kind == "name"), "")
-    for column in known:
-        cell = cells[column.place]
-        name = column.spec.name
-        place = f"`{column.header}`" + (f" of {label}" if label and name != "name" else "")
-        record.places[name] = place
-        if not cell:
-            if column.spec.required:
-                record.broken = True
-                findings.add(table.file, line, place, "must not be empty")
-            continue
-        unit = column.unit if column.unit not in ("", "-") else ""
-        record.typed[name] = f"{cell} {unit}".strip()
-        value = _value(table, line, place, cell, column, findings)
-        if value is None:
-            record.broken = True
-        else:
-            record.values[name] = value
+def _record(table: RawTable, row: Row, header: _Header) -> Record:
+    label = next((row.cells[k.place] for k in header.known if k.spec.kind == "name"), "")
+    record = Record(table.file, row.line, label, unread=set(header.unread))
+    record.extra = {name: row.cells[place] for place, name in header.unknown if row.cells[place]}
+    if row.width > table.width:
+        _tear(record, table, row)
+        return record
+    for column in header.known:
+        _read_cell(record, row.cells[column.place], column, table.separator)
+    if record.problems and row.width < table.width and _may_be_shifted(table, row):
+        _tear(record, table, row)
     return record
 
 
-def _value(
-    table: RawTable, line: int, place: str, cell: str, column: _Known, findings: Findings
-) -> float | str | bool | None:
+def _tear(record: Record, table: RawTable, row: Row) -> None:
+    """Note that a row's cells don't fit the header, in place of all that follows from it."""
+    record.torn = True
+    record.values = {"name": record.label} if record.label else {}
+    do = COMMA_REMEDY if table.separator == "," else "Leave out what is too much."
+    must = f"must have the header's {table.width} cells"
+    told = Problem(table.file, row.line, record.label, must, f"{row.width} cells", do)
+    record.noted = [(0, told)]
+
+
+def _may_be_shifted(table: RawTable, row: Row) -> bool:
+    """Return whether a decimal comma may have made two cells of one."""
+    neighbours = pairwise(row.cells)
+    return table.separator == "," and any(
+        _WHOLE.fullmatch(a) and _WHOLE.fullmatch(b) for a, b in neighbours
+    )
+
+
+def _read_cell(record: Record, cell: str, column: _Known, separator: str) -> None:
+    name = column.spec.name
+    of = f" of {record.label}" if record.label and column.spec.kind != "name" else ""
+    record.places[name] = f"`{column.header}`{of}"
+    if not cell:
+        if column.spec.required:
+            record.wrong(name, "must not be empty")
+            record.unread.add(name)
+        return
+    unit = "" if column.unit == "-" else column.unit
+    record.typed[name] = f"{cell} {unit}".strip()
+    try:
+        record.values[name] = _value(cell, column, separator)
+    except UnitError as error:
+        record.wrong(name, error.must, cell, error.do)
+        record.values[name] = math.nan
+        record.unread.add(name)
+
+
+def _value(cell: str, column: _Known, separator: str) -> float | str | bool:
+    """Return a cell's value.
+
+    Raises
+    ------
+    UnitError
+        Saying what must hold and what to do.
+    """
     kind = column.spec.kind
-    if kind == "name":
-        if _DATE.fullmatch(cell):
-            must = "must be a name; this looks like one that a spreadsheet turned into a date"
-            do = "Format the column as text and type the name again."
-            findings.add(table.file, line, place, must, cell, do)
-            return None
-        return cell
     if kind == "text":
         return cell
     if kind == "yes_no":
-        if cell.casefold() in _YES | _NO:
-            return cell.casefold() in _YES
-        findings.add(table.file, line, place, "must be yes or no", cell)
-        return None
-    plain = cell
-    if re.fullmatch(r"[+-]?\d+,\d+", cell):
-        if table.separator == ",":
+        if cell.casefold() not in _YES | _NO:
+            raise UnitError("must be yes or no")
+        return cell.casefold() in _YES
+    if _DATE.fullmatch(cell):
+        what = "name" if kind == "name" else "number"
+        must = f"must be a {what}; this looks like one that a spreadsheet turned into a date"
+        raise UnitError(must, f"Format the column as text and type the {what} again.")
+    if kind == "name":
+        return cell
+    if _COMMA.fullmatch(cell):
+        if separator == ",":
             must = "must be a number with a decimal point where commas separate the cells"
-            do = "Write a point, or save the table with semicolons."
-            findings.add(table.file, line, place, must, cell, do)
-            return None
-        plain = cell.replace(",", ".")
-    try:
-        return parse_number(plain) * column.factor
-    except UnitError as error:
-        findings.add(table.file, line, place, error.must, cell, error.do)
-        return None
+            raise UnitError(must, "Write a point, or save the table with semicolons.")
+        cell = cell.replace(",", ".")
+    return parse_number(cell) * column.factor
 
 
-def _check_decimal_signs(table: RawTable, known: Sequence[_Known], findings: Findings) -> None:
+def _check_decimal_signs(
+    table: RawTable, records: Sequence[Record], known: Sequence[_Known]
+) -> None:
     """Note columns that write some decimals with a comma and some with a point."""
     if table.separator == ",":
         return
     for column in known:
         if column.spec.kind not in QUANTITIES:
             continue
-        cells = [(row.line, row.cells[column.place]) for row in table.rows]
-        commas = [(line, cell) for line, cell in cells if re.fullmatch(r"[+-]?\d+,\d+", cell)]
-        points = [(line, cell) for line, cell in cells if re.fullmatch(r"[+-]?\d*\.\d+", cell)]
-        if commas and points:
-            line, cell = max(commas[0], points[0])
-            other = min(commas[0], points[0])
-            must = f"must write decimals in one way; line {other[0]} has {other[1]}"
-            findings.add(table.file, line, f"`{column.header}`", must, cell)
+        first: dict[bool, int] = {}
+        for row, record in zip(table.rows, records, strict=True):
+            cell = row.cells[column.place]
+            if record.torn or not (_COMMA.fullmatch(cell) or _POINT.fullmatch(cell)):
+                continue
+            first.setdefault("," in cell, row.line)
+            other = first.get("," not in cell)
+            if other is not None:
+                must = f"must write decimals as line {other} does: with a comma, or with a point"
+                record.wrong(column.spec.name, must, cell)
+                break

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import dataclass
 from pathlib import Path
 
 from matchup.errors import ModelError
-from matchup.inputs.columns import Record, Spec, read_records
+from matchup.inputs.columns import Record, Spec, check_names, read_records
 from matchup.inputs.findings import Findings
-from matchup.inputs.table import RawTable, read_table
+from matchup.inputs.table import read_table
+from matchup.inputs.usual import note_unusual_row
 from matchup.model.cushion import CushionMaterial
 
 COLUMNS = (
@@ -25,52 +28,87 @@ COLUMNS = (
 )
 
 
-def read_cushions(path: Path, findings: Findings) -> tuple[CushionMaterial, ...]:
-    """Return the materials of a cushion catalogue; problems go to `findings`."""
+@dataclass(frozen=True, slots=True)
+class CushionCatalogue:
+    """Materials by name, and what could not be read.
+
+    Parameters
+    ----------
+    materials : tuple of CushionMaterial
+    broken : tuple of str
+        Names of rows that are told to be wrong.
+    complete : bool
+        Whether every name of the catalogue is known.
+    """
+
+    materials: tuple[CushionMaterial, ...] = ()
+    broken: tuple[str, ...] = ()
+    complete: bool = True
+
+    @property
+    def names(self) -> list[str]:
+        """Every name in the catalogue."""
+        return [*(material.name for material in self.materials), *self.broken]
+
+    def find(self, name: str) -> CushionMaterial | None:
+        """Return the material of a name."""
+        plain = name.strip().casefold()
+        return next((m for m in self.materials if m.name.casefold() == plain), None)
+
+    def is_broken(self, name: str) -> bool:
+        """Return whether a name can't be found because the catalogue is wrong, as is told."""
+        plain = name.strip().casefold()
+        return not self.complete or any(plain == known.casefold() for known in self.broken)
+
+
+def read_cushions(path: Path, findings: Findings) -> CushionCatalogue:
+    """Return a cushion catalogue; problems go to `findings`."""
     table = read_table(path, findings)
     if table is None:
-        return ()
+        return CushionCatalogue(complete=False)
     records = read_records(table, COLUMNS, findings)
-    check_names(table, records, findings)
-    made = (_material(table, record, findings) for record in records)
-    return tuple(material for material in made if material is not None)
+    check_names(records)
+    made = [_material(record) for record in records]
+    for record, material in zip(records, made, strict=True):
+        findings.problems += record.problems
+        for text in note_unusual_row(record, "cushion") if material else []:
+            findings.notice(record.file, record.line, text)
+    return CushionCatalogue(
+        materials=tuple(material for material in made if material is not None),
+        broken=_broken(records, made),
+        complete=all(record.label for record in records),
+    )
 
 
-def check_names(table: RawTable, records: list[Record], findings: Findings) -> None:
-    """Note names that occur twice."""
-    seen: dict[str, int] = {}
-    for record in records:
-        name = record.text("name")
-        if not name:
-            continue
-        first = seen.setdefault(name.casefold(), record.line)
-        if first != record.line:
-            must = f"must be a name of its own; line {first} has it too"
-            findings.add(table.file, record.line, "`name`", must, name)
+def _broken(records: Sequence[Record], made: Sequence[CushionMaterial | None]) -> tuple[str, ...]:
+    return tuple(
+        record.label
+        for record, material in zip(records, made, strict=True)
+        if material is None and record.label
+    )
 
 
-def _material(table: RawTable, record: Record, findings: Findings) -> CushionMaterial | None:
-    if record.broken or not {"name", "use", "modulus", "restitution"} <= set(record.values):
+def _material(record: Record) -> CushionMaterial | None:
+    if record.torn:
         return None
-    numbers = {spec.name: record.number(spec.name) for spec in COLUMNS}
-    worn_thickness = numbers["worn_thickness"]
+    number = record.number
+    worn_thickness = number("worn_thickness")
     try:
-        return CushionMaterial(
+        made = CushionMaterial(
             name=record.text("name"),
             use=record.text("use").casefold(),
-            modulus=numbers["modulus"] or 0.0,
-            restitution=numbers["restitution"] or 0.0,
-            sheet=numbers["sheet"],
-            worn_modulus=numbers["worn_modulus"],
+            modulus=record.needed("modulus"),
+            restitution=record.needed("restitution"),
+            sheet=number("sheet"),
+            worn_modulus=number("worn_modulus"),
             worn_thickness=1.0 if worn_thickness is None else worn_thickness,
-            worn_restitution=numbers["worn_restitution"],
-            new_for=numbers["new_for"],
-            life=numbers["life"],
+            worn_restitution=number("worn_restitution"),
+            new_for=number("new_for"),
+            life=number("life"),
             source=record.text("source"),
             extra=record.extra,
         )
     except ModelError as error:
-        findings.add_model_error(
-            error, table.file, {}, record.typed, record.places, line=record.line
-        )
+        record.wrong_model(error)
         return None
+    return None if record.problems or record.unread else made

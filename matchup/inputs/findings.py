@@ -2,19 +2,14 @@
 
 from __future__ import annotations
 
-import difflib
-from collections.abc import Iterable, Mapping
+import os
 from dataclasses import dataclass, field
+from pathlib import Path
 
-from matchup.errors import InputError, ModelError, Problem
+from matchup.errors import Fault, InputError, Problem, did_you_mean
 from matchup.units import format_quantity
 
-
-def did_you_mean(name: str, names: Iterable[str]) -> str:
-    """Return a hint at the closest of `names`, or nothing."""
-    folded = {known.casefold(): known for known in names}
-    close = difflib.get_close_matches(name.casefold(), folded, n=1, cutoff=0.6)
-    return f"Did you mean `{folded[close[0]]}`?" if close else ""
+__all__ = ["Findings", "did_you_mean", "shown_fault", "shown_path"]
 
 
 @dataclass
@@ -23,49 +18,57 @@ class Findings:
 
     problems: list[Problem] = field(default_factory=list)
     notices: list[str] = field(default_factory=list)
+    files: list[str] = field(default_factory=list)
+
+    def begin(self, file: str) -> None:
+        """Give a file its turn among the problems, whichever of them is found first."""
+        if file not in self.files:
+            self.files.append(file)
 
     def add(
         self, file: str, line: int | None, place: str, must: str, found: str = "", do: str = ""
     ) -> None:
         """Note a problem."""
+        self.begin(file)
         self.problems.append(Problem(file, line, place, must, found, do))
 
-    def add_model_error(
-        self,
-        error: ModelError,
-        file: str,
-        lines: Mapping[str, int | None],
-        typed: Mapping[str, str],
-        places: Mapping[str, str],
-        line: int | None = None,
-    ) -> None:
-        """Note what a model object says of itself, with file, line and the text as typed.
+    def notice(self, file: str, line: int | None, text: str) -> None:
+        """Note something that is no problem."""
+        self.notices.append(f"{file}, line {line}: {text}" if line else f"{file}: {text}")
 
-        Parameters
-        ----------
-        lines, typed, places : mapping
-            By the model's field: its line, its text as typed, and what the file calls it.
-        line : int or None
-            For fields that stand nowhere in the file.
-        """
-        for fault in error.faults:
-            found = typed.get(fault.field)
-            if found is None:
-                number = isinstance(fault.value, (int, float))
-                found = (
-                    format_quantity(float(fault.value), fault.quantity, "metric")  # type: ignore[arg-type]
-                    if fault.quantity and number
-                    else f"{fault.value}"
-                )
-            place = places.get(fault.field, fault.field)
-            self.add(file, lines.get(fault.field, line), place, fault.must, found)
-
-    def close(self) -> None:
-        """Raise `InputError` with all problems, each file's in the order of its lines."""
-        if not self.problems:
-            return
-        files = list(dict.fromkeys(problem.file for problem in self.problems))
-        ordered = sorted(
+    def ordered(self) -> list[Problem]:
+        """Return every problem once, file by file, each file's in the order of its lines."""
+        files = [*self.files, *(p.file for p in self.problems)]
+        return sorted(
             dict.fromkeys(self.problems), key=lambda p: (files.index(p.file), p.line or 0)
         )
-        raise InputError(ordered)
+
+    def close(self) -> None:
+        """Raise `InputError` if there is any problem."""
+        if self.problems:
+            raise InputError(self.ordered())
+
+
+def shown_path(path: Path) -> str:
+    """Return a path as it is shown: without detours, from the working directory if inside it."""
+    typed = str(path)
+    if not typed.isprintable():
+        return typed.encode("unicode_escape").decode("ascii")
+    try:
+        plain = os.path.relpath(typed) if _lies_inside(typed) else os.path.normpath(typed)
+        # With a linked folder on the way, `..` may lead elsewhere than the letters say.
+        return plain if os.path.realpath(plain) == os.path.realpath(typed) else typed
+    except (OSError, ValueError):
+        return typed
+
+
+def _lies_inside(path: str) -> bool:
+    here = os.getcwd()
+    return os.path.commonpath([here, os.path.abspath(path)]) == here
+
+
+def shown_fault(fault: Fault) -> str:
+    """Return the value that breaks a model's rule in words, with its unit."""
+    if isinstance(fault.value, float):
+        return format_quantity(fault.value, fault.quantity or "number", "metric")
+    return str(fault.value)

@@ -2,17 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+import math
 from pathlib import Path
-from typing import Protocol
 
-from matchup.errors import ModelError
-from matchup.inputs.columns import Record, Spec, read_records
-from matchup.inputs.cushions import check_names
-from matchup.inputs.findings import Findings, did_you_mean
-from matchup.inputs.table import RawTable, read_table
-from matchup.model.cushion import CushionMaterial, Spring
-from matchup.model.hammer import Hammer
+from matchup.errors import ModelError, did_you_mean
+from matchup.inputs.columns import Record, Spec, check_names, read_records
+from matchup.inputs.cushions import CushionCatalogue
+from matchup.inputs.findings import Findings
+from matchup.inputs.table import read_table
+from matchup.inputs.usual import note_unusual_row
+from matchup.model.cushion import Spring
+from matchup.model.hammer import NO_CUSHION, Hammer
 
 COLUMNS = (
     Spec("name", "name", required=True),
@@ -37,19 +37,14 @@ COLUMNS = (
     Spec("source", "text"),
 )
 
-
-class _Wrong(Protocol):
-    """Notes what is wrong with a row's hammer cushion."""
-
-    def __call__(self, must: str, found: str, place: str = ..., do: str = ...) -> None: ...
-
-
-LATER_KINDS = ("double-acting", "diesel")
-"""Kinds that a catalogue may hold and this version can't yet compute."""
+NOT_MODELLED = ("diesel", "double-acting", "vibratory")
+"""Kinds that a catalogue may hold and this version can't compute."""
+BY_NAME = ("hammer_cushion", "hammer_cushion_thickness", "hammer_cushion_area")
+BY_SPRING = ("hammer_cushion_stiffness", "hammer_cushion_restitution")
 
 
 def read_hammers(
-    path: Path, materials: Sequence[CushionMaterial] | None, findings: Findings
+    path: Path, catalogue: CushionCatalogue | None, findings: Findings
 ) -> tuple[Hammer, ...]:
     """Return the hammers of a catalogue that can be used; problems go to `findings`.
 
@@ -59,50 +54,57 @@ def read_hammers(
     Parameters
     ----------
     path : Path
-    materials : sequence of CushionMaterial or None
-        The cushion catalogue, for hammer cushions given by name; None leaves the names unchecked.
+    catalogue : CushionCatalogue or None
+        For hammer cushions given by name; None leaves the names unchecked.
+    findings : Findings
+        Modified in place.
     """
     table = read_table(path, findings)
     if table is None:
         return ()
+    before = len(findings.problems)
     records = read_records(table, COLUMNS, findings)
-    check_names(table, records, findings)
-    hammers = []
+    check_names(records)
+    hammers: list[Hammer] = []
+    left_out: dict[str, str] = {}
     for record in records:
-        kind = record.text("kind").casefold()
-        if kind in LATER_KINDS:
-            name = record.text("name")
-            findings.notices.append(
-                f"{table.file}, line {record.line}: {name} left out; "
-                f"{kind} hammers can't be computed yet"
-            )
+        kind = record.text("kind").casefold().replace(" ", "-")
+        if kind in NOT_MODELLED:
+            left_out[record.label] = f"{kind} hammers can't be computed yet"
+            findings.notice(table.file, record.line, _left_out(record, left_out))
             continue
-        hammer = _hammer(table, record, materials, findings)
+        hammer = _hammer(record, catalogue)
+        findings.problems += record.problems
         if hammer is not None and not hammer.available:
-            findings.notices.append(f"{table.file}: {hammer.name} left out; it is not available")
+            left_out[hammer.name] = "it is not available"
+            findings.notice(table.file, record.line, _left_out(record, left_out))
         elif hammer is not None:
             hammers.append(hammer)
-    if not hammers and not findings.problems:
-        findings.add(table.file, None, "", "must hold a hammer that is available", "none")
+            for text in note_unusual_row(record, "hammer"):
+                findings.notice(table.file, record.line, text)
+    if not hammers and len(findings.problems) == before:
+        found = "none: " + "; ".join(f"{name} ({why})" for name, why in left_out.items())
+        findings.add(table.file, None, "", "must hold a hammer that can be used", found)
     return tuple(hammers)
 
 
-def _hammer(
-    table: RawTable, record: Record, materials: Sequence[CushionMaterial] | None, findings: Findings
-) -> Hammer | None:
-    cushion, text = _cushion(table, record, materials, findings)
-    required = {spec.name for spec in COLUMNS if spec.required}
-    if record.broken or not required <= set(record.values):
+def _left_out(record: Record, reasons: dict[str, str]) -> str:
+    return f"{record.label} left out; {reasons[record.label]}"
+
+
+def _hammer(record: Record, catalogue: CushionCatalogue | None) -> Hammer | None:
+    if record.torn:
         return None
+    cushion, text = _cushion(record, catalogue)
     number = record.number
     try:
-        return Hammer(
+        made = Hammer(
             name=record.text("name"),
             kind=record.text("kind").casefold(),
-            ram_mass=number("ram_mass") or 0.0,
-            stroke_min=number("stroke_min") or 0.0,
-            stroke_max=number("stroke_max") or 0.0,
-            efficiency=number("efficiency") or 0.0,
+            ram_mass=record.needed("ram_mass"),
+            stroke_min=record.needed("stroke_min"),
+            stroke_max=record.needed("stroke_max"),
+            efficiency=record.needed("efficiency"),
             stroke_step=number("stroke_step"),
             blow_rate_max=number("blow_rate_max"),
             lift_speed=number("lift_speed"),
@@ -111,82 +113,59 @@ def _hammer(
             cushion=cushion,
             cushion_text=text,
             hammer_mass=number("hammer_mass"),
-            rides_on_pile=bool(record.values.get("rides_on_pile", False)),
-            available=bool(record.values.get("available", True)),
+            rides_on_pile=record.values.get("rides_on_pile") is True,
+            available=record.values.get("available") is not False,
             source=record.text("source"),
             extra=record.extra,
         )
     except ModelError as error:
-        findings.add_model_error(
-            error, table.file, {}, record.typed, record.places, line=record.line
-        )
+        record.wrong_model(error)
         return None
+    return None if record.problems or record.unread else made
 
 
-def _cushion(
-    table: RawTable, record: Record, materials: Sequence[CushionMaterial] | None, findings: Findings
-) -> tuple[Spring | None, str]:
+def _cushion(record: Record, catalogue: CushionCatalogue | None) -> tuple[Spring | None, str]:
     """Return a row's hammer cushion and its description."""
-    by_name = ("hammer_cushion", "hammer_cushion_thickness", "hammer_cushion_area")
-    by_spring = ("hammer_cushion_stiffness", "hammer_cushion_restitution")
-    given = set(record.values)
-    if not given & {*by_name, *by_spring}:
-        return None, "none"
-    name = record.text("name")
-
-    def wrong(must: str, found: str, place: str = "hammer_cushion", do: str = "") -> None:
-        record.broken = True
-        findings.add(table.file, record.line, f"`{place}` of {name}", must, found, do)
-
-    if given & set(by_name) and given & set(by_spring):
-        wrong(
-            "must be given in one way: name, thickness and area, or stiffness and restitution",
-            "both",
-        )
+    by_name = [column for column in BY_NAME if record.has(column)]
+    by_spring = [column for column in BY_SPRING if record.has(column)]
+    if not by_name and not by_spring:
+        return None, NO_CUSHION
+    if by_name and by_spring:
+        must = "must be given in one way: name, thickness and area, or stiffness and restitution"
+        record.wrong(by_name[0], must, f"`{by_name[0]}` and `{by_spring[0]}`")
         return None, ""
-    wanted = by_name if given & set(by_name) else by_spring
-    missing = [column for column in wanted if column not in given]
-    if missing:
-        wrong(f"must come with {' and '.join(f'`{m}`' for m in missing)}", "nothing there")
-        return None, ""
-    for column in wanted:
+    for column in BY_NAME if by_name else BY_SPRING:
         value = record.number(column)
-        if value is not None and value <= 0:
-            wrong("must be > 0", record.typed[column], column)
-            return None, ""
-    if wanted is by_spring:
-        return _spring(record, wrong)
-    return _from_catalogue(record, materials, wrong)
+        if not record.has(column):
+            record.wrong(column, f"must be given with `{(by_name or by_spring)[0]}`")
+        elif value is not None and value <= 0:
+            record.wrong(column, "must be > 0")
+    return _named(record, catalogue) if by_name else _spring(record)
 
 
-def _spring(record: Record, wrong: _Wrong) -> tuple[Spring | None, str]:
-    stiffness = record.number("hammer_cushion_stiffness") or 0.0
-    restitution = record.number("hammer_cushion_restitution") or 0.0
+def _spring(record: Record) -> tuple[Spring | None, str]:
+    stiffness, restitution = map(record.needed, BY_SPRING)
     if restitution > 1:
-        place = "hammer_cushion_restitution"
-        wrong("must be above 0 and at most 1", record.typed[place], place)
+        record.wrong(BY_SPRING[1], "must be above 0 and at most 1")
+    if not (stiffness > 0 and 0 < restitution <= 1):
         return None, ""
     return Spring(stiffness, restitution), f"{stiffness / 1e6:g} MN/m, restitution {restitution:g}"
 
 
-def _from_catalogue(
-    record: Record, materials: Sequence[CushionMaterial] | None, wrong: _Wrong
-) -> tuple[Spring | None, str]:
+def _named(record: Record, catalogue: CushionCatalogue | None) -> tuple[Spring | None, str]:
     called = record.text("hammer_cushion")
-    if materials is None:
+    if catalogue is None or not called or catalogue.is_broken(called):
         return None, called
-    found = [m for m in materials if m.name.casefold() == called.casefold()]
-    if not found:
-        names = [material.name for material in materials]
-        hint = did_you_mean(called, names)
-        wrong("must be a name in the cushion catalogue", called, do=hint)
-        return None, ""
-    material = found[0]
+    material = catalogue.find(called)
+    if material is None:
+        do = did_you_mean(called, catalogue.names)
+        record.wrong("hammer_cushion", "must be a name in the cushion catalogue", do=do)
+        return None, called
     if material.use not in ("hammer", "both"):
-        wrong("must be a cushion whose `use` is hammer or both", f"{called}, use {material.use}")
-        return None, ""
-    thickness = record.number("hammer_cushion_thickness") or 0.0
-    area = record.number("hammer_cushion_area") or 0.0
-    stiffness = material.modulus * area / thickness
+        must = "must be a cushion whose `use` is hammer or both"
+        record.wrong("hammer_cushion", must, f"{called}, whose use is {material.use}")
+    thickness, area = map(record.needed, BY_NAME[1:])
+    if not (thickness > 0 and area > 0) or math.isnan(thickness * area):
+        return None, called
     text = f"{1e3 * thickness:g} mm of {material.name} on {1e4 * area:g} cm2"
-    return Spring(stiffness, material.restitution), text
+    return Spring(material.modulus * area / thickness, material.restitution), text

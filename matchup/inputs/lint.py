@@ -5,13 +5,13 @@ from __future__ import annotations
 from collections.abc import Sequence
 from pathlib import Path
 
-from matchup.errors import InputError, Problem
-from matchup.inputs.cushions import read_cushions
-from matchup.inputs.findings import Findings
+from matchup.errors import InputError
+from matchup.inputs.cushions import CushionCatalogue, read_cushions
+from matchup.inputs.findings import Findings, shown_path
 from matchup.inputs.hammers import read_hammers
 from matchup.inputs.job_file import load_job
 from matchup.inputs.table import read_table
-from matchup.model.cushion import CushionMaterial
+from matchup.model.hammer import NO_CUSHION
 
 JOB = "job"
 HAMMERS = "hammer catalogue"
@@ -40,53 +40,54 @@ def check_files(paths: Sequence[Path]) -> tuple[list[str], list[str]]:
     InputError
         With every problem of every file.
     """
-    problems: list[Problem] = []
-    notices: list[str] = []
-    kinds = {path: JOB if path.suffix.casefold() == ".toml" else "" for path in paths}
+    findings = Findings()
+    kinds: dict[Path, str] = {}
     for path in paths:
-        if not kinds[path]:
-            kinds[path] = _kind(path, problems)
-    materials: list[CushionMaterial] = []
-    for path in _of_kind(kinds, CUSHIONS):
-        findings = Findings()
-        materials += read_cushions(path, findings)
-        problems += findings.problems
-        notices += findings.notices
-    known = materials if _of_kind(kinds, CUSHIONS) else None
+        findings.begin(shown_path(path))
+        kinds[path] = JOB if path.suffix.casefold() == ".toml" else _kind(path, findings)
+    catalogue = _cushions(_of_kind(kinds, CUSHIONS), findings)
     for path in _of_kind(kinds, HAMMERS):
-        findings = Findings()
-        read_hammers(path, known, findings)
-        problems += findings.problems
-        notices += findings.notices
-        if known is None:
-            notices.append(f"{path}: names of hammer cushions not checked; give the catalogue too")
+        hammers = read_hammers(path, catalogue, findings)
+        if any(h.cushion is None and h.cushion_text != NO_CUSHION for h in hammers):
+            what = "names of hammer cushions not checked; give the cushion catalogue too"
+            findings.notice(shown_path(path), None, what)
     for path in _of_kind(kinds, JOB):
         try:
-            notices += load_job(path).notices
+            findings.notices += load_job(path).notices
         except InputError as error:
-            problems += error.problems
-    if problems:
-        raise InputError(list(dict.fromkeys(problems)))
-    return [f"{path}: sound {kind}" for path, kind in kinds.items()], list(dict.fromkeys(notices))
+            findings.problems += error.problems
+    findings.close()
+    sound = [f"{shown_path(path)}: sound {kind}" for path, kind in kinds.items()]
+    return sound, list(dict.fromkeys(findings.notices))
 
 
 def _of_kind(kinds: dict[Path, str], kind: str) -> list[Path]:
     return [path for path, known in kinds.items() if known == kind]
 
 
-def _kind(path: Path, problems: list[Problem]) -> str:
+def _cushions(paths: Sequence[Path], findings: Findings) -> CushionCatalogue | None:
+    """Return the cushions of all catalogues together; None without any catalogue."""
+    read = [read_cushions(path, findings) for path in paths]
+    if not read:
+        return None
+    return CushionCatalogue(
+        materials=tuple(material for one in read for material in one.materials),
+        broken=tuple(name for one in read for name in one.broken),
+        complete=all(one.complete for one in read),
+    )
+
+
+def _kind(path: Path, findings: Findings) -> str:
     """Return what a catalogue holds, by its columns; note why where that can't be told."""
-    findings = Findings()
     table = read_table(path, findings)
     if table is None:
-        problems += findings.problems
         return ""
-    names = " ".join(table.header.cells)
-    if "ram" in names.casefold() or "stroke" in names.casefold():
+    names = " ".join(table.header.cells).casefold()
+    if "ram" in names or "stroke" in names:
         return HAMMERS
-    if "modulus" in names.casefold() or "restitution" in names.casefold():
+    if "modulus" in names or "restitution" in names:
         return CUSHIONS
     must = "must have the columns of a hammer or a cushion catalogue"
     do = "Job files end in .toml."
-    problems.append(Problem(str(path), table.header.line, "", must, names[:60], do))
+    findings.add(table.file, table.header.line, "", must, names[:60], do)
     return ""

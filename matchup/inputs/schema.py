@@ -2,48 +2,150 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Callable
+from dataclasses import dataclass
 from typing import Annotated, Any, Literal
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, WithJsonSchema
+from pydantic import (
+    BaseModel,
+    BeforeValidator,
+    ConfigDict,
+    Discriminator,
+    Field,
+    Tag,
+    WithJsonSchema,
+)
 
+from matchup.errors import did_you_mean
 from matchup.model.limits import RULES
-from matchup.units import QUANTITIES, UnitError, parse_quantity
+from matchup.units import QUANTITIES, UnitError, example_of, parse_quantity
+
+UNREAD = object()
+"""Stands in for a value that could not be read, and is read as not a number."""
 
 
-def _reader(quantity: str) -> BeforeValidator:
+@dataclass(frozen=True)
+class OfQuantity:
+    """Marks a key as a text with a unit."""
+
+    quantity: str
+
+
+def _reader(quantity: str, may_be_zero: bool) -> Callable[[Any], float]:
     def read(value: Any) -> float:
+        if value is UNREAD:
+            return math.nan
+        kind = QUANTITIES[quantity]
         if not isinstance(value, str):
-            kind = QUANTITIES[quantity]
-            example = f'"{value} {kind.metric}"' if isinstance(value, (int, float)) else ""
-            do = f"Write for example {example}." if example else ""
-            raise UnitError(f"must be a text with its unit ({kind.examples})", do)
-        return parse_quantity(value, quantity)
+            number = type(value) in (int, float) and math.isfinite(value)
+            example = f'"{value} {kind.metric}"' if number else example_of(quantity)
+            raise UnitError(
+                f"must be a text with its unit ({kind.examples})", f"Write for example {example}."
+            )
+        read = parse_quantity(value, quantity)
+        if read < 0 or (read == 0 and not may_be_zero):
+            raise UnitError("must be >= 0" if may_be_zero else "must be > 0")
+        return read
 
-    return BeforeValidator(read)
+    return read
 
 
-def _as_text(quantity: str) -> WithJsonSchema:
-    kind = QUANTITIES[quantity]
-    return WithJsonSchema(
-        {"type": "string", "description": f"{quantity} with its unit: {kind.examples}"}
+def _key(quantity: str, may_be_zero: bool = False) -> tuple[Any, ...]:
+    """Return what makes a number a text with its unit, above zero or at least zero."""
+    sign = "at least 0" if may_be_zero else "above 0"
+    text = f"{quantity} with its unit ({QUANTITIES[quantity].examples}), {sign}"
+    return (
+        BeforeValidator(_reader(quantity, may_be_zero)),
+        WithJsonSchema({"type": "string", "description": text}),
+        OfQuantity(quantity),
     )
 
 
-Length = Annotated[float, _reader("length"), _as_text("length")]
-Thickness = Annotated[float, _reader("thickness"), _as_text("thickness")]
-SetPerBlow = Annotated[float, _reader("set"), _as_text("set")]
-Area = Annotated[float, _reader("area"), _as_text("area")]
-Mass = Annotated[float, _reader("mass"), _as_text("mass")]
-Force = Annotated[float, _reader("force"), _as_text("force")]
-Stress = Annotated[float, _reader("stress"), _as_text("stress")]
-Density = Annotated[float, _reader("density"), _as_text("density")]
-Damping = Annotated[float, _reader("damping"), _as_text("damping")]
+Length = Annotated[float, *_key("length")]
+Size = Annotated[float, *_key("size")]
+Thickness = Annotated[float, *_key("thickness")]
+SetPerBlow = Annotated[float, *_key("set")]
+Area = Annotated[float, *_key("area")]
+Mass = Annotated[float, *_key("mass")]
+Force = Annotated[float, *_key("force", may_be_zero=True)]
+Stress = Annotated[float, *_key("stress")]
+Prestress = Annotated[float, *_key("stress", may_be_zero=True)]
+Density = Annotated[float, *_key("density")]
+Damping = Annotated[float, *_key("damping", may_be_zero=True)]
+
+SHAPE_OF_SHAFT = 'must be "uniform", "triangular" or rows of depth and intensity'
+SHAPE_EXAMPLE = 'For example [["0 m", 0.2], ["12 m", 1.0]].'
+Rows = tuple[tuple[float, float], ...]
+
+
+def _read_shaft_shape(value: Any) -> str | Rows:
+    if value in ("uniform", "triangular"):
+        return str(value)
+    if isinstance(value, str):
+        raise UnitError(SHAPE_OF_SHAFT, did_you_mean(value, ["uniform", "triangular"]))
+    if not isinstance(value, list) or not value or not all(isinstance(r, list) for r in value):
+        raise UnitError(SHAPE_OF_SHAFT, SHAPE_EXAMPLE)
+    return tuple(_read_row(row) for row in value)
+
+
+def _read_row(row: list[Any]) -> tuple[float, float]:
+    depth, intensity = row if len(row) == 2 else ("", "")
+    if not isinstance(depth, str) or type(intensity) not in (int, float):
+        raise UnitError(SHAPE_OF_SHAFT, SHAPE_EXAMPLE)
+    try:
+        return parse_quantity(depth, "length"), float(intensity)
+    except UnitError as error:
+        raise UnitError(f'{error.must} (depth "{depth}")', error.do) from None
+
+
+_ROW = {
+    "type": "array",
+    "prefixItems": [{"type": "string"}, {"type": "number", "minimum": 0}],
+    "minItems": 2,
+    "maxItems": 2,
+}
+ShaftShape = Annotated[
+    Any,
+    BeforeValidator(_read_shaft_shape),
+    WithJsonSchema(
+        {"anyOf": [{"enum": ["uniform", "triangular"]}, {"type": "array", "items": _ROW}]}
+    ),
+]
+
+
+_FORMS = {str: "one", int: "one", list: "list", dict: "range"}
+
+
+def _form(value: Any) -> str | None:
+    """Return which of its forms a key with several has; None for none of them."""
+    return "one" if value is UNREAD else _FORMS.get(type(value))
+
+
+def _by_form(must: str) -> Discriminator:
+    return Discriminator(_form, custom_error_type="form", custom_error_message=must)
 
 
 class Keys(BaseModel):
     """A table of the job file: unknown keys are errors, and types are taken as they are."""
 
     model_config = ConfigDict(extra="forbid", strict=True)
+
+
+def _read_share(value: Any) -> float:
+    if type(value) not in (int, float):
+        raise UnitError("must be a number above 0 and at most 1, without a unit")
+    if not 0 < value <= 1:
+        do = f"Write {value / 100:g}." if 2 <= value <= 100 else ""
+        raise UnitError("must be above 0 and at most 1", do)
+    return float(value)
+
+
+Share = Annotated[
+    float,
+    BeforeValidator(_read_share),
+    WithJsonSchema({"type": "number", "exclusiveMinimum": 0, "maximum": 1}),
+]
 
 
 class CatalogKeys(Keys):
@@ -61,16 +163,16 @@ class PileKeys(Keys):
     length: Length
     strength: Stress
     strength_at_driving: Stress | None = None
-    prestress: Stress | None = None
+    prestress: Prestress | None = None
     modulus: Stress | None = None
     density: Density | None = None
-    width: Length | None = None
-    diameter: Length | None = None
-    wall: Length | None = None
+    width: Size | None = None
+    diameter: Size | None = None
+    wall: Thickness | None = None
     toe: Literal["open", "closed"] | None = None
-    depth: Length | None = None
+    depth: Size | None = None
     area: Area | None = None
-    perimeter: Length | None = None
+    perimeter: Size | None = None
     toe_area: Area | None = None
 
 
@@ -95,12 +197,24 @@ class ThicknessRange(Keys):
     step: Thickness | None = None
 
 
+Sheets = Annotated[
+    Annotated[int, Tag("one")]
+    | Annotated[list[int], Tag("list")]
+    | Annotated[SheetRange, Tag("range")],
+    _by_form("must be a count, a list of counts or a table like { from = 4, to = 18 }"),
+]
+Thicknesses = Annotated[
+    Annotated[Thickness, Tag("one")] | Annotated[ThicknessRange, Tag("range")],
+    _by_form('must be a text with its unit or a table like { from = "80 mm", to = "300 mm" }'),
+]
+
+
 class PileCushionKeys(Keys):
     """The pile cushions to choose from."""
 
     materials: list[str]
-    sheets: int | list[int] | SheetRange | None = None
-    thickness: Thickness | ThicknessRange | None = None
+    sheets: Sheets | None = None
+    thickness: Thicknesses | None = None
     wear: list[Literal["new", "worn"]] = ["new", "worn"]
     area: Area | None = None
 
@@ -109,7 +223,7 @@ class HammerCushionKeys(Keys):
     """Hammer cushions to try in place of the catalogue's."""
 
     materials: list[str]
-    thickness: Thickness | ThicknessRange
+    thickness: Thicknesses
     area: Area
 
 
@@ -121,7 +235,7 @@ class StageKeys(Keys):
     shaft: Force
     toe: Force
     set: SetPerBlow | None = None
-    shaft_shape: str | list[list[str | float | int]] = "uniform"
+    shaft_shape: ShaftShape = "uniform"
     soil: Literal["sand", "silty sand", "silt", "clay"] | None = None
     toe_soil: Literal["dense", "loose"] | None = None
     shaft_quake: SetPerBlow | None = None
@@ -139,11 +253,9 @@ class TargetKeys(Keys):
 class LimitsKeys(Keys):
     """Driving stress limits."""
 
-    rule: Annotated[
-        str | None, WithJsonSchema({"enum": [*RULES], "description": "a published rule"})
-    ] = None
-    compression: float | int | None = None
-    tension: float | int | None = None
+    rule: Annotated[str, WithJsonSchema({"enum": [*RULES]})] | None = None
+    compression: Share | None = None
+    tension: Share | None = None
     compression_stress: Stress | None = None
     tension_stress: Stress | None = None
 
@@ -152,7 +264,7 @@ class SearchKeys(Keys):
     """How the best option is chosen."""
 
     objective: Literal["energy", "time"] = "energy"
-    reserve: float | int = 0.0
+    reserve: float = 0.0
     seed: int = 7
 
 

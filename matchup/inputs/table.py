@@ -6,23 +6,35 @@ import csv
 import io
 import re
 import zipfile
+from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import date, time
 from pathlib import Path
 
-from matchup.inputs.findings import Findings
+from matchup.inputs.findings import Findings, did_you_mean, shown_path
 
 SEPARATORS = (";", "\t", ",")
 LARGEST_FILE = 20_000_000
-"""A catalogue larger than this is not one. [bytes]"""
+"""A catalogue larger than this is not one, packed or unpacked tenfold. [bytes]"""
+MOST_ROWS = 20_000
 
 
 @dataclass(frozen=True, slots=True)
 class Row:
-    """A row of cells as typed, with its line in the file."""
+    """A row of cells as typed, with its line in the file.
+
+    Parameters
+    ----------
+    line : int
+    cells : tuple of str
+        As many as the header has.
+    width : int
+        How many there were.
+    """
 
     line: int
     cells: tuple[str, ...]
+    width: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,18 +44,23 @@ class RawTable:
     Parameters
     ----------
     file : str
-        As the user named it.
+        As it is shown.
     separator : str
         Between cells; empty for a workbook.
     header : Row
     rows : tuple of Row
-        Blank ones left out; each as long as the header.
+        Blank ones left out.
     """
 
     file: str
     separator: str
     header: Row
     rows: tuple[Row, ...]
+
+    @property
+    def width(self) -> int:
+        """How many cells a row may have."""
+        return len(self.header.cells)
 
 
 def read_table(path: Path, findings: Findings) -> RawTable | None:
@@ -58,57 +75,90 @@ def read_table(path: Path, findings: Findings) -> RawTable | None:
     data = read_bytes(path, findings)
     if data is None:
         return None
-    file = str(path)
+    file = shown_path(path)
     if data[:2] == b"PK":
-        rows = _workbook_rows(file, data, findings)
-        separator = ""
+        separator, rows = "", _workbook_rows(file, data, findings)
     else:
         text = decode(file, data, findings)
-        if text is None:
-            return None
-        separator, rows = _text_rows(file, text, findings)
-    rows = [row for row in rows if any(cell.strip() for cell in row.cells)]
-    if len(rows) < 2:
-        what = "a header and at least one row"
-        findings.add(
-            file, None, "", f"must hold {what}", "an empty table" if not rows else "a header"
-        )
+        separator, rows = ("", None) if text is None else _text_rows(file, text, findings)
+    if rows is None:
         return None
-    header = rows[0]
-    width = max(i + 1 for i, cell in enumerate(header.cells) if cell.strip())
-    body = []
-    for row in rows[1:]:
-        surplus = [cell for cell in row.cells[width:] if cell.strip()]
-        if surplus:
-            must = f"must have at most the header's {width} cells"
-            do = "A separator inside a cell needs quotes around the cell."
-            findings.add(file, row.line, "", must, f"{len(row.cells)} cells", do)
-        padded = (*row.cells[:width], *[""] * (width - len(row.cells)))
-        body.append(Row(row.line, tuple(cell.strip() for cell in padded)))
-    cells = tuple(cell.strip() for cell in header.cells[:width])
-    return RawTable(file, separator, Row(header.line, cells), tuple(body))
+    rows = [(line, cells) for line, cells in rows if any(cells)][: MOST_ROWS + 1]
+    if len(rows) < 2:
+        must = "must hold a header and at least one row"
+        findings.add(file, None, "", must, "a header alone" if rows else "an empty table")
+        return None
+    if len(rows) > MOST_ROWS:
+        findings.add(file, None, "", f"must have at most {MOST_ROWS} rows")
+        return None
+    width = _width(separator, [cells for _, cells in rows])
+    header, *body = [_row(line, cells, width, separator) for line, cells in rows]
+    return RawTable(file, separator, header, tuple(body))
+
+
+_Cells = tuple[str, ...]
+
+
+def _row(line: int, cells: _Cells, width: int, separator: str) -> Row:
+    count = len(cells) if separator == "," else _last(cells)
+    return Row(line, (*cells[:width], *[""] * (width - len(cells))), count)
+
+
+def _last(cells: _Cells) -> int:
+    """Return how many cells there are up to the last that is not blank."""
+    return max((place for place, cell in enumerate(cells, 1) if cell), default=0)
+
+
+def _width(separator: str, rows: Sequence[_Cells]) -> int:
+    """Return how many columns a table has.
+
+    Where commas separate the cells, one cell too many may be a decimal comma even if the last is
+    blank, so that the header counts as it is. Cells beside the table of a workbook are columns.
+    """
+    if separator == "":
+        return max(map(_last, rows))
+    return len(rows[0]) if separator == "," else _last(rows[0])
 
 
 def read_bytes(path: Path, findings: Findings) -> bytes | None:
     """Return a file's bytes, or note why they can't be had."""
+    file = shown_path(path)
+    findings.begin(file)
     try:
         if path.is_dir():
-            findings.add(str(path), None, "", "must be a file", "a folder")
+            findings.add(file, None, "", "must be a file", "a folder")
         elif not path.exists():
-            near = ""
-            if path.parent.is_dir():
-                names = sorted(p.name for p in path.parent.iterdir() if p.suffix == path.suffix)
-                near = f"There: {', '.join(names[:8])}." if names else ""
-            findings.add(str(path), None, "", "must be a file that exists", "no such file", near)
+            must = "must be a file that exists; there is none of this name"
+            findings.add(file, None, "", must, do=_neighbours(path))
+        elif not path.is_file():
+            findings.add(file, None, "", "must be a file", "a device or a pipe")
         elif path.stat().st_size > LARGEST_FILE:
             must = f"must be at most {LARGEST_FILE // 1_000_000} MB"
-            findings.add(str(path), None, "", must, f"{path.stat().st_size // 1_000_000} MB")
+            findings.add(file, None, "", must, f"{path.stat().st_size // 1_000_000} MB")
         else:
             return path.read_bytes()
     except (OSError, ValueError) as error:
         why = getattr(error, "strerror", None) or str(error)
-        findings.add(str(path), None, "", "must be a file that can be read", why)
+        must = f"must be a file that can be read; this one can't: {why[:1].lower()}{why[1:]}"
+        findings.add(file, None, "", must)
     return None
+
+
+def _neighbours(path: Path) -> str:
+    """Return a hint at the files that are there instead."""
+    if not path.parent.is_dir():
+        return "Its folder does not exist either."
+    names = sorted(p.name for p in path.parent.iterdir() if p.suffix == path.suffix)
+    if not names:
+        return ""
+    return did_you_mean(path.name, names) or f"There: {', '.join(names[:8])}."
+
+
+_SIGNATURES = {
+    b"\xd0\xcf\x11\xe0": ("an old workbook (.xls)", "Save it as .xlsx or as CSV."),
+    b"%PDF": ("a PDF file", "Save the table as .xlsx or as CSV."),
+    b"PK": ("a workbook or an archive", ""),
+}
 
 
 def decode(file: str, data: bytes, findings: Findings) -> str | None:
@@ -128,29 +178,38 @@ def decode(file: str, data: bytes, findings: Findings) -> str | None:
         control = re.search(r"[\x00-\x08\x0e-\x1f]", text)
         if control is None:
             return text
-    findings.add(file, None, "", "must be a text file", "binary data")
+    what, do = next((v for k, v in _SIGNATURES.items() if data.startswith(k)), ("binary data", ""))
+    findings.add(file, None, "", "must be a text file", what, do)
     return None
 
 
-def _text_rows(file: str, text: str, findings: Findings) -> tuple[str, list[Row]]:
+_Rows = list[tuple[int, _Cells]]
+
+
+def _text_rows(file: str, text: str, findings: Findings) -> tuple[str, _Rows | None]:
+    first, *rest = re.split(r"\r\n|\r|\n", text, maxsplit=1)
+    announced = re.fullmatch(r'"?sep=(.*?)"?', first.rstrip(" "), re.IGNORECASE)
     skipped = 0
-    first, _, rest = text.partition("\n")
-    announced = re.fullmatch(r'"?sep=(.)"?', first.strip("\r\n ") or "")
-    if announced or first.strip("\r\n").lower() == "sep=\t":
-        separator = announced.group(1) if announced else "\t"
-        text, skipped = rest, 1
+    if announced:
+        separator, text, skipped = announced.group(1) or "\t", "".join(rest), 1
+        if separator not in SEPARATORS:
+            must = "must name a separator: semicolon, comma or tab"
+            findings.add(file, 1, "sep", must, separator)
+            return "", None
     else:
         separator = _separator(text)
     reader = csv.reader(io.StringIO(text, newline=""), delimiter=separator, strict=True)
-    rows: list[Row] = []
+    rows: _Rows = []
     before = 0
     try:
         for cells in reader:
-            rows.append(Row(skipped + before + 1, tuple(cells)))
+            rows.append((skipped + before + 1, tuple(cell.strip() for cell in cells)))
             before = reader.line_num
     except csv.Error as error:
         line = skipped + before + 1
-        findings.add(file, line, "", "must be well-formed CSV", str(error), "Check the quotes.")
+        must = f"must be well-formed CSV; here it is not ({error})"
+        findings.add(file, line, "", must, do="Check the quotes.")
+        return separator, rows if len(rows) > 1 else None
     return separator, rows
 
 
@@ -161,30 +220,28 @@ def _separator(text: str) -> str:
     return max(SEPARATORS, key=bare.count) if any(map(bare.count, SEPARATORS)) else ","
 
 
-def _workbook_rows(file: str, data: bytes, findings: Findings) -> list[Row]:
+def _workbook_rows(file: str, data: bytes, findings: Findings) -> _Rows | None:
     import openpyxl
-    from openpyxl.utils.exceptions import InvalidFileException
 
     try:
+        unpacked = sum(part.file_size for part in zipfile.ZipFile(io.BytesIO(data)).infolist())
+        if unpacked > 10 * LARGEST_FILE:
+            must = f"must be at most {10 * LARGEST_FILE // 1_000_000} MB when unpacked"
+            findings.add(file, None, "", must, f"{unpacked // 1_000_000} MB")
+            return None
         book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=True)
         sheet = book.worksheets[0]
+        # What a workbook says of its size may be a million empty rows.
+        sheet.reset_dimensions()
         return [
-            Row(line, tuple(_workbook_cell(value) for value in values))
+            (line, tuple(_workbook_cell(value).strip() for value in values))
             for line, values in enumerate(sheet.iter_rows(values_only=True), 1)
         ]
-    except (
-        InvalidFileException,
-        zipfile.BadZipFile,
-        KeyError,
-        ValueError,
-        IndexError,
-        OSError,
-        TypeError,
-        AttributeError,
-        SyntaxError,
-    ):
-        findings.add(file, None, "", "must be an XLSX workbook", "another or a damaged file")
-        return []
+    except Exception:
+        # A damaged workbook raises whatever the readers of its parts raise.
+        do = "Save it as .xlsx or as CSV again."
+        findings.add(file, None, "", "must be an XLSX workbook", "another or a damaged file", do)
+        return None
 
 
 def _workbook_cell(value: object) -> str:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
+from matchup.errors import Element
 from matchup.model.rules import Rules
 
 WEAR_STATES = ("new", "worn")
@@ -63,7 +64,7 @@ class CushionMaterial:
         rules.positive("new_for", self.new_for)
         rules.positive("life", self.life)
         if self.life and self.new_for:
-            rules.must(self.life >= self.new_for, "life", "must be >= `new_for`", self.life)
+            rules.must(not self.life < self.new_for, "life", "must be >= `new_for`", self.life)
         rules.close()
 
 
@@ -176,33 +177,33 @@ class CushionSpace:
 
     def __post_init__(self) -> None:
         rules = Rules("pile cushion")
-        rules.must(bool(self.materials), "materials", "must name at least one cushion", "none")
-        rules.must(
-            bool(self.sheets) != bool(self.thicknesses),
-            "sheets",
-            "must be given, or `thickness`, and not both",
-            "neither" if not self.sheets else "both",
-        )
+        rules.must(bool(self.materials), "materials", "must name at least one cushion", "")
+        given = bool(self.sheets or self.thicknesses)
+        rules.must(given, "sheets", "must be given, or `thickness`", "")
+        both = bool(self.sheets and self.thicknesses)
+        must = "must not be given together with `thickness`"
+        rules.must(not both, "sheets", must, list(self.sheets))
         for sheets in self.sheets:
             rules.must(sheets >= 1, "sheets", "must be >= 1", sheets)
         for thickness in self.thicknesses:
             rules.positive("thickness", thickness, "thickness")
         rules.positive("area", self.area, "area")
-        rules.must(bool(self.wears), "wear", "must name at least one state", "none")
+        rules.must(bool(self.wears), "wear", "must name at least one state: new, worn", "")
         for wear in self.wears:
             rules.one_of("wear", wear, WEAR_STATES)
         for material in self.materials:
             rules.must(
                 material.use in ("pile", "both"),
                 "materials",
-                "must be meant for piles: `use` must be pile or both in the cushion catalogue",
-                f"{material.name} with use {material.use}",
+                "must be cushions whose `use` is pile or both",
+                Element(f"{material.name}, whose use is {material.use}"),
             )
             rules.must(
-                not self.sheets or material.sheet is not None,
+                not self.sheets or material.sheet is not None or material.use == "hammer",
                 "materials",
-                "must have a `sheet` thickness in the cushion catalogue when `sheets` are counted",
-                f"{material.name} without",
+                "must be cushions with a `sheet` thickness where `sheets` are counted",
+                Element(f"{material.name}, which has none"),
+                do="Give `thickness` in place of `sheets`, or the sheet in the catalogue.",
             )
         rules.close()
 

@@ -9,6 +9,7 @@ from matchup.model.cushion import Spring
 from matchup.model.rules import Rules
 
 HAMMER_KINDS = ("drop", "hydraulic", "air")
+NO_CUSHION = "none"
 STANDARD_GRAVITY = 9.80665
 """Standard acceleration of free fall, exact by definition (ISO 80000-3). [m/s2]"""
 
@@ -67,7 +68,7 @@ class Hammer:
     rated_energy: float | None = None
     helmet_mass: float | None = None
     cushion: Spring | None = None
-    cushion_text: str = "none"
+    cushion_text: str = NO_CUSHION
     hammer_mass: float | None = None
     rides_on_pile: bool = False
     available: bool = True
@@ -94,9 +95,10 @@ class Hammer:
         rules.positive("lift_speed", self.lift_speed, "velocity")
         rules.positive("rated_energy", self.rated_energy, "energy")
         rules.positive("helmet_mass", self.helmet_mass, "mass")
+        rules.positive("hammer_mass", self.hammer_mass, "mass")
         if self.hammer_mass is not None:
             rules.must(
-                math.isfinite(self.hammer_mass) and self.hammer_mass >= self.ram_mass,
+                not 0 < self.hammer_mass < self.ram_mass,
                 "hammer_mass",
                 "must be >= `ram_mass`, which it contains",
                 self.hammer_mass,
@@ -107,7 +109,7 @@ class Hammer:
                 self.hammer_mass is not None,
                 "hammer_mass",
                 "must be given for a hammer that rides on the pile",
-                "nothing",
+                "",
             )
         rules.close()
 

@@ -13,6 +13,8 @@ from matchup.model.stage import Stage
 
 OBJECTIVES = ("energy", "time")
 DAMPINGS = ("smith", "viscous")
+LARGEST_SEED = 2**31
+"""Random number generators take less than 2**32, and a seed is counted up by the hammers."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,7 +39,9 @@ class Search:
         rules = Rules("search")
         rules.one_of("objective", self.objective, OBJECTIVES)
         rules.must(0 <= self.reserve < 1, "reserve", "must be >= 0 and < 1", self.reserve)
-        rules.must(self.seed >= 0, "seed", "must be >= 0", self.seed)
+        rules.must(
+            0 <= self.seed <= LARGEST_SEED, "seed", f"must be 0 to {LARGEST_SEED}", self.seed
+        )
         rules.close()
 
 
@@ -147,8 +151,8 @@ class Job:
     def __post_init__(self) -> None:
         rules = Rules("job")
         rules.one_of("display", self.display, ("metric", "us"))
-        rules.must(bool(self.hammers), "hammers", "must hold at least one hammer", "none")
-        rules.must(bool(self.stages), "stages", "must hold at least one stage", "none")
+        rules.must(bool(self.hammers), "hammers", "must hold at least one hammer", "")
+        rules.must(bool(self.stages), "stages", "must hold at least one stage", "")
         for name, items in (("hammers", self.hammers), ("stages", self.stages)):
             names = [item.name for item in items]
             twice = sorted({n for n in names if names.count(n) > 1})

@@ -80,25 +80,25 @@ class Stage:
         depths = [depth for depth, _ in self.shaft_shape]
         shares = [share for _, share in self.shaft_shape]
         rules.must(
-            all(a < b for a, b in pairwise(depths)),
+            not any(a >= b for a, b in pairwise(depths)),
             "shaft_shape",
             "must have depths that increase",
-            depths,
+            ", ".join(f"{depth:g} m" for depth in depths),
         )
         rules.must(
             all(math.isfinite(s) and s >= 0 for s in shares),
             "shaft_shape",
             "must have intensities >= 0",
-            shares,
+            ", ".join(f"{share:g}" for share in shares),
         )
         if self.shaft_shape:
             rules.must(
                 len(self.shaft_shape) > 1
-                and depths[0] < self.penetration
-                and any(s > 0 for d, s in self.shaft_shape if d <= self.penetration),
+                and not depths[0] >= self.penetration
+                and any(s > 0 for d, s in self.shaft_shape if not d > self.penetration),
                 "shaft_shape",
                 "must have two rows or more and a positive intensity within the penetration",
-                list(self.shaft_shape),
+                ", ".join(f"{depth:g} m: {share:g}" for depth, share in self.shaft_shape),
             )
         rules.close()
 
