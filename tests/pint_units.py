@@ -42,6 +42,7 @@ NAMES = {
     "kips/in": "kip/inch",
     "kip/ft": "kip/foot",
     "lb/ft3": "pound/foot**3",
+    "lbf/ft3": "force_pound/foot**3",
     "pcf": "pound/foot**3",
     "N m": "newton * meter",
     "kN m": "kilonewton * meter",
@@ -81,6 +82,7 @@ SI = {
     "damping": "second/meter",
     "rate": "1/second",
     "number": "dimensionless",
+    "unit weight": "newton/meter**3",
 }
 WEIGHTS = {"mass": "newton", "density": "newton/meter**3"}
 """What stands for a mass through standard gravity."""
@@ -91,6 +93,8 @@ def factor(spelling: str, dimension: str) -> float:
     """Return what a value in a unit is multiplied by to be in SI, by `pint`."""
     if dimension == "stiffness" and spelling.startswith("lb/"):
         spelling = "lbf/" + spelling[3:]  # per length, only a force makes a stiffness
+    if dimension == "unit weight" and spelling == "pcf":
+        spelling = "lbf/ft3"  # of soil it is a force on a volume
     name = NAMES.get(spelling) or re.sub(r"([a-z])([23])\b", r"\1**\2", spelling)
     one = REGISTRY.Quantity(1.0, name)
     if dimension in WEIGHTS and one.is_compatible_with(WEIGHTS[dimension]):

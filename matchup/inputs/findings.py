@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import os
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 
-from matchup.errors import Fault, InputError, Problem, did_you_mean
+from matchup.errors import Fault, InputError, ModelError, Problem, did_you_mean
 from matchup.units import format_quantity
 
 __all__ = ["Findings", "did_you_mean", "shown_fault", "shown_path"]
@@ -31,6 +32,28 @@ class Findings:
         """Note a problem."""
         self.begin(file)
         self.problems.append(Problem(file, line, place, must, found, do))
+
+    def add_model_error(
+        self,
+        error: ModelError,
+        file: str,
+        lines: Mapping[str, int | None],
+        typed: Mapping[str, str],
+        places: Mapping[str, str],
+    ) -> None:
+        """Note what a model object of a whole file says of itself.
+
+        Parameters
+        ----------
+        lines, typed, places : mapping
+            By the model's field: its line, its text as typed, and what the file calls it.
+        """
+        for fault in error.faults:
+            name = fault.field
+            found = typed.get(name) or shown_fault(fault)
+            self.add(
+                file, lines.get(name), places.get(name, f"`{name}`"), fault.must, found, fault.do
+            )
 
     def notice(self, file: str, line: int | None, text: str) -> None:
         """Note something that is no problem."""

@@ -65,7 +65,9 @@ def read_layers(path: Path, findings: Findings) -> Profile | None:
         return None
     before = len(findings.problems)
     records = read_records(table, LAYER_COLUMNS + PROFILE_COLUMNS, findings)
-    layers = [_layer(table, record, findings) for record in records]
+    layers = [_layer(record) for record in records]
+    for record in records:
+        findings.problems += record.problems
     whole: dict[str, Any] = {}
     for column in ("water", "water_unit_weight"):
         if first := constant_of(table.file, records, column, findings):
@@ -83,21 +85,19 @@ def read_layers(path: Path, findings: Findings) -> Profile | None:
         return None
 
 
-def _layer(table: RawTable, record: Record, findings: Findings) -> Layer | None:
+def _layer(record: Record) -> Layer | None:
     given: dict[str, Any] = {}
     for spec in LAYER_COLUMNS:
         if spec.name in record.values:
             value = record.values[spec.name]
             given[spec.name] = value.casefold() if isinstance(value, str) else value
     required = {spec.name for spec in LAYER_COLUMNS if spec.required}
-    if not required <= set(given):
+    if record.problems or not required <= set(given):
         return None
     try:
         return Layer(**given)
     except ModelError as error:
-        findings.add_model_error(
-            error, table.file, {}, record.typed, record.places, line=record.line
-        )
+        record.wrong_model(error)
         return None
 
 
@@ -135,6 +135,8 @@ def read_resistance_table(path: Path, findings: Findings) -> ResistanceTable | N
         return None
     before = len(findings.problems)
     records = read_records(table, RESISTANCE_COLUMNS, findings)
+    for record in records:
+        findings.problems += record.problems
     _check_depths(table, records, findings)
     cases = _cases(table, records, findings)
     kind = constant_of(table.file, records, "kind", findings)

@@ -57,6 +57,8 @@ def read_csv(path: Path, findings: Findings, location: str | None = None) -> Sou
     if table is None:
         return None
     records = read_records(table, COLUMNS, findings)
+    for record in records:
+        findings.problems += record.problems
     if findings.problems:
         return None
     name, records = _chosen(table.file, records, location, findings)
