@@ -121,6 +121,12 @@ _UNITS: dict[str, dict[str, float]] = {
         "pcf": POUND / FOOT**3,
         "kN/m3": 1e3 / GRAVITY,
     },
+    "unit weight": {
+        "N/m3": 1.0,
+        "kN/m3": 1e3,
+        "lbf/ft3": POUND_FORCE / FOOT**3,
+        "pcf": POUND_FORCE / FOOT**3,
+    },
     "energy": {
         "J": 1.0,
         "kJ": 1e3,
@@ -161,6 +167,7 @@ QUANTITIES = {
     "modulus": Quantity("stress", "MPa", "ksi", "MPa or ksi"),
     "stiffness": Quantity("stiffness", "MN/m", "kip/in", "MN/m or kip/in"),
     "density": Quantity("density", "kg/m3", "lb/ft3", "kg/m3 or lb/ft3"),
+    "unit weight": Quantity("unit weight", "kN/m3", "lbf/ft3", "kN/m3 or pcf"),
     "energy": Quantity("energy", "kJ", "ft-kip", "kJ or ft-kip"),
     "velocity": Quantity("velocity", "m/s", "ft/s", "m/s or ft/s"),
     "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft"),

@@ -1,0 +1,1 @@
+"""Published resistance methods: from layers or a sounding to stages."""
