@@ -147,6 +147,11 @@ class Layer:
         """Soil and depths in words, for messages."""
         return f"{self.soil}, {self.top:g}-{self.bottom:g} m"
 
+    @property
+    def states_both(self) -> bool:
+        """Whether the layer states both unit resistances directly."""
+        return self.unit_shaft is not None and self.unit_toe is not None
+
     def strength_at(self, depth: ArrayLike) -> FloatArray:
         """Return the undrained strength at depths of this layer, NaN without one.
 
@@ -238,7 +243,7 @@ class Profile:
         ModelError
             Nothing is known below the last layer.
         """
-        return _within(np.asarray(depth, float), 0.0, self.end, self.name)
+        return within(np.asarray(depth, float), 0.0, self.end, self.name)
 
     def place(self, depth: ArrayLike) -> np.ndarray[tuple[int, ...], np.dtype[np.int64]]:
         """Return the rows of the layers at depths; on a border, of the layer below."""
@@ -344,6 +349,8 @@ class ResistanceTable:
         )
         for value in values:
             rules.not_negative(name, value, "force")
+        if name.endswith("shaft") and values and self.depth and self.depth[0] == 0:
+            rules.must(values[0] == 0, name, "must be 0 at depth 0", values[0], "force")
 
     def _check_order(self, rules: Rules, less: str, more: str) -> None:
         small, large = self.columns[less], self.columns[more]
@@ -365,10 +372,26 @@ class ResistanceTable:
         ModelError
             Nothing is known outside the rows.
         """
-        return _within(np.asarray(depth, float), self.depth[0], self.depth[-1], self.name)
+        return within(np.asarray(depth, float), self.depth[0], self.depth[-1], self.name)
 
 
-def _within(depth: FloatArray, top: float, end: float, name: str) -> FloatArray:
+def within(depth: FloatArray, top: float, end: float, name: str) -> FloatArray:
+    """Return penetrations if all lie where the ground is known.
+
+    Parameters
+    ----------
+    depth : (n,) float64 array or one number in an array
+        [m]
+    top, end : float
+        Where it is known. [m]
+    name : str
+        Of what knows it, for the message.
+
+    Raises
+    ------
+    ModelError
+        With every depth outside.
+    """
     rules = Rules(name)
     outside = ~((depth >= top - TOUCH) & (depth <= end + TOUCH))
     for value in depth[outside].tolist() if depth.ndim else [float(depth)] * bool(outside):
