@@ -80,7 +80,8 @@ def corrected_tip(sounding: Sounding) -> tuple[FloatArray, str]:
             "cone resistance not corrected for pore pressure: u2 or area ratio void",
         )
     excess = np.where(np.isnan(sounding.pore_pressure), 0.0, sounding.pore_pressure)
-    return sounding.tip + (1 - sounding.area_ratio) * excess, "cone resistance corrected with u2"
+    tip = sounding.tip + (1 - sounding.area_ratio) * excess
+    return np.maximum(tip, 0.0), "cone resistance corrected with u2"
 
 
 def behaviour_index(

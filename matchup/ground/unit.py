@@ -89,26 +89,13 @@ class UnitResistance:
     scale: FloatArray
     notes: tuple[str, ...] = ()
 
-    def shaft_at(self, tip: float, depth: FloatArray | None = None) -> FloatArray:
-        """Return the unit shaft resistance with the toe at `tip`.
+    def shaft_at(self, tip: float) -> FloatArray:
+        """Return unit shaft resistance at the nodes with the toe at `tip`, (n,) [Pa].
 
-        Parameters
-        ----------
-        tip : float
-            [m]
-        depth : (k,) float64 array or None
-            None for the nodes; those below the toe are as at the toe. [m]
-
-        Returns
-        -------
-        (k,) float64 array
-            Zero outside the nodes. [Pa]
+        Nodes below the toe have the one that they would have at the toe.
         """
         above = np.maximum(tip - self.depth, 0.0)
-        values = self.residual + (self.initial - self.residual) * np.exp(-self.decay * above)
-        if depth is None:
-            return values
-        return np.interp(depth, self.depth, values, left=0.0, right=0.0)
+        return self.residual + (self.initial - self.residual) * np.exp(-self.decay * above)
 
     def with_nodes(self, change: Callable[[FloatArray], FloatArray]) -> UnitResistance:
         """Return the same with every node array put through `change`."""
@@ -141,7 +128,8 @@ class UnitResistance:
             end = values[max(last - 1, 0)] * (1 - share) + values[last] * share
             return np.append(values[:last], end)
 
-        return self.with_nodes(cut)
+        # Rounding must not move the toe.
+        return replace(self.with_nodes(cut), depth=np.append(self.depth[:last], tip))
 
     def loosened(self, to: float, share: float) -> UnitResistance:
         """Return the same with only a share of the shaft resistance left down to a depth."""
