@@ -50,6 +50,25 @@ def concrete_modulus(strength: float) -> float:
 
 
 @dataclass(frozen=True, slots=True)
+class Core:
+    """The soil that an open section takes in: inside a tube, between the flanges of an H.
+
+    Parameters
+    ----------
+    shape : str
+        ``tube`` or ``H``.
+    area : float
+        Of the soil: with the area of the pile's material, that of the whole outline. [m2]
+    perimeter : float
+        Of the faces on it, so far as they come on top of the outline's perimeter. [m]
+    """
+
+    shape: str
+    area: float
+    perimeter: float
+
+
+@dataclass(frozen=True, slots=True)
 class Section:
     """A cross-section as the solver and the ground see it.
 
@@ -67,6 +86,8 @@ class Section:
         Width or diameter, the size that toe quakes are given by. [m]
     displaces : bool
         True for a full-displacement pile (solid or closed), False for a coring one.
+    core : Core or None
+        Soil taken in by an open tube, or by an H whose perimeter and toe area are not given.
     """
 
     text: str
@@ -75,6 +96,7 @@ class Section:
     toe_area: float
     width: float
     displaces: bool = True
+    core: Core | None = None
 
     def __post_init__(self) -> None:
         rules = Rules("pile section")
@@ -106,8 +128,17 @@ class Section:
         rules.close()
         area = math.pi * (diameter - wall) * wall
         closed = toe == "closed"
-        toe_area = math.pi * diameter**2 / 4 if closed else area
-        return cls(f"pipe, toe {toe}", area, math.pi * diameter, toe_area, diameter, closed)
+        inside = diameter - 2 * wall
+        core = Core("tube", math.pi * inside**2 / 4, math.pi * inside)
+        return cls(
+            f"pipe, toe {toe}",
+            area,
+            math.pi * diameter,
+            area + core.area if closed else area,
+            diameter,
+            closed,
+            None if closed else core,
+        )
 
     @classmethod
     def h(
@@ -118,14 +149,28 @@ class Section:
         perimeter: float | None = None,
         toe_area: float | None = None,
     ) -> Section:
-        """Return an H section; perimeter and toe area are the box's unless given."""
+        """Return an H section; perimeter and toe area are the box's unless given.
+
+        The faces of the steel section are those of the box and twice the width; the thickness of
+        the web is neglected.
+        """
         rules = Rules("pile section")
         rules.must(
             not area > depth * width, "area", "must be at most depth times width", area, "area"
         )
         rules.close()
         box = 2 * (depth + width)
-        return cls("H", area, perimeter or box, toe_area or depth * width, depth, False)
+        core = Core("H", depth * width - area, 2 * width)
+        own = perimeter is not None or toe_area is not None
+        return cls(
+            "H",
+            area,
+            perimeter or box,
+            toe_area or depth * width,
+            depth,
+            False,
+            None if own else core,
+        )
 
     @classmethod
     def other(cls, area: float, perimeter: float, toe_area: float) -> Section:
