@@ -20,9 +20,8 @@ VERDICT = Column(
 GOVERNS = Column(
     "governs",
     "governs",
-    wrap=8,
     keep=3,
-    short={"stroke range": "range"},
+    short={"stroke range": "range", "compression": "compr."},
     notes={"stroke range": "range: the stroke is at an end of the hammer's own range"},
 )
 

@@ -258,18 +258,16 @@ def searched(ranking: Ranking) -> str:
     """Return how the answers were found, hammers of one kind of answer told together."""
     groups: dict[str, list[list[int]]] = {}
     for option in (*ranking.options, *ranking.rejected):
-        shape = re.sub(r"\d+", "#", option.certificate)
-        groups.setdefault(shape, []).append(
-            [int(n) for n in re.findall(r"\d+", option.certificate)]
-        )
+        numbers = [int(number) for number in re.findall(r"\d+", option.certificate)]
+        groups.setdefault(re.sub(r"\d+", "#", option.certificate), []).append(numbers)
     told = []
-    for shape, numbers in groups.items():
-        text = shape
-        for column in zip(*numbers, strict=True):
+    for shape, found in groups.items():
+        kind, _, text = shape.partition(": ")
+        for column in zip(*found, strict=True):
             low, high = min(column), max(column)
             text = text.replace("#", f"{low}" if low == high else f"{low} to {high}", 1)
-        many = f"{len(numbers)} hammer{'s' if len(numbers) > 1 else ''} "
-        told.append(text if len(groups) == 1 else many + text)
+        many = f"{len(found)} hammer{'s' if len(found) > 1 else ''}: " if len(groups) > 1 else ""
+        told.append(many + text + (" (exact)" if kind == "exact" else ""))
     spent = (
         f"{ranking.analyses} blows in {ranking.runtime:.1f} s"
         if ranking.analyses

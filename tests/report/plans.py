@@ -61,8 +61,13 @@ def option(
     *plans: StagePlan, verdict: str = DRIVES, hammer: Hammer | None = None, **more: object
 ) -> Option:
     plans = plans or (plan(),)
-    given = {"governs": "set", "stack": sheets(4), "certificate": "exact: all 8 cushions"}
-    given |= {"target": plans[-1], "cost": plans[-1].blow_energy}  # type: ignore[dict-item]
+    given = {
+        "governs": "set",
+        "stack": sheets(4),
+        "target": plans[-1],
+        "cost": plans[-1].blow_energy,
+        "certificate": "exact: all 8 cushions",
+    }
     if verdict not in (DRIVES, "drives with reduced stroke"):
         given["failing"] = plans[0]  # type: ignore[assignment]
     return Option(

@@ -258,7 +258,7 @@ def test_what_a_softer_cushion_costs_is_told_in_what_is_sought():
 
 def test_one_kind_of_search_is_told_once():
     assert searched(ranking([option()], [option(WEAK, verdict=NOT_REACHED)])) == (
-        "Searched: exact: all 8 cushions; 120 blows in 0.2 s."
+        "Searched: all 8 cushions (exact); 120 blows in 0.2 s."
     )
 
 
@@ -269,8 +269,8 @@ def test_hammers_found_in_different_ways_are_told_apart():
     ]
     heavy = option(running(STAGE), verdict=PILE_RUNS, certificate="exact: by weight")
     assert searched(ranking(found, [heavy])) == (
-        "Searched: 3 hammers search: 52 to 61 of 170 cushions, best found after 9 to 40; 1 hammer "
-        "exact: by weight; 120 blows in 0.2 s."
+        "Searched: 3 hammers: 52 to 61 of 170 cushions, best found after 9 to 40; 1 hammer: by "
+        "weight (exact); 120 blows in 0.2 s."
     )
 
 

@@ -165,6 +165,13 @@ def test_a_reduced_stroke_is_marked_for_people_and_told_whole_in_a_file():
     assert "stroke range" in shown.to_csv()
 
 
+@pytest.mark.parametrize("governs", ["set", "compression", "tension", "stroke range", "refusal"])
+def test_what_governs_takes_one_line(governs):
+    shown = options_table([plans.option(governs=governs)], Units("metric"))
+    assert len(body(shown.to_text(100))) == 1
+    assert governs in shown.to_csv()
+
+
 def test_a_note_goes_with_its_column():
     column = Column("governs", "governs", keep=1, notes={"range": "range: an end"})
     noted = table(("a name", "range"), columns=(NAME, column))
