@@ -157,10 +157,9 @@ def test_what_is_no_plain_number_is_refused(text):
 def test_any_text_is_a_value_or_a_unit_error(text, quantity):
     try:
         value = parse_quantity(text, quantity)
-    except UnitError as error:
-        assert error.must.startswith("must ")
-    else:
-        assert math.isfinite(value)
+    except UnitError:
+        return
+    assert math.isfinite(value)
 
 
 @given(number=st.floats(allow_nan=False), spelling=st.sampled_from(SPELLINGS))
