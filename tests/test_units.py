@@ -155,13 +155,11 @@ def test_what_is_no_plain_number_is_refused(text):
 
 @given(text=st.text(max_size=20), quantity=st.sampled_from(list(QUANTITIES)))
 def test_any_text_is_a_value_or_a_unit_error(text, quantity):
-    refused = ""
     try:
         value = parse_quantity(text, quantity)
-    except UnitError as error:
-        refused, value = error.must, 0.0
+    except UnitError:
+        return
     assert math.isfinite(value)
-    assert refused == "" or refused.startswith("must ")
 
 
 @given(number=st.floats(allow_nan=False), spelling=st.sampled_from(SPELLINGS))

@@ -80,6 +80,8 @@ class Record:
         Whether the cells do not belong to their columns, so that none can be read.
     noted : list of (place, Problem)
         With the places of their columns in the row.
+    instead : Problem or None
+        What to tell in place of any problem of a row whose cells may have been shifted.
     """
 
     file: str
@@ -92,10 +94,13 @@ class Record:
     unread: set[str] = field(default_factory=set)
     torn: bool = False
     noted: list[tuple[int, Problem]] = field(default_factory=list)
+    instead: Problem | None = None
 
     @property
     def problems(self) -> list[Problem]:
         """Problems in the order of the columns, for the reader to pass on or leave out."""
+        if self.noted and self.instead:
+            return [self.instead]
         return [problem for _, problem in sorted(self.noted, key=lambda pair: pair[0])]
 
     def number(self, name: str) -> float | None:
@@ -249,24 +254,19 @@ def _record(table: RawTable, row: Row, header: _Header) -> Record:
     label = next((row.cells[k.place] for k in header.known if k.spec.kind == "name"), "")
     record = Record(table.file, row.line, label, unread=set(header.unread))
     record.extra = {name: row.cells[place] for place, name in header.unknown if row.cells[place]}
-    if row.width > table.width:
-        _tear(record, table, row)
-        return record
-    for column in header.known:
-        _read_cell(record, row.cells[column.place], column, table.separator)
-    if record.problems and row.width < table.width and _may_be_shifted(table, row):
-        _tear(record, table, row)
-    return record
-
-
-def _tear(record: Record, table: RawTable, row: Row) -> None:
-    """Note that a row's cells don't fit the header, in place of all that follows from it."""
-    record.torn = True
-    record.values = {"name": record.label} if record.label else {}
     do = COMMA_REMEDY if table.separator == "," else "Leave out what is too much."
     must = f"must have the header's {table.width} cells"
-    told = Problem(table.file, row.line, record.label, must, f"{row.width} cells", do)
-    record.noted = [(0, told)]
+    misfit = Problem(table.file, row.line, label, must, f"{row.width} cells", do)
+    if row.width > table.width:
+        record.torn = True
+        record.values = {"name": label} if label else {}
+        record.noted.append((0, misfit))
+        return record
+    if row.width < table.width and _may_be_shifted(table, row):
+        record.instead = misfit
+    for column in header.known:
+        _read_cell(record, row.cells[column.place], column, table.separator)
+    return record
 
 
 def _may_be_shifted(table: RawTable, row: Row) -> bool:

@@ -163,24 +163,28 @@ _SIGNATURES = {
 
 def decode(file: str, data: bytes, findings: Findings) -> str | None:
     """Return text in UTF-8, UTF-16 or Windows' western code page, or note that it is none."""
-    if data[:2] in (b"\xff\xfe", b"\xfe\xff"):
-        encodings = ["utf-16"]
-    elif b"\x00" in data[:200]:
-        little = data[1:2] == b"\x00"
-        encodings = ["utf-16-le" if little else "utf-16-be"]
-    else:
-        encodings = ["utf-8-sig", "cp1252"]
-    for encoding in encodings:
+    known = next((known for known in _SIGNATURES if data.startswith(known)), None)
+    for encoding in _encodings(data) if known is None else []:
         try:
             text = data.decode(encoding)
         except UnicodeDecodeError:
             continue
-        control = re.search(r"[\x00-\x08\x0e-\x1f]", text)
-        if control is None:
+        if not re.search(r"[\x00-\x08\x0e-\x1f]", text):
             return text
-    what, do = next((v for k, v in _SIGNATURES.items() if data.startswith(k)), ("binary data", ""))
+    what, do = ("binary data", "") if known is None else _SIGNATURES[known]
     findings.add(file, None, "", "must be a text file", what, do)
     return None
+
+
+def _encodings(data: bytes) -> list[str]:
+    """Return the encodings to try; without a mark, UTF-16 shows by zeros in every other byte."""
+    if data[:2] in (b"\xff\xfe", b"\xfe\xff"):
+        return ["utf-16"]
+    for first, encoding in ((1, "utf-16-le"), (0, "utf-16-be")):
+        half = data[first:200:2]
+        if half.count(0) > len(half) / 2:
+            return [encoding]
+    return ["utf-8-sig", "cp1252"]
 
 
 _Rows = list[tuple[int, _Cells]]
