@@ -211,6 +211,7 @@ class _Drive:
             toe_damping=float(unit.toe_damping[row]),
             shaft_shape=self._shape(mode, shaft),
             case=case.name,
+            after_pause=elapsed,
             notes=(*self.notes, *self._moment_notes(case, elapsed, modes, chosen)),
         )
         return GroundStage(stage, case, elapsed, mode.name, modes)
