@@ -60,12 +60,12 @@ class Sounding:
         if self.water is not None:
             rules.must(math.isfinite(self.water), "water", "must be finite", self.water, "length")
         shape = np.shape(self.depth)
-        rules.must(
-            len(shape) == 1 and shape[0] >= 2, "depth", "must hold two readings or more", shape
-        )
+        enough = len(shape) == 1 and shape[0] >= 2
+        rules.must(enough, "depth", "must hold two readings or more", np.size(self.depth))
         for field in ("tip", "sleeve", "pore_pressure"):
-            found = np.shape(getattr(self, field))
-            rules.must(found == shape, field, "must have a value or NaN at every depth", found)
+            values: FloatArray = getattr(self, field)
+            same = np.shape(values) == shape
+            rules.must(same, field, "must have a value or NaN at every depth", np.size(values))
         if not rules.faults:
             self._check_values(rules)
         rules.close()
