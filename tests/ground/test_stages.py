@@ -242,6 +242,29 @@ def test_stevens_bounds_enclose_each_other():
     assert np.all(np.diff(np.array(totals), axis=0) > 0)
 
 
+@given(st.floats(1, 30), st.floats(1, 29))
+def test_stevens_clay_and_bounds_follow_the_stated_formulas(ocr, tip):
+    # Formula and factors are from memory: this holds the code to what the docstring says.
+    ground = Ground(Profile((clay(0, 30, 60 * KPA, ocr=ocr),), 1.0))
+    static = unit_of("api 2011", ground, TUBE, [tip]).down_to(tip)
+    full = np.trapezoid(static.initial, static.depth) * math.pi
+    (low_core, low_plug), _, (high_core, high_plug) = (
+        stages(ground, [tip], "stevens 1982", TUBE, [Case(c)])[0].modes
+        for c in ("low", "best", "high")
+    )
+    outer, inner = 0.5 * ocr**0.3 * full * np.array([0.762, 0.724])
+    assert low_core[1:3] == pytest.approx((outer, 0.5 * inner))
+    assert high_core[1:3] == pytest.approx((outer, inner))
+    assert high_plug.outer == pytest.approx(low_plug.outer)
+    assert high_plug.toe == pytest.approx(1.67 * low_plug.toe)
+    dry = Ground(Profile((sand(0, 30),), 1.0))
+    low, high = (
+        stages(dry, [tip], "stevens 1982", TUBE, [Case(c)])[0].modes[1] for c in ("low", "high")
+    )
+    assert high.outer == pytest.approx(1.3 * low.outer)
+    assert high.toe == pytest.approx(1.5 * low.toe)
+
+
 # --- toe near a thin layer ----------------------------------------------------------------------
 
 
