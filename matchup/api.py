@@ -25,6 +25,7 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
+from matchup.report.driven import drive_document, drive_page, stations_table
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.options import options_table, schedule_table
@@ -43,10 +44,12 @@ if TYPE_CHECKING:
 __all__ = [
     "BlowResult",
     "CheckResult",
+    "DriveResult",
     "RankingResult",
     "WindowResult",
     "blow",
     "check",
+    "drive",
     "load_job",
     "rank",
     "window",
@@ -149,6 +152,37 @@ class CheckResult(RankingResult):
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
         return check_document(self.ranking, _units(self.job, display))
+
+
+@dataclass(frozen=True)
+class DriveResult(CheckResult):
+    """The whole drive of one hammer, and whether it reaches the target.
+
+    Parameters
+    ----------
+    case : str or None
+        Whose stations are shown.
+    """
+
+    case: str | None = None
+
+    def page(self, display: str | None = None) -> Page:
+        """Return the drive as blocks of prose and tables."""
+        return drive_page(self.ranking, _units(self.job, display), self.case)
+
+    def to_frame(self) -> pd.DataFrame:
+        """Return every station of every case as a row, in the JSON document's fixed units."""
+        import pandas as pd
+
+        return pd.DataFrame(self.to_dict()["stations"])
+
+    def to_csv(self, display: str | None = None) -> str:
+        """Return every station of every case as CSV."""
+        return stations_table(self.option.cases, _units(self.job, display)).to_csv()
+
+    def to_dict(self, display: str | None = None) -> dict[str, Any]:
+        """Return the JSON document as plain data; `display` changes its sentences alone."""
+        return drive_document(self.ranking, _units(self.job, display))
 
 
 @dataclass(frozen=True)
@@ -303,6 +337,55 @@ def check(
     return CheckResult(rank_hammers(alone, workers, tell))
 
 
+def drive(
+    job: JobLike,
+    hammer: str | None = None,
+    workers: int | None = None,
+    tell: Tell | None = None,
+    *,
+    cushion: str | None = None,
+    sheets: int | None = None,
+    thickness: float | str | None = None,
+    hammer_cushion: str | None = None,
+    case: str | None = None,
+) -> DriveResult:
+    """Predict the whole drive of one hammer, station by station in every ground case.
+
+    Parameters
+    ----------
+    job : Job or path
+        With a ``[ground]``.
+    hammer : str or None
+        Name; may be left out where the job has one hammer.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+    cushion, sheets, thickness, hammer_cushion
+        The cushions to drive with, as for `blow`; where none is named, the best are looked for.
+    case : str or None
+        Whose stations are shown; the answer is about all required ones.
+
+    Raises
+    ------
+    InputError
+        If the job or the selection has problems, or the job has no ``[ground]``.
+    """
+    job = _job(job)
+    problems: list[Problem] = []
+    if job.drive is None:
+        must = "must have a [ground], whose stages make a whole drive"
+        problems.append(Problem(job.file, None, "ground", must, "", "`check` answers for stages."))
+    known = [course.case for course in job.courses]
+    if job.drive is not None and case is not None and case not in known:
+        must = f"must be a case of the job: {', '.join(known)}"
+        problems.append(Problem(None, None, "case", must, case))
+    thickness = _quantity(thickness, "thickness", "thickness", problems)
+    selection = Selection(hammer, None, cushion, sheets, thickness, None, hammer_cushion)
+    alone = _with_selected(job, selection, problems)
+    return DriveResult(rank_hammers(alone, workers, tell), case)
+
+
 def window(
     job: JobLike,
     hammer: str | None = None,
@@ -377,6 +460,33 @@ def blow(
 
 def _job(job: JobLike) -> Job:
     return job if isinstance(job, Job) else load_job(job)
+
+
+def _with_selected(job: Job, selection: Selection, problems: list[Problem]) -> Job:
+    """Return the job with the named hammer alone, and the cushions where some are named."""
+    try:
+        hammer = select_hammer(job, selection.hammer)
+        named = (selection.material, selection.sheets, selection.thickness)
+        cushions, others = job.cushions, job.hammer_cushions
+        if any(value is not None for value in named):
+            only = replace(selection, hammer_cushion=others[0].text if others else None)
+            chosen = select(job, only).stack.pile
+            assert chosen is not None
+            assert cushions is not None
+            cushions = cushions.holding(chosen)
+        if selection.hammer_cushion is not None:
+            any_pile = replace(job, cushions=None)
+            picked = select(
+                any_pile,
+                Selection(selection.hammer, None, None, None, None, None, selection.hammer_cushion),
+            ).stack.hammer
+            assert picked is not None
+            others = (picked,)
+    except InputError as error:
+        raise InputError([*problems, *error.problems]) from None
+    if problems:
+        raise InputError(problems)
+    return replace(job, hammers=(hammer,), cushions=cushions, hammer_cushions=others)
 
 
 def _quantity(
