@@ -25,7 +25,13 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
-from matchup.report.driven import drive_document, drive_page, stations_table
+from matchup.report.driven import (
+    criterion_document,
+    criterion_page,
+    drive_document,
+    drive_page,
+    stations_table,
+)
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.options import options_table, schedule_table
@@ -33,6 +39,7 @@ from matchup.report.page import Page, page_html, page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table
+from matchup.search.criterion import Criterion, find_criterion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers
 from matchup.search.stroke_map import StrokeMap, map_strokes
@@ -162,13 +169,20 @@ class DriveResult(CheckResult):
     ----------
     case : str or None
         Whose stations are shown.
+    criterion : Criterion or None
+        The termination criterion, where it was asked for.
     """
 
     case: str | None = None
+    criterion: Criterion | None = None
 
     def page(self, display: str | None = None) -> Page:
         """Return the drive as blocks of prose and tables."""
-        return drive_page(self.ranking, _units(self.job, display), self.case)
+        units = _units(self.job, display)
+        page = list(drive_page(self.ranking, units, self.case))
+        if self.criterion is not None:
+            page[-1:-1] = criterion_page(self.criterion, self.job, units)
+        return page
 
     def to_frame(self) -> pd.DataFrame:
         """Return every station of every case as a row, in the JSON document's fixed units."""
@@ -182,7 +196,9 @@ class DriveResult(CheckResult):
 
     def to_dict(self, display: str | None = None) -> dict[str, Any]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
-        return drive_document(self.ranking, _units(self.job, display))
+        document = drive_document(self.ranking, _units(self.job, display))
+        told = None if self.criterion is None else criterion_document(self.criterion)
+        return document | {"criterion": told}
 
 
 @dataclass(frozen=True)
@@ -348,6 +364,7 @@ def drive(
     thickness: float | str | None = None,
     hammer_cushion: str | None = None,
     case: str | None = None,
+    criterion: bool = False,
 ) -> DriveResult:
     """Predict the whole drive of one hammer, station by station in every ground case.
 
@@ -365,6 +382,8 @@ def drive(
         The cushions to drive with, as for `blow`; where none is named, the best are looked for.
     case : str or None
         Whose stations are shown; the answer is about all required ones.
+    criterion : bool
+        Add the termination criterion: which set at which stroke proves which resistance.
 
     Raises
     ------
@@ -383,7 +402,11 @@ def drive(
     thickness = _quantity(thickness, "thickness", "thickness", problems)
     selection = Selection(hammer, None, cushion, sheets, thickness, None, hammer_cushion)
     alone = _with_selected(job, selection, problems)
-    return DriveResult(rank_hammers(alone, workers, tell), case)
+    ranking = rank_hammers(alone, workers, tell)
+    proof = None
+    if criterion and ranking.options:
+        proof = find_criterion(alone, ranking.options[0], workers, tell)
+    return DriveResult(ranking, case, proof)
 
 
 def window(
@@ -391,6 +414,9 @@ def window(
     hammer: str | None = None,
     stage: str | None = None,
     workers: int | None = None,
+    tell: Tell | None = None,
+    *,
+    every_stage: bool = False,
 ) -> WindowResult:
     """Map stroke against cushion for one hammer: where it works, and what stops it.
 
@@ -401,6 +427,10 @@ def window(
         Names; the stage that is not named is the target.
     workers : int or None
         Threads; None takes as many as there are processors.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+    every_stage : bool
+        Show where a stroke works at every stage, of every required ground case.
 
     Raises
     ------
@@ -408,7 +438,11 @@ def window(
         If the job or the selection has problems.
     """
     job = _job(job)
-    return WindowResult(map_strokes(job, *select_cell(job, hammer, stage), workers))
+    chosen, at = select_cell(job, hammer, stage)
+    if every_stage and stage is not None:
+        must = "must be left out where every stage is looked at"
+        raise InputError([Problem(None, None, "stage", must, stage)])
+    return WindowResult(map_strokes(job, chosen, None if every_stage else at, workers, tell))
 
 
 def blow(

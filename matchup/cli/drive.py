@@ -20,6 +20,9 @@ def drive(
     hammer_cushion: Annotated[
         str | None, Parameter(help="In the job's words, where it offers several.")
     ] = None,
+    criterion: Annotated[
+        bool, Parameter(negative="", help="Which set at which stroke proves which resistance.")
+    ] = False,
     case: Annotated[str | None, Parameter(help="Ground case whose stations are shown.")] = None,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
@@ -37,6 +40,7 @@ def drive(
             thickness=thickness,
             hammer_cushion=hammer_cushion,
             case=case,
+            criterion=criterion,
         )
     show_result(result, common)
     return 0 if result.can else THE_ANSWER_IS_NO

@@ -5,6 +5,7 @@ ground, method, pile, penetrations, cases -> UnitResistance -> Stage, one for ea
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 from itertools import groupby
@@ -23,7 +24,7 @@ from matchup.ground.unit import Mode, UnitResistance
 from matchup.model.pile import Pile
 from matchup.model.rules import Rules
 from matchup.model.sounding import FloatArray
-from matchup.model.stage import Stage
+from matchup.model.stage import Stage, StageMode
 
 SHAPE_TIPS = 4
 """The shaft's shape keeps the nodes that it needs at about so many penetrations."""
@@ -172,6 +173,7 @@ class _Shaft(NamedTuple):
     inner: float
     quake: float
     damping: float
+    setup: float
     depth: FloatArray
     intensity: FloatArray
 
@@ -216,6 +218,8 @@ class _Drive:
             shaft_shape=self._shape(mode, shaft),
             case=case.name,
             after_pause=elapsed,
+            setup=shaft.setup,
+            modes=_told(modes),
             notes=(*self.notes, *self._moment_notes(case, elapsed, modes, chosen)),
         )
         return GroundStage(stage, case, elapsed, mode.name, modes)
@@ -231,7 +235,9 @@ class _Drive:
             intensity = stress * (mode.outer + mode.inner)
             quake = _mean(cut.shaft_quake, intensity, cut.depth)
             damping = _mean(cut.shaft_damping, intensity, cut.depth)
-            made.append(_Shaft(outer, inner, quake, damping, cut.depth, intensity))
+            gain = self._raised(cut, math.inf) / self._raised(cut, elapsed)
+            setup = max(1.0, _mean(gain, intensity, cut.depth))
+            made.append(_Shaft(outer, inner, quake, damping, setup, cut.depth, intensity))
         return made
 
     def _raised(self, unit: UnitResistance, elapsed: float) -> FloatArray:
@@ -285,6 +291,12 @@ def _mean(values: FloatArray, weight: FloatArray, depth: FloatArray) -> float:
     if not whole > 0:
         return float(values.mean())
     return float(np.trapezoid(weight * values, depth) / whole)
+
+
+def _told(modes: tuple[ModeResistance, ...]) -> tuple[StageMode, ...]:
+    """Return the modes of a section that has more than one."""
+    told = tuple(StageMode(mode.mode, mode.outer + mode.inner, mode.toe) for mode in modes)
+    return told if len(told) > 1 else ()
 
 
 def _chosen(modes: tuple[ModeResistance, ...], rule: str) -> int:

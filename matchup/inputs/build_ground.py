@@ -54,6 +54,7 @@ def build_drive(
     stations = _stations(text, keys, given)
     choices = _made(text, partial(_choices, given))
     law = _made(text, partial(_law, given))
+    capacity, words = _capacity(text, keys)
     loosened = [
         _made(text, partial(Loosened, part.to, part.share, part.how), ("loosened", i))
         for i, part in enumerate(given.loosened)
@@ -83,7 +84,7 @@ def build_drive(
         return None, None
     refusal = () if keys.target and keys.target.refusal else (REFUSAL_NOTE,)
     stages = _by_case([one.stage for one in made], refusal)
-    return stages, Drive(tuple(given.required or ()))
+    return stages, Drive(tuple(given.required or ()), capacity, words)
 
 
 def _by_case(stages: list[Stage], notes: tuple[str, ...]) -> tuple[Stage, ...]:
@@ -196,6 +197,36 @@ def _sets(keys: JobKeys, stations: Any) -> list[float]:
     assert keys.target.set is not None
     refusal = keys.target.refusal or REFUSAL_SET
     return [refusal] * (len(stations) - 1) + [keys.target.set]
+
+
+def _capacity(text: JobText, keys: JobKeys) -> tuple[float | None, str]:
+    """Return the resistance to be proven, and how it follows from load and factor."""
+    target = keys.target
+    if target is None:
+        return None, ""
+    factors = {
+        key: getattr(target, key)
+        for key in ("safety_factor", "resistance_factor")
+        if getattr(target, key) is not None
+    }
+    if target.load is None:
+        for key in factors:
+            text.wrong(("target", key), "must be given together with a `load`")
+        return None, ""
+    if len(factors) != 1:
+        do = "For example safety_factor = 2.0 or resistance_factor = 0.65."
+        text.wrong(("target", "load"), "must be given together with one factor", do)
+        return None, ""
+    ((key, factor),) = factors.items()
+    shown = text.typed(("target", "load")).strip("\"'")
+    if key == "safety_factor":
+        if not factor >= 1:
+            text.wrong(("target", key), "must be >= 1")
+        return target.load * factor, f"{shown} times the safety factor {factor:g}"
+    if not 0 < factor <= 1:
+        text.wrong(("target", key), "must be above 0 and at most 1")
+        return None, ""
+    return target.load / factor, f"{shown} over the resistance factor {factor:g}"
 
 
 def _choices(given: GroundKeys) -> Choices:

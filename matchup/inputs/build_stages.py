@@ -29,7 +29,7 @@ def build_stages(text: JobText, keys: JobKeys, pile: Pile | None) -> tuple[Stage
         text.wrong(("stages",), "must hold at least one stage")
         return None
     if keys.target:
-        for key in ("penetration", "set"):
+        for key in ("penetration", "set", "load", "safety_factor", "resistance_factor"):
             if getattr(keys.target, key) is not None:
                 must = "must be left out with [[stages]]: the last of them is the target"
                 text.wrong(("target", key), must)

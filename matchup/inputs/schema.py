@@ -303,6 +303,9 @@ class TargetKeys(Keys):
     refusal: SetPerBlow | None = None
     penetration: Length | None = None
     set: SetPerBlow | None = None
+    load: Force | None = None
+    safety_factor: float | None = None
+    resistance_factor: float | None = None
 
 
 class LimitsKeys(Keys):

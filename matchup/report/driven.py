@@ -17,6 +17,7 @@ from matchup.report.ranked import foot
 from matchup.report.sentences import on_stack, reason
 from matchup.report.shown import Units, percent
 from matchup.report.table import Column, Field, Table, tabled
+from matchup.search.criterion import Criterion
 from matchup.search.option import GOES_DOWN, CaseDrive, Option, Ranking, StagePlan
 
 GOING_DOWN = "goes down"
@@ -180,6 +181,78 @@ def _cushion(plan: StagePlan) -> str | None:
 def _taken(plan: StagePlan) -> Any:
     assert plan.taken is not None
     return plan.taken
+
+
+def criterion_page(found: Criterion, job: Job, units: Units) -> Page:
+    """Return what sets mean at the target, and which one proves the resistance asked for."""
+    strokes = [units.text(float(stroke), "stroke") for stroke in found.strokes]
+    force, length = units.unit("force"), units.unit("set")
+    columns = [
+        Column(units.key("driving", "force"), f"while\ndriving\n{force}", 0),
+        Column(units.key("later", "force"), f"long\nafter\n{force}", 0),
+        *(
+            Column(
+                f"set_{length}_at_{stroke.replace(' ', '_')}",
+                f"set, {length}\nat {stroke}",
+                units.digits("set"),
+            )
+            for stroke in strokes
+        ),
+    ]
+    rows = [
+        (
+            units.value(float(found.driving[i]), "force"),
+            units.value(float(found.later[i]), "force"),
+            *(units.value(float(value), "set") for value in found.sets[i]),
+        )
+        for i in range(found.driving.size)
+    ]
+    head = (
+        f"What a set means at {units.text(found.stage.penetration, 'length')}, resistance "
+        f"distributed as in case {found.stage.case}; a smaller set proves more:"
+    )
+    lines = [_proof(found, job, units)] if found.needed is not None else []
+    lines.append(
+        f"Long after driving: shaft times {found.stage.setup:.2f} for set-up, toe unchanged. Of "
+        "the wear states the one with the smaller set counts. To be confirmed by dynamic testing."
+    )
+    return [Headline(head), Table(tuple(columns), tuple(rows)), Prose(tuple(lines))]
+
+
+def _proof(found: Criterion, job: Job, units: Units) -> str:
+    """Return which sets prove the resistance asked for."""
+    assert found.needed is not None
+    assert found.proving is not None
+    drive = job.drive
+    why = "" if drive is None else f" ({drive.capacity_text})"
+    needed = f"To prove {units.text(found.needed, 'force')} long after driving{why}"
+    proving = [
+        f"{units.text(float(set_), 'set')} ({units.blow_count(float(set_)):.0f} blows/"
+        f"{units.counted}) at {units.text(float(stroke), 'stroke')}"
+        for stroke, set_ in zip(found.strokes, found.proving, strict=True)
+        if set_ == set_
+    ]
+    if not proving:
+        return f"{needed}, the pile would have to be driven harder than these strokes can."
+    return f"{needed}, drive until the set is at most {', or '.join(proving)}."
+
+
+def criterion_document(found: Criterion) -> dict[str, Any]:
+    """Return the termination criterion for the JSON document."""
+    return {
+        "penetration_m": found.stage.penetration,
+        "case": found.stage.case or None,
+        "setup_factor": found.stage.setup,
+        "planned_stroke_m": found.planned,
+        "strokes_m": found.strokes.tolist(),
+        "resistance_driving_kN": (found.driving / 1e3).tolist(),
+        "resistance_later_kN": (found.later / 1e3).tolist(),
+        "sets_mm": [[number(float(s), 1e3) for s in row] for row in found.sets],
+        "needed_later_kN": number(found.needed, 1e-3),
+        "proving_sets_mm": (
+            None if found.proving is None else [number(float(s), 1e3) for s in found.proving]
+        ),
+    }
 
 
 def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
