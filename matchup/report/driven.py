@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from functools import partial
 from typing import Any
 
 from matchup.model.job import Job
@@ -137,6 +139,7 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
         (Column("rest_h", "rest\nh", 0, keep=2), lambda row: _rest(row[1])),
         measured("shaft", "shaft", "force", units, lambda row: row[1].stage.shaft),
         measured("toe", "toe", "force", units, lambda row: row[1].stage.toe),
+        *_modes(rows, units),
         measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
         measured("set", "set", "set", units, lambda row: row[1].set),
         (blow_count(units), lambda row: _count(row[1], units)),
@@ -150,6 +153,28 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
     if not any(plan.stage.after_pause for _, plan in rows):
         fields = [field for field in fields if field[0].key != "rest_h"]
     return tabled(rows, fields)
+
+
+def _modes(
+    rows: Sequence[tuple[CaseDrive, StagePlan]], units: Units
+) -> list[Field[tuple[CaseDrive, StagePlan]]]:
+    """Return the whole resistance of every mode of an open section."""
+    first = rows[0][1].stage.modes if rows else ()
+    return [
+        measured(
+            f"all_{mode.name.replace(' ', '_')}",
+            mode.name.replace(" ", "\n"),
+            "force",
+            units,
+            partial(_whole_resistance, number=number),
+            keep=5,
+        )
+        for number, mode in enumerate(first)
+    ]
+
+
+def _whole_resistance(row: tuple[CaseDrive, StagePlan], number: int) -> float:
+    return row[1].stage.modes[number].resistance
 
 
 def _plan_of(row: tuple[CaseDrive, StagePlan]) -> StagePlan:
@@ -294,6 +319,9 @@ def _station_document(plan: StagePlan) -> dict[str, Any]:
         "verdict": plan.verdict,
         "shaft_kN": stage.shaft / 1e3,
         "toe_kN": stage.toe / 1e3,
+        "modes": [
+            {"mode": m.name, "shaft_kN": m.shaft / 1e3, "toe_kN": m.toe / 1e3} for m in stage.modes
+        ],
         "stroke_m": number(plan.stroke),
         "set_needed_mm": 1e3 * stage.set_needed,
         "set_mm": number(plan.set, 1e3),

@@ -44,7 +44,7 @@ class Criterion:
     needed : float or None
         Resistance long after driving to be proven; None where the job does not say. [N]
     proving : (strokes,) float64 array or None
-        Set that proves it; NaN where none does. [m]
+        Set that proves it; NaN where none does, or a stress limit breaks. [m]
     """
 
     stage: Stage
@@ -70,7 +70,9 @@ def find_criterion(
     needed = job.drive.capacity if job.drive else None
     if needed is not None:
         multiples.append(needed / _later(stage))
-    stages = tuple(scaled(stage, multiple) for multiple in multiples)
+    stages = tuple(
+        replace(scaled(stage, multiple), name=f"{row}") for row, multiple in enumerate(multiples)
+    )
     rig = Rig(replace(job, stages=stages, hammers=(option.hammer,), drive=None), workers, tell)
     finder = WindowFinder(rig, job_demands(rig).without_set())
     count = finder.strokes[0].size
@@ -89,6 +91,8 @@ def find_criterion(
         worst = np.maximum(struck.compression / limits.compression, struck.tension / limits.tension)
         uses[rows] = worst.reshape(len(rows), at.size)
     later = np.array([_later(one) for one in stages])
+    # A stroke that breaks a limit is none to prove anything with.
+    provable = (sets[-1] > 0) & (uses[-1] <= 1)
     known = slice(0, len(MULTIPLES))
     return Criterion(
         stage=stage,
@@ -99,7 +103,7 @@ def find_criterion(
         sets=sets[known],
         stress_uses=uses[known],
         needed=needed,
-        proving=None if needed is None else np.where(sets[-1] > 0, sets[-1], np.nan),
+        proving=None if needed is None else np.where(provable, sets[-1], np.nan),
     )
 
 
