@@ -137,7 +137,7 @@ _REMEDIES = (
 
 
 def _note_syntax(file: str, text: str, message: str, findings: Findings) -> None:
-    lines = text.split("\n")
+    lines = text.rstrip().split("\n")
     match = re.fullmatch(r"(.*) \(at line (\d+), column (\d+)\)", message, re.DOTALL)
     if match:
         what, line, place = match.group(1), int(match.group(2)), f"column {match.group(3)}"
