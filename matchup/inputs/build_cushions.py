@@ -35,7 +35,7 @@ def check_catalogue(text: JobText, keys: JobKeys, hammers: Sequence[Hammer]) -> 
     if needs:
         path = ("catalog", "cushions")
         do = 'For example `cushions = "cushions.csv"`.'
-        text.wrong(path, f"must be given: {' and '.join(needs)} name materials", do)
+        text.wrong(path, f"must be given for {' and '.join(needs)}", do)
 
 
 def build_cushion_space(

@@ -164,6 +164,8 @@ _SIGNATURES = {
 def decode(file: str, data: bytes, findings: Findings) -> str | None:
     """Return text in UTF-8, UTF-16 or Windows' western code page, or note that it is none."""
     known = next((known for known in _SIGNATURES if data.startswith(known)), None)
+    if _is_garbled(file, data, findings):
+        return None
     for encoding in _encodings(data) if known is None else []:
         try:
             text = data.decode(encoding)
@@ -174,6 +176,27 @@ def decode(file: str, data: bytes, findings: Findings) -> str | None:
     what, do = ("binary data", "") if known is None else _SIGNATURES[known]
     findings.add(file, None, "", "must be a text file", what, do)
     return None
+
+
+_SEVERAL_BYTES = re.compile(
+    rb"[\xc2-\xdf][\x80-\xbf]|[\xe0-\xef][\x80-\xbf]{2}|[\xf0-\xf4][\x80-\xbf]{3}"
+)
+"""A letter of UTF-8; in a text of Windows, an unlikely row of accents and marks."""
+
+
+def _is_garbled(file: str, data: bytes, findings: Findings) -> bool:
+    """Note that a text in UTF-8 has a byte that is none, which would garble all other letters."""
+    try:
+        data.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        if _encodings(data)[0] != "utf-8-sig" or not _SEVERAL_BYTES.search(data):
+            return False
+        line = data[: error.start].count(b"\n") + 1
+        found = f"the byte {data[error.start]:#04x} among letters of UTF-8"
+        do = "Type the line again, and save the file as UTF-8."
+        findings.add(file, line, "", "must be text in one encoding", found, do)
+        return True
+    return False
 
 
 def _encodings(data: bytes) -> list[str]:

@@ -127,6 +127,16 @@ def test_what_is_no_table_is_said_to_be_none(tmp_path, data, must, found, do):
     assert do in problem.do
 
 
+def test_a_stray_byte_in_utf_8_does_not_garble_the_rest(tmp_path):
+    path = tmp_path / "t.csv"
+    path.write_bytes("name,x\nMüller,1\nMa".encode() + b"\xfcer,2\n")
+    table, [problem] = read(path)
+    assert table is None
+    assert (problem.line, problem.must) == (3, "must be text in one encoding")
+    assert problem.found == "the byte 0xfc among letters of UTF-8"
+    assert "UTF-8" in problem.do
+
+
 @pytest.mark.parametrize(
     ("body", "line"),
     [('a,b\n1,"2\n3,4\n', 2), ('a,b\n1,2\n"3"x,4\n', 3)],
