@@ -6,11 +6,11 @@ import os
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from matchup.errors import ModelError
 from matchup.inputs.cushions import CushionCatalogue, read_cushions
 from matchup.inputs.findings import Findings
 from matchup.inputs.hammers import read_hammers
 from matchup.inputs.job_text import JobText, read_job_text
+from matchup.inputs.table import file_fault
 from matchup.model.job import Job
 
 if TYPE_CHECKING:
@@ -32,20 +32,25 @@ def load_job(path: str | os.PathLike[str]) -> Job:
     """
     findings = Findings()
     text = read_job_text(Path(path), findings)
-    if text is None:
-        findings.close()
-        raise AssertionError("a file that can't be read has problems")
+    findings.close()
+    assert text is not None
     from matchup.inputs.job_keys import read_keys
 
     return _build(text, read_keys(text), findings)
 
 
-def _catalogue(text: JobText, keys: JobKeys, findings: Findings) -> CushionCatalogue | None:
-    """Return the cushion catalogue; None where the job names none."""
-    if text.is_unread("catalog", "cushions"):
-        return CushionCatalogue(complete=False)
-    named = keys.catalog.cushions
-    return None if named is None else read_cushions(text.folder / named, findings)
+def _catalogue_file(text: JobText, key: str, named: str | None) -> Path | None:
+    """Return the path of a catalogue, or note on its key why there is none to read."""
+    if named is None or text.is_unread("catalog", key):
+        return None
+    path = text.folder / named
+    fault = file_fault(path)
+    if fault is None:
+        return path
+    typed = text.typed(("catalog", key))
+    found = f"{typed}, {fault.found}" if fault.found else typed
+    text.wrong(("catalog", key), fault.must, fault.do, found)
+    return None
 
 
 def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
@@ -57,13 +62,11 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     stages = build_stages.build_stages(text, keys, pile)
     analysis, search = build_stages.build_settings(text, keys)
 
-    catalogue = _catalogue(text, keys, findings)
-    unread = text.is_unread("catalog", "hammers")
-    hammers = (
-        () if unread else read_hammers(text.folder / keys.catalog.hammers, catalogue, findings)
-    )
+    cushions = _catalogue_file(text, "cushions", keys.catalog.cushions)
+    known = read_cushions(cushions, findings) if cushions else CushionCatalogue(complete=False)
+    file = _catalogue_file(text, "hammers", keys.catalog.hammers)
+    hammers = read_hammers(file, known if cushions else None, findings) if file else ()
     build_cushions.check_catalogue(text, keys, hammers)
-    known = catalogue or CushionCatalogue(complete=False)
     space = build_cushions.build_cushion_space(text, keys, pile, known)
     others = build_cushions.build_hammer_cushions(text, keys, known)
     hammers = build_cushions.with_helmets(text, keys, hammers)
@@ -72,22 +75,17 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     assert limits is not None
     assert stages is not None
     assert search is not None
-    try:
-        return Job(
-            title=keys.title,
-            hammers=hammers,
-            pile=pile,
-            cushions=space,
-            stages=stages,
-            limits=limits,
-            hammer_cushions=others,
-            search=search,
-            analysis=analysis,
-            display=keys.display,
-            file=text.file,
-            notices=tuple(findings.notices),
-        )
-    except ModelError as error:
-        text.wrong_model(error, ())
-        findings.close()
-        raise
+    return Job(
+        title=keys.title,
+        hammers=hammers,
+        pile=pile,
+        cushions=space,
+        stages=stages,
+        limits=limits,
+        hammer_cushions=others,
+        search=search,
+        analysis=analysis,
+        display=keys.display,
+        file=text.file,
+        notices=tuple(findings.notices),
+    )

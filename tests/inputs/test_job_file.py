@@ -174,6 +174,14 @@ def test_a_sound_job(desk):
             "`too`",
             "Did you mean `to`?",
         ),
+        (
+            SHEETS,
+            'thickness = { rom = "80 mm", to = "90 mm" }',
+            "pile_cushion.thickness.rom",
+            "must be a known key",
+            "`rom`",
+            "Did you mean `from`?",
+        ),
         # Ranges.
         (
             SHEETS,
@@ -646,7 +654,7 @@ def test_files_that_are_no_job(desk, data, must, found):
 
 def test_files_that_can_not_be_had(desk):
     for path, must, found in (
-        ("jbo.toml", "must be a file that exists; there is none of this name", ""),
+        ("jbo.toml", "must be a file that exists", ""),
         (".", "must be a file", "a folder"),
     ):
         desk.put("job.toml", JOB)
@@ -779,7 +787,21 @@ def test_catalogues_that_can_not_be_had(desk):
     problems = desk.problems(
         replaced(JOB, ('"hammers.csv"', '"x/../hamers.csv"'), ('"cushions.csv"', '""'))
     )
-    assert [(p.file, p.found) for p in problems] == [(".", "a folder"), ("hamers.csv", "")]
+    assert [told(p) for p in problems] == [
+        (
+            "job.toml",
+            3,
+            "catalog.hammers",
+            "must be a file that exists",
+            '"x/../hamers.csv"',
+            "Its folder does not exist either.",
+        ),
+        ("job.toml", 4, "catalog.cushions", "must be a file", '"", a folder', ""),
+    ]
+    problem = desk.problem(replaced(JOB, ('"hammers.csv"', '"hamers.csv"')))
+    assert problem.do == "Did you mean `hammers.csv`?"
+    problem = desk.problem(replaced(JOB, ('"hammers.csv"', r'"a\u0000b"')))
+    assert (problem.place, problem.found) == ("catalog.hammers", r'"a\u0000b"')
 
 
 def test_the_same_problems_as_json(desk):

@@ -241,7 +241,7 @@ def test_files_that_can_not_be_read(tmp_path, monkeypatch):
     assert problem(tmp_path).found == "a folder"
     (tmp_path / "hammers.csv").write_text("x")
     missing = problem(Path("hamers.csv"))
-    assert missing.must == "must be a file that exists; there is none of this name"
+    assert missing.must == "must be a file that exists"
     assert missing.do == "Did you mean `hammers.csv`?"
     assert problem(Path("zzz.csv")).do == "There: hammers.csv."
     assert problem(Path("zzz.xlsx")).do == ""
@@ -275,6 +275,15 @@ def test_paths_are_shown_without_detours(tmp_path, monkeypatch):
     assert shown_path(here / "jobs" / "a.csv") == os.path.join("jobs", "a.csv")
     assert shown_path(tmp_path / "b" / ".." / "a.csv") == str(tmp_path / "a.csv")
     assert shown_path(Path("../a.csv")) == os.path.join("..", "a.csv")
+    assert shown_path(Path("a.csv")) == "a.csv"
     # With a link on the way, `..` leads elsewhere than the letters say.
     (here / "link").symlink_to(tmp_path / "linked" / "deep")
     assert shown_path(Path("link/../a.csv")) == "link/../a.csv"
+
+
+def test_a_path_from_a_folder_that_is_gone_is_shown_as_typed(monkeypatch):
+    def gone() -> str:
+        raise FileNotFoundError
+
+    monkeypatch.setattr(os, "getcwd", gone)
+    assert shown_path(Path("b/../a.csv")) == "b/../a.csv"
