@@ -6,6 +6,7 @@ import os
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from matchup.errors import ModelError
 from matchup.inputs.cushions import CushionCatalogue, read_cushions
 from matchup.inputs.findings import Findings
 from matchup.inputs.hammers import read_hammers

@@ -499,14 +499,6 @@ def test_a_sound_job(desk):
             "`xyz`",
             "Known: objective, reserve, seed.",
         ),
-        (
-            RULE,
-            RULE + '\n[ground]\nprofile = "b.csv"',
-            "ground",
-            "must be a known key",
-            "`ground`",
-            "Ground profiles can't be read yet; give the resistances as [[stages]].",
-        ),
         # Tables in the wrong brackets.
         (
             "[pile]",
@@ -540,7 +532,13 @@ STAGES = JOB[JOB.index("[[stages]]") : JOB.index("[limits]")]
             "[stages]",
             "Write [[stages]] with double brackets, once for each stage.",
         ),
-        ("", None, "must be given", "", "Write [[stages]], and its keys below."),
+        (
+            "",
+            None,
+            "must be given",
+            "",
+            "Write [[stages]], and its keys below, or a [ground] that they follow from.",
+        ),
     ],
 )
 def test_stages_that_are_no_list(desk, stages, line, must, found, do):
@@ -560,7 +558,7 @@ def test_every_missing_table_is_told(desk):
     assert [p.must for p in problems] == ["must hold a job"]
     assert "matchup new" in problems[0].do
     problems = desk.problems("display = 'us'")
-    assert [p.place for p in problems] == ["title", "catalog", "pile", "stages", "limits"]
+    assert [p.place for p in problems] == ["title", "catalog", "pile", "limits", "stages"]
     assert {p.must for p in problems} == {"must be given"}
 
 
