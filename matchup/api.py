@@ -9,6 +9,7 @@ from __future__ import annotations
 import os
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from matchup.analysis.rig import Tell
@@ -25,6 +26,7 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
+from matchup.report.files import figure_kind, write_file
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.options import options_table, schedule_table
@@ -39,6 +41,7 @@ from matchup.units import UnitError, parse_quantity
 
 if TYPE_CHECKING:
     import pandas as pd
+    from matplotlib.figure import Figure
 
 __all__ = [
     "BlowResult",
@@ -66,8 +69,29 @@ class _Shown:
         """Return the result as it is printed, in ``metric`` or ``us`` units or the job's."""
         return page_text(self.page(display), width)
 
+    def figure(self, display: str | None = None) -> Figure:
+        """Return the result as a figure of matplotlib, to be shown, changed or saved."""
+        raise NotImplementedError
+
+    def plot(self, path: str | os.PathLike[str], display: str | None = None) -> None:
+        """Draw the result to a file, as SVG, PNG or PDF by the file's ending.
+
+        Raises
+        ------
+        InputError
+            If the ending is another one, or the file can't be written.
+        """
+        kind = figure_kind(Path(path))
+        from matchup.report.figures.drawing import rendered
+
+        write_file(Path(path), rendered(self.figure(display), kind), "plot")
+
     def _repr_html_(self) -> str:
-        return page_html(self.page())
+        from matchup.report.figures.drawing import rendered
+        from matchup.report.picture import picture_html
+
+        drawn = picture_html(rendered(self.figure(), "svg"), "")
+        return f"{page_html(self.page())}{drawn}"
 
     def __str__(self) -> str:
         return self.to_text()
@@ -102,6 +126,12 @@ class RankingResult(_Shown):
     def page(self, display: str | None = None) -> Page:
         """Return the ranking as blocks of prose and tables."""
         return ranking_page(self.ranking, _units(self.job, display))
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw the trade-off of the hammers that drive, or how near the others come."""
+        from matchup.report.figures.tradeoff import ranking_figure
+
+        return ranking_figure(self.ranking, _units(self.job, display))
 
     def to_frame(self) -> pd.DataFrame:
         """Return every hammer as a row of a tidy data frame, best first.
@@ -142,6 +172,12 @@ class CheckResult(RankingResult):
         """Return the answer as blocks of prose and tables."""
         return check_page(self.ranking, _units(self.job, display))
 
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw how far the hammer is from what is asked of it."""
+        from matchup.report.figures.margins import margins_figure
+
+        return margins_figure((self.option,), self.ranking, _units(self.job, display))
+
     def to_csv(self, display: str | None = None) -> str:
         """Return what the hammer does at every stage as CSV."""
         return schedule_table((self.option,), _units(self.job, display)).to_csv()
@@ -170,6 +206,12 @@ class WindowResult(_Shown):
     def page(self, display: str | None = None) -> Page:
         """Return the map as blocks of prose and a grid."""
         return map_page(self.map, _units(self.map.job, display))
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw where the hammer works in the plane of stroke and cushion."""
+        from matchup.report.figures.window import window_figure
+
+        return window_figure(self.map, _units(self.map.job, display))
 
     def to_frame(self) -> pd.DataFrame:
         """Return every cell as a row of a tidy data frame, in the JSON document's fixed units."""
@@ -200,6 +242,12 @@ class BlowResult(_Shown):
     def page(self, display: str | None = None) -> Page:
         """Return the blow as blocks of prose and a table."""
         return blow_page(self.blow, self.job, _units(self.job, display))
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw the waves of the blow, what the head feels of them, and the stresses."""
+        from matchup.report.figures.blow import blow_figure
+
+        return blow_figure(self.blow, self.job.pile, _units(self.job, display))
 
     def trace_table(self, display: str | None = None) -> Table:
         """Return head and toe against time."""

@@ -40,12 +40,12 @@ WIDTH_IN_NOTEBOOK = 100
 
 def map_page(found: StrokeMap, units: Units) -> Page:
     """Return the map: the answer, the grid, what it rests on."""
-    head = f"{found.hammer.name} at stage {found.stage.name!r}: {_answer(found, units)}."
+    head = f"{found.hammer.name} at stage {found.stage.name!r}: {map_answer(found, units)}."
     grid = _Grid(found, units)
     return [Headline(head), grid, Prose((*basis(found.job, units), CAUTION))]
 
 
-def _answer(found: StrokeMap, units: Units) -> str:
+def map_answer(found: StrokeMap, units: Units) -> str:
     """Return on how many cushions it works, and between which strokes."""
     if not found.is_open:
         return "no stroke works" + (" on any cushion" if len(found.stacks) > 1 else "")
