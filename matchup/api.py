@@ -26,6 +26,13 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
+from matchup.report.driven import (
+    criterion_document,
+    criterion_page,
+    drive_document,
+    drive_page,
+    stations_table,
+)
 from matchup.report.files import figure_kind, write_file
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
@@ -34,6 +41,7 @@ from matchup.report.page import Page, page_html, page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table
+from matchup.search.criterion import Criterion, find_criterion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers
 from matchup.search.stroke_map import StrokeMap, map_strokes
@@ -46,10 +54,12 @@ if TYPE_CHECKING:
 __all__ = [
     "BlowResult",
     "CheckResult",
+    "DriveResult",
     "RankingResult",
     "WindowResult",
     "blow",
     "check",
+    "drive",
     "load_job",
     "rank",
     "window",
@@ -185,6 +195,46 @@ class CheckResult(RankingResult):
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
         return check_document(self.ranking, _units(self.job, display))
+
+
+@dataclass(frozen=True)
+class DriveResult(CheckResult):
+    """The whole drive of one hammer, and whether it reaches the target.
+
+    Parameters
+    ----------
+    case : str or None
+        Whose stations are shown.
+    criterion : Criterion or None
+        The termination criterion, where it was asked for.
+    """
+
+    case: str | None = None
+    criterion: Criterion | None = None
+
+    def page(self, display: str | None = None) -> Page:
+        """Return the drive as blocks of prose and tables."""
+        units = _units(self.job, display)
+        page = list(drive_page(self.ranking, units, self.case))
+        if self.criterion is not None:
+            page[-1:-1] = criterion_page(self.criterion, self.job, units)
+        return page
+
+    def to_frame(self) -> pd.DataFrame:
+        """Return every station of every case as a row, in the JSON document's fixed units."""
+        import pandas as pd
+
+        return pd.DataFrame(self.to_dict()["stations"])
+
+    def to_csv(self, display: str | None = None) -> str:
+        """Return every station of every case as CSV."""
+        return stations_table(self.option.cases, _units(self.job, display)).to_csv()
+
+    def to_dict(self, display: str | None = None) -> dict[str, Any]:
+        """Return the JSON document as plain data; `display` changes its sentences alone."""
+        document = drive_document(self.ranking, _units(self.job, display))
+        told = None if self.criterion is None else criterion_document(self.criterion)
+        return document | {"criterion": told}
 
 
 @dataclass(frozen=True)
@@ -351,11 +401,70 @@ def check(
     return CheckResult(rank_hammers(alone, workers, tell))
 
 
+def drive(
+    job: JobLike,
+    hammer: str | None = None,
+    workers: int | None = None,
+    tell: Tell | None = None,
+    *,
+    cushion: str | None = None,
+    sheets: int | None = None,
+    thickness: float | str | None = None,
+    hammer_cushion: str | None = None,
+    case: str | None = None,
+    criterion: bool = False,
+) -> DriveResult:
+    """Predict the whole drive of one hammer, station by station in every ground case.
+
+    Parameters
+    ----------
+    job : Job or path
+        With a ``[ground]``.
+    hammer : str or None
+        Name; may be left out where the job has one hammer.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+    cushion, sheets, thickness, hammer_cushion
+        The cushions to drive with, as for `blow`; where none is named, the best are looked for.
+    case : str or None
+        Whose stations are shown; the answer is about all required ones.
+    criterion : bool
+        Add the termination criterion: which set at which stroke proves which resistance.
+
+    Raises
+    ------
+    InputError
+        If the job or the selection has problems, or the job has no ``[ground]``.
+    """
+    job = _job(job)
+    problems: list[Problem] = []
+    if job.drive is None:
+        must = "must have a [ground], whose stages make a whole drive"
+        problems.append(Problem(job.file, None, "ground", must, "", "`check` answers for stages."))
+    known = [course.case for course in job.courses]
+    if job.drive is not None and case is not None and case not in known:
+        must = f"must be a case of the job: {', '.join(known)}"
+        problems.append(Problem(None, None, "case", must, case))
+    thickness = _quantity(thickness, "thickness", "thickness", problems)
+    selection = Selection(hammer, None, cushion, sheets, thickness, None, hammer_cushion)
+    alone = _with_selected(job, selection, problems)
+    ranking = rank_hammers(alone, workers, tell)
+    proof = None
+    if criterion and ranking.options:
+        proof = find_criterion(alone, ranking.options[0], workers, tell)
+    return DriveResult(ranking, case, proof)
+
+
 def window(
     job: JobLike,
     hammer: str | None = None,
     stage: str | None = None,
     workers: int | None = None,
+    tell: Tell | None = None,
+    *,
+    every_stage: bool = False,
 ) -> WindowResult:
     """Map stroke against cushion for one hammer: where it works, and what stops it.
 
@@ -366,6 +475,10 @@ def window(
         Names; the stage that is not named is the target.
     workers : int or None
         Threads; None takes as many as there are processors.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+    every_stage : bool
+        Show where a stroke works at every stage, of every required ground case.
 
     Raises
     ------
@@ -373,7 +486,11 @@ def window(
         If the job or the selection has problems.
     """
     job = _job(job)
-    return WindowResult(map_strokes(job, *select_cell(job, hammer, stage), workers))
+    chosen, at = select_cell(job, hammer, stage)
+    if every_stage and stage is not None:
+        must = "must be left out where every stage is looked at"
+        raise InputError([Problem(None, None, "stage", must, stage)])
+    return WindowResult(map_strokes(job, chosen, None if every_stage else at, workers, tell))
 
 
 def blow(
@@ -425,6 +542,33 @@ def blow(
 
 def _job(job: JobLike) -> Job:
     return job if isinstance(job, Job) else load_job(job)
+
+
+def _with_selected(job: Job, selection: Selection, problems: list[Problem]) -> Job:
+    """Return the job with the named hammer alone, and the cushions where some are named."""
+    try:
+        hammer = select_hammer(job, selection.hammer)
+        named = (selection.material, selection.sheets, selection.thickness)
+        cushions, others = job.cushions, job.hammer_cushions
+        if any(value is not None for value in named):
+            only = replace(selection, hammer_cushion=others[0].text if others else None)
+            chosen = select(job, only).stack.pile
+            assert chosen is not None
+            assert cushions is not None
+            cushions = cushions.holding(chosen)
+        if selection.hammer_cushion is not None:
+            any_pile = replace(job, cushions=None)
+            picked = select(
+                any_pile,
+                Selection(selection.hammer, None, None, None, None, None, selection.hammer_cushion),
+            ).stack.hammer
+            assert picked is not None
+            others = (picked,)
+    except InputError as error:
+        raise InputError([*problems, *error.problems]) from None
+    if problems:
+        raise InputError(problems)
+    return replace(job, hammers=(hammer,), cushions=cushions, hammer_cushions=others)
 
 
 def _quantity(

@@ -7,6 +7,7 @@ whitelist can't. Units are read only where files and options are read, and writt
 from __future__ import annotations
 
 import difflib
+import math
 import re
 from typing import NamedTuple
 
@@ -147,6 +148,8 @@ _UNITS: dict[str, dict[str, float]] = {
     "damping": {"s/m": 1.0, "ms/mm": 1.0, "s/ft": 1 / FOOT, "s/in": 1 / INCH},
     "rate": {"1/min": 1 / 60, "blows/min": 1 / 60, "bpm": 1 / 60, "1/s": 1.0, "Hz": 1.0},
     "number": {"-": 1.0, "blows": 1.0, "%": 0.01},
+    "time": {"s": 1.0, "min": 60.0, "h": 3600.0, "d": 86400.0, "hours": 3600.0, "days": 86400.0},
+    "angle": {"deg": math.pi / 180, "rad": 1.0},
 }
 
 
@@ -179,6 +182,8 @@ QUANTITIES = {
     "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft", "0.3"),
     "rate": Quantity("rate", "1/min", "1/min", "1/min", "40"),
     "number": Quantity("number", "-", "-", "-", "0.85"),
+    "time": Quantity("time", "h", "h", "min, h or d", "12"),
+    "angle": Quantity("angle", "deg", "deg", "deg", "29"),
 }
 
 LARGEST = 1e30

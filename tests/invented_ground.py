@@ -43,11 +43,11 @@ class Soil(NamedTuple):
 
 
 GROUND = (
-    Soil(1.0, 3.0, 2.0, 0.010, 0.20, 0.00, "sand,18,loose,,,"),
-    Soil(9.0, 0.26, 0.60, 0.030, 0.05, 0.45, "clay,16,,14,34,1.2"),
-    Soil(15.5, 5.5, 8.5, 0.007, 0.12, 0.00, "sand,19.5,medium dense,,,"),
-    Soil(18.0, 19.0, 22.0, 0.008, 0.10, -0.002, "sand,20.5,dense,,,"),
-    Soil(END, 10.0, 14.0, 0.008, 0.14, 0.00, "sand,20,medium dense,,,"),
+    Soil(1.0, 3.0, 2.0, 0.010, 0.20, 0.00, "sand,18,,,,,10,1"),
+    Soil(9.0, 0.26, 0.60, 0.030, 0.05, 0.45, "clay,16,,14,34,1.2,,"),
+    Soil(15.5, 5.5, 8.5, 0.007, 0.12, 0.00, "sand,19.5,medium dense,,,,,"),
+    Soil(18.0, 19.0, 22.0, 0.008, 0.10, -0.002, "sand,20.5,dense,,,,,"),
+    Soil(END, 10.0, 14.0, 0.008, 0.14, 0.00, "sand,20,medium dense,,,,,"),
 )
 
 
@@ -170,7 +170,7 @@ def layers() -> str:
     """Return the layers as the text of a CSV file; the last is a little deeper than the test."""
     lines = [
         "top [m],bottom [m],soil,unit_weight [kN/m3],density,strength [kPa],"
-        "strength_bottom [kPa],ocr [-],water [m],remark"
+        "strength_bottom [kPa],ocr [-],unit_shaft [kPa],unit_toe [MPa],water [m],remark"
     ]
     borders = [0.0, *(soil.bottom for soil in GROUND[:-1]), END + 2]
     for number, ((top, bottom), soil) in enumerate(zip(pairwise(borders), GROUND, strict=True)):

@@ -66,6 +66,13 @@ NAMES = {
     "-": "dimensionless",
     "blows": "dimensionless",
     "%": "percent",
+    "min": "minute",
+    "h": "hour",
+    "hours": "hour",
+    "d": "day",
+    "days": "day",
+    "deg": "degree",
+    "rad": "radian",
 }
 """Our spellings that `pint` reads otherwise, or does not read, by the name that it knows."""
 
@@ -83,6 +90,8 @@ SI = {
     "rate": "1/second",
     "number": "dimensionless",
     "unit weight": "newton/meter**3",
+    "time": "second",
+    "angle": "radian",
 }
 WEIGHTS = {"mass": "newton", "density": "newton/meter**3"}
 """What stands for a mass through standard gravity."""

@@ -18,7 +18,7 @@ from matchup.wave.record import record
 LONGEST_BLOW = 2.0
 """A blow that has not come to rest by then is an error. [s]"""
 AUDIT_LIMIT = 0.02
-"""Largest energy unaccounted for over the ram's energy; beyond it a blow is an error. [-]"""
+"""Largest energy unaccounted for over that put in; beyond it a blow is an error. [-]"""
 GROUPS_PER_TASK = 8
 _AT = {name: column for column, name in enumerate(COLUMNS)}
 
@@ -60,7 +60,7 @@ class Struck:
     transferred : (blows,) float64 array
         Largest work done on the pile head. [J]
     balance : (blows,) float64 array
-        Energy unaccounted for over the ram's energy at impact. [-]
+        Energy unaccounted for over that put in by ram and gravity. [-]
     sound : (blows,) bool array
         Whether the blow ended, stayed finite and passed its energy audit.
     raw : (blows, columns) float64 array
@@ -89,7 +89,7 @@ class Struck:
         if status != ENDED:
             return f"the blow had not come to rest after {LONGEST_BLOW:g} s"
         return (
-            f"the energy audit is off by {100 * self.balance[row]:.1f} % of the ram's energy, "
+            f"the energy audit is off by {100 * self.balance[row]:.1f} % of the energy put in, "
             f"more than {100 * AUDIT_LIMIT:g} %"
         )
 

@@ -101,7 +101,7 @@ class Blow:
     ram_velocity : float
         Of the ram at the end, negative upwards. [m/s]
     balance : float
-        Energy unaccounted for over the ram's energy at impact. [-]
+        Energy unaccounted for over that put in by ram and gravity. [-]
     segments : int
     time_step, duration : float
         [s]

@@ -33,6 +33,7 @@ app = App(
 app.command("matchup.cli.rank:rank", help="Rank every hammer of the job's catalogue.")
 app.command("matchup.cli.check:check", help="Can this hammer drive this pile, and if not, why?")
 app.command("matchup.cli.window:window", help="Stroke against cushion: where it works.")
+app.command("matchup.cli.drive:drive", help="The whole drive by depth, in every ground case.")
 app.command("matchup.cli.blow:blow", help="Compute one blow in detail.")
 app.command("matchup.cli.new:new", help="Write a starter job with catalogues.")
 app.command("matchup.cli.lint:lint", help="Check job files and catalogues.")

@@ -21,7 +21,7 @@ from matchup.ground import (
 )
 from matchup.ground.basis import Choices, Ground, Missing, Task
 from matchup.ground.nodes import TOE_NOTE
-from matchup.ground.soil import TABLE_SOURCE, Pair
+from matchup.ground.soil import Pair, pair_source
 from matchup.ground.unit import UnitResistance
 from matchup.model.pile import Section
 from matchup.model.sounding import FloatArray
@@ -69,7 +69,7 @@ class Method:
     @property
     def pair_source(self) -> str:
         """Where its quakes and damping come from."""
-        return self.pair.source if self.pair else f"tables by soil, {TABLE_SOURCE}"
+        return "as companion" if self.toe else pair_source(self.pair)
 
 
 _ALL = (

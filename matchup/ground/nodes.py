@@ -15,6 +15,7 @@ from matchup.ground.soil import (
     Flags,
     Own,
     Pair,
+    pair_note,
     setup_factors,
     shaft_dampings,
     shaft_quakes,
@@ -238,7 +239,7 @@ def assembled(
         toe_dampings(soil, own, pair),
         static,
         np.ones(task.tips.size),
-        (*notes, *_inside_note(task, faces), TOE_NOTE),
+        (*notes, *_inside_note(task, faces), TOE_NOTE, pair_note(pair)),
     )
 
 

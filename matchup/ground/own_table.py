@@ -3,7 +3,7 @@
 The whole shaft and toe resistances are read off the table. Where along the shaft it acts follows
 from how it grows: what a step of penetration adds acts along that step, and where the table
 shrinks, nothing is added and all above shrinks alike. With layers, set-up and damping come from
-these; without, the soil counts as sand, and set-up must be in the table.
+these; without, the soil counts as dense sand, and set-up is known only if the table states it.
 """
 
 from __future__ import annotations
@@ -14,6 +14,7 @@ from matchup.errors import Fault, ModelError
 from matchup.ground.basis import Choices, Ground, Task
 from matchup.ground.nodes import Nodes, nodes_in, nothing_stated
 from matchup.ground.soil import (
+    pair_note,
     setup_factors,
     shaft_dampings,
     shaft_quakes,
@@ -81,13 +82,15 @@ def resistance(task: Task) -> UnitResistance:
     quake = toe_quakes(soil, nodes.hard[under], own, None, wide)
     toe = np.interp(task.tips, table.depth, column.toe)
     one, none = np.ones(nodes.depth.size), np.zeros(nodes.depth.size)
-    stated = task.ground.profile is not None
+    notes = [pair_note(None)]
+    if task.ground.profile is None:
+        notes.append("damping and toe quake as in dense sand: assumed")
     return UnitResistance(
         nodes.depth,
         intensity,
         intensity,
         none,
-        setup_factors(nodes.soil, nodes.own) if table.setup is None else table.setup * one,
+        _setup(task, nodes),
         shaft_quakes(nodes.own, None),
         shaft_dampings(nodes.soil, nodes.own, None),
         task.tips,
@@ -95,8 +98,17 @@ def resistance(task: Task) -> UnitResistance:
         toe_dampings(soil, own, None),
         table.kind == "static",
         scale,
-        () if stated else ("damping and toe quake as in dense sand: assumed",),
+        tuple(notes),
     )
+
+
+def _setup(task: Task, nodes: Nodes) -> FloatArray:
+    """Return setup factors of the table, else of the layers, else NaN, (n,) [-]."""
+    assert task.ground.table is not None
+    stated = task.ground.table.setup
+    if stated is None and task.ground.profile is not None:
+        return setup_factors(nodes.soil, nodes.own)
+    return np.full(nodes.depth.size, np.nan if stated is None else stated)
 
 
 def _cells(task: Task, edges: FloatArray, grown: FloatArray) -> tuple[Nodes, FloatArray]:

@@ -126,6 +126,16 @@ class Pair(NamedTuple):
     source: str
 
 
+def pair_source(pair: Pair | None) -> str:
+    """Return where quakes and damping come from."""
+    return pair.source if pair else f"tables by soil, {TABLE_SOURCE}"
+
+
+def pair_note(pair: Pair | None) -> str:
+    """Return where quakes and damping come from, and how they vary, as a note."""
+    return f"quakes and damping: {pair_source(pair)}; along the shaft the mean by resistance"
+
+
 class Own(NamedTuple):
     """What layers state of themselves, NaN where they don't: (n,) float64 arrays."""
 

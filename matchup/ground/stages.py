@@ -5,6 +5,7 @@ ground, method, pile, penetrations, cases -> UnitResistance -> Stage, one for ea
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 from itertools import groupby
@@ -13,6 +14,7 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
+from matchup.errors import Fault, ModelError
 from matchup.ground.basis import Choices, Ground, Task
 from matchup.ground.cases import DEFAULT_CASES, Case, Loosened, Pause
 from matchup.ground.methods import Method, method_named, unit_resistance
@@ -22,7 +24,7 @@ from matchup.ground.unit import Mode, UnitResistance
 from matchup.model.pile import Pile
 from matchup.model.rules import Rules
 from matchup.model.sounding import FloatArray
-from matchup.model.stage import Stage
+from matchup.model.stage import Stage, StageMode
 
 SHAPE_TIPS = 4
 """The shaft's shape keeps the nodes that it needs at about so many penetrations."""
@@ -118,6 +120,9 @@ def resistance_stages(
     for bound in dict.fromkeys(case.bound_asked for case in cases):
         task = Task(ground, pile.section, tips, choices or Choices(), bound)
         unit = unit_resistance(chosen, task)
+        if pauses and np.isnan(unit.setup).any():
+            must = "must be given in the table, or layers: in a pause the shaft gains by it"
+            raise ModelError("pause", [Fault("table.setup", must, "nothing")])
         for part in loosened:
             unit = unit.loosened(part.to, part.share)
         drives[bound] = _Drive(unit, law or SetupLaw(), _notes(unit, chosen, loosened))
@@ -168,6 +173,7 @@ class _Shaft(NamedTuple):
     inner: float
     quake: float
     damping: float
+    setup: float
     depth: FloatArray
     intensity: FloatArray
 
@@ -211,6 +217,9 @@ class _Drive:
             toe_damping=float(unit.toe_damping[row]),
             shaft_shape=self._shape(mode, shaft),
             case=case.name,
+            after_pause=elapsed,
+            setup=shaft.setup,
+            modes=_told(modes),
             notes=(*self.notes, *self._moment_notes(case, elapsed, modes, chosen)),
         )
         return GroundStage(stage, case, elapsed, mode.name, modes)
@@ -224,12 +233,11 @@ class _Drive:
             outer = float(np.trapezoid(stress * mode.outer, cut.depth))
             inner = float(np.trapezoid(stress * mode.inner, cut.depth))
             intensity = stress * (mode.outer + mode.inner)
-            # Without resistance there is nothing to weight by, and any value does.
-            weight = intensity if outer + inner > 0 else np.ones(cut.depth.size)
-            whole = np.trapezoid(weight, cut.depth)
-            quake = float(np.trapezoid(weight * cut.shaft_quake, cut.depth) / whole)
-            damping = float(np.trapezoid(weight * cut.shaft_damping, cut.depth) / whole)
-            made.append(_Shaft(outer, inner, quake, damping, cut.depth, intensity))
+            quake = _mean(cut.shaft_quake, intensity, cut.depth)
+            damping = _mean(cut.shaft_damping, intensity, cut.depth)
+            gain = self._raised(cut, math.inf) / self._raised(cut, elapsed)
+            setup = max(1.0, _mean(gain, intensity, cut.depth))
+            made.append(_Shaft(outer, inner, quake, damping, setup, cut.depth, intensity))
         return made
 
     def _raised(self, unit: UnitResistance, elapsed: float) -> FloatArray:
@@ -245,6 +253,8 @@ class _Drive:
         last = shaft.depth.size - 1
         kept = self.kept[mode.name]
         rows = np.append(kept[kept < last], last)
+        if not shaft.intensity[rows].any():  # what little there is was thinned away
+            rows = np.arange(last + 1)
         depth = strictly_deeper(shaft.depth[rows])
         return tuple(zip(depth.tolist(), shaft.intensity[rows].tolist(), strict=True))
 
@@ -254,7 +264,9 @@ class _Drive:
         length = (mode.outer + mode.inner) * self._raised(unit, 0.0)
         some = unit.tips[:: max(unit.tips.size // SHAPE_TIPS, 1)]
         curves = [unit.shaft_at(float(tip)) * length for tip in some]
-        rows = kept_nodes(unit.depth, np.array([*curves, unit.initial * length, unit.setup]))
+        rows = kept_nodes(
+            unit.depth, np.array([*curves, unit.initial * length, np.nan_to_num(unit.setup)])
+        )
         return with_longest(unit.depth, rows)
 
     def _moment_notes(
@@ -271,6 +283,20 @@ class _Drive:
                 f"time from {self.law.start / 3600:g} h to {self.law.end / DAY:g} d; toe unchanged"
             )
         return notes
+
+
+def _mean(values: FloatArray, weight: FloatArray, depth: FloatArray) -> float:
+    """Return the mean along the shaft; where there is no resistance, the plain one."""
+    whole = np.trapezoid(weight, depth)
+    if not whole > 0:
+        return float(values.mean())
+    return float(np.trapezoid(weight * values, depth) / whole)
+
+
+def _told(modes: tuple[ModeResistance, ...]) -> tuple[StageMode, ...]:
+    """Return the modes of a section that has more than one."""
+    told = tuple(StageMode(mode.mode, mode.outer + mode.inner, mode.toe) for mode in modes)
+    return told if len(told) > 1 else ()
 
 
 def _chosen(modes: tuple[ModeResistance, ...], rule: str) -> int:

@@ -21,9 +21,18 @@ from matchup.model.stage import (
 
 def build_stages(text: JobText, keys: JobKeys, pile: Pile | None) -> tuple[Stage, ...] | None:
     """Return the stages, or note what is wrong with them."""
+    if keys.stages is None:
+        do = "Write [[stages]], and its keys below."
+        text.wrong(("stages",), "must be given, or a [ground] that they follow from", do)
+        return None
     if not keys.stages:
         text.wrong(("stages",), "must hold at least one stage")
         return None
+    if keys.target:
+        for key in ("penetration", "set", "load", "safety_factor", "resistance_factor"):
+            if getattr(keys.target, key) is not None:
+                must = "must be left out with [[stages]]: the last of them is the target"
+                text.wrong(("target", key), must)
     _check_names(text, keys)
     made = []
     for place, stage in enumerate(keys.stages):
@@ -33,14 +42,14 @@ def build_stages(text: JobText, keys: JobKeys, pile: Pile | None) -> tuple[Stage
         built = _stage(text, keys, place, stage, pile)
         if built is not None:
             made.append(built)
-    if keys.target and all(stage.set is not None for stage in keys.stages):
+    if keys.target and keys.target.refusal and all(stage.set is not None for stage in keys.stages):
         text.notice(("target", "refusal"), "has no effect: every stage has a `set`")
     return tuple(made) if len(made) == len(keys.stages) else None
 
 
 def _check_names(text: JobText, keys: JobKeys) -> None:
     names: dict[str, int] = {}
-    for place, stage in enumerate(keys.stages):
+    for place, stage in enumerate(keys.stages or ()):
         path = ("stages", place, "name")
         if not stage.name.strip():
             text.wrong(path, "must not be empty")
@@ -89,7 +98,7 @@ def _note_without_effect(text: JobText, place: int, given: StageKeys, pile: Pile
 def _set_needed(keys: JobKeys, given: StageKeys, notes: list[str]) -> float:
     if given.set is not None:
         return given.set
-    if keys.target:
+    if keys.target and keys.target.refusal:
         return keys.target.refusal
     notes.append("refusal set 1.0 mm (248 blows per 250 mm, API RP 2A, second-hand)")
     return REFUSAL_SET

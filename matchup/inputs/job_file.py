@@ -11,7 +11,9 @@ from matchup.inputs.cushions import CushionCatalogue, read_cushions
 from matchup.inputs.findings import Findings
 from matchup.inputs.hammers import read_hammers
 from matchup.inputs.job_text import JobText, read_job_text
-from matchup.model.job import Job
+from matchup.model.job import Drive, Job
+from matchup.model.pile import Pile
+from matchup.model.stage import Stage
 
 if TYPE_CHECKING:
     from matchup.inputs.schema import JobKeys
@@ -48,13 +50,29 @@ def _catalogue(text: JobText, keys: JobKeys, findings: Findings) -> CushionCatal
     return None if named is None else read_cushions(text.folder / named, findings)
 
 
+def _stages(
+    text: JobText, keys: JobKeys, pile: Pile | None, findings: Findings
+) -> tuple[tuple[Stage, ...] | None, Drive | None]:
+    """Return the stages: as given by hand, or from the ground."""
+    if keys.ground is None:
+        from matchup.inputs.build_stages import build_stages
+
+        return build_stages(text, keys, pile), None
+    if keys.stages is not None:
+        must = "must be left out: the stages follow from the [ground]"
+        text.wrong(("stages",), must, "Keep either the [[stages]] or the [ground].")
+    from matchup.inputs.build_ground import build_drive
+
+    return build_drive(text, keys, pile, findings)
+
+
 def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     """Return the job, once every part of it has been looked at."""
     from matchup.inputs import build_cushions, build_pile, build_stages
 
     pile = build_pile.build_pile(text, keys.pile)
     limits = build_pile.build_limits(text, keys, pile)
-    stages = build_stages.build_stages(text, keys, pile)
+    stages, drive = _stages(text, keys, pile, findings)
     analysis, search = build_stages.build_settings(text, keys)
 
     catalogue = _catalogue(text, keys, findings)
@@ -83,6 +101,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             hammer_cushions=others,
             search=search,
             analysis=analysis,
+            drive=drive,
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),

@@ -23,7 +23,6 @@ if TYPE_CHECKING:
     from pydantic_core import ErrorDetails
 
 LATER = {
-    "ground": "Ground profiles can't be read yet; give the resistances as [[stages]].",
     "repeat_blows": "Repeated blows can't be computed yet; leave the key out.",
 }
 """Keys of jobs that this version can't do, with what to do instead."""

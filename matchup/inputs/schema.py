@@ -32,7 +32,7 @@ class OfQuantity:
     quantity: str
 
 
-def _reader(quantity: str, may_be_zero: bool) -> Callable[[Any], float]:
+def _reader(quantity: str, may_be_zero: bool, may_be_negative: bool) -> Callable[[Any], float]:
     def read(value: Any) -> float:
         if value is UNREAD:
             return math.nan
@@ -44,19 +44,21 @@ def _reader(quantity: str, may_be_zero: bool) -> Callable[[Any], float]:
                 f"must be a text with its unit ({kind.examples})", f"Write for example {example}."
             )
         read = parse_quantity(value, quantity)
-        if read < 0 or (read == 0 and not may_be_zero):
+        if not may_be_negative and (read < 0 or (read == 0 and not may_be_zero)):
             raise UnitError("must be >= 0" if may_be_zero else "must be > 0")
         return read
 
     return read
 
 
-def _key(quantity: str, may_be_zero: bool = False) -> tuple[Any, ...]:
-    """Return what makes a number a text with its unit, above zero or at least zero."""
-    sign = "at least 0" if may_be_zero else "above 0"
+def _key(
+    quantity: str, may_be_zero: bool = False, may_be_negative: bool = False
+) -> tuple[Any, ...]:
+    """Return what makes a number a text with its unit, above zero unless it says otherwise."""
+    sign = "of either sign" if may_be_negative else "at least 0" if may_be_zero else "above 0"
     text = f"{quantity} with its unit ({QUANTITIES[quantity].examples}), {sign}"
     return (
-        BeforeValidator(_reader(quantity, may_be_zero)),
+        BeforeValidator(_reader(quantity, may_be_zero, may_be_negative)),
         WithJsonSchema({"type": "string", "description": text}),
         OfQuantity(quantity),
     )
@@ -64,6 +66,7 @@ def _key(quantity: str, may_be_zero: bool = False) -> tuple[Any, ...]:
 
 Length = Annotated[float, *_key("length")]
 Size = Annotated[float, *_key("size")]
+SignedLength = Annotated[float, *_key("length", may_be_negative=True)]
 Thickness = Annotated[float, *_key("thickness")]
 SetPerBlow = Annotated[float, *_key("set")]
 Area = Annotated[float, *_key("area")]
@@ -73,6 +76,9 @@ Stress = Annotated[float, *_key("stress")]
 Prestress = Annotated[float, *_key("stress", may_be_zero=True)]
 Density = Annotated[float, *_key("density")]
 Damping = Annotated[float, *_key("damping", may_be_zero=True)]
+UnitWeight = Annotated[float, *_key("unit weight")]
+Time = Annotated[float, *_key("time")]
+Angle = Annotated[float, *_key("angle")]
 
 SHAPE_OF_SHAFT = 'must be "uniform", "triangular" or rows of depth and intensity'
 SHAPE_EXAMPLE = 'For example [["0 m", 0.2], ["12 m", 1.0]].'
@@ -244,10 +250,62 @@ class StageKeys(Keys):
     toe_damping: Damping | None = None
 
 
-class TargetKeys(Keys):
-    """What stages without a `set` of their own must reach."""
+class LoosenedKeys(Keys):
+    """An upper part of the way that was made easy before driving."""
 
-    refusal: SetPerBlow
+    to: Length
+    share: float
+    how: Literal["pre-drilled", "jetted", "vibrated"] = "pre-drilled"
+
+
+class PauseKeys(Keys):
+    """A stop of the drive: a splice, the end of a shift."""
+
+    penetration: Length
+    lasts: Time
+
+
+Cases = Annotated[
+    Annotated[list[str], Tag("list")] | Annotated[dict[str, float], Tag("range")],
+    _by_form('must be a list like ["low", "best", "high"] or a table like { low = 0.8 }'),
+]
+Plug = Literal["smaller", "larger", "coring", "plugged"]
+
+
+class GroundKeys(Keys):
+    """The ground, from which a method makes the stages; paths are relative to the job file."""
+
+    layers: str | None = None
+    cone_test: str | None = None
+    location: str | None = None
+    table: str | None = None
+    water: SignedLength | None = None
+    unit_weight: UnitWeight | None = None
+    method: str
+    shaft_method: str | None = None
+    faces: Literal["both", "outer"] = "both"
+    interface_angle: Angle | None = None
+    inside: float | None = None
+    start: Length
+    every: Length
+    cases: Cases = ["low", "best", "high"]
+    required: list[str] | None = None
+    plug: dict[str, Plug] = {}
+    loosened: list[LoosenedKeys] = []
+    pauses: list[PauseKeys] = []
+    setup_starts: Time | None = None
+    setup_ends: Time | None = None
+
+
+class TargetKeys(Keys):
+    """What must be reached: of hand-given stages only the refusal set, of a drive all of it."""
+
+    refusal: SetPerBlow | None = None
+    penetration: Length | None = None
+    set: SetPerBlow | None = None
+    load: Force | None = None
+    safety_factor: float | None = None
+    resistance_factor: float | None = None
 
 
 class LimitsKeys(Keys):
@@ -285,7 +343,8 @@ class JobKeys(Keys):
     helmet: HelmetKeys | None = None
     pile_cushion: PileCushionKeys | None = None
     hammer_cushion: HammerCushionKeys | None = None
-    stages: list[StageKeys]
+    stages: list[StageKeys] | None = None
+    ground: GroundKeys | None = None
     target: TargetKeys | None = None
     limits: LimitsKeys
     search: SearchKeys = SearchKeys()

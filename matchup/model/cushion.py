@@ -207,6 +207,12 @@ class CushionSpace:
             )
         rules.close()
 
+    def holding(self, cushion: Cushion) -> CushionSpace:
+        """Return the space with this one cushion."""
+        sheets = () if cushion.sheets is None else (cushion.sheets,)
+        thicknesses = (cushion.thickness,) if cushion.sheets is None else ()
+        return CushionSpace((cushion.material,), sheets, thicknesses, cushion.area, self.wears)
+
     def cushions(self) -> list[Cushion]:
         """Return every cushion of the space: by material, thin to thick."""
         made = []

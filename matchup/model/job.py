@@ -100,9 +100,15 @@ class Drive:
     ----------
     required : tuple of str
         Ground cases that an option must manage; empty means all.
+    capacity : float or None
+        Resistance long after driving that the last set must prove. [N]
+    capacity_text : str
+        How it follows from what the job gives.
     """
 
     required: tuple[str, ...] = ()
+    capacity: float | None = None
+    capacity_text: str = ""
 
 
 @dataclass(frozen=True, slots=True)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass
 from itertools import pairwise
+from typing import NamedTuple
 
 from matchup.model.rules import Rules
 
@@ -22,6 +23,27 @@ TOE_DAMPING = 0.5
 REFUSAL_SET = 0.250 / 248
 """Set of a blow at 248 blows per 250 mm; API RP 2A, as quoted second-hand in Tomlinson and
 Woodward, *Pile Design and Construction Practice*, section 3.1.6. [m]"""
+
+
+class StageMode(NamedTuple):
+    """One way in which a pile may go down, and what it meets then.
+
+    Parameters
+    ----------
+    name : str
+        For example ``coring`` or ``plugged``.
+    shaft, toe : float
+        [N]
+    """
+
+    name: str
+    shaft: float
+    toe: float
+
+    @property
+    def resistance(self) -> float:
+        """Shaft and toe together [N]."""
+        return self.shaft + self.toe
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,6 +70,10 @@ class Stage:
         Ground case; empty for stages given by hand.
     after_pause : float
         Rest before this stage, at the same penetration as the stage before it; zero for none. [s]
+    setup : float
+        Shaft resistance long after driving over the one of this stage. [-]
+    modes : tuple of StageMode
+        Of an open section, every way in which it may go down; one of them gave `shaft` and `toe`.
     notes : tuple of str
         Which values are defaults, and their source.
     """
@@ -64,6 +90,8 @@ class Stage:
     shaft_shape: tuple[tuple[float, float], ...] = ()
     case: str = ""
     after_pause: float = 0.0
+    setup: float = 1.0
+    modes: tuple[StageMode, ...] = ()
     notes: tuple[str, ...] = ()
 
     def __post_init__(self) -> None:
@@ -77,6 +105,9 @@ class Stage:
         rules.not_negative("shaft_damping", self.shaft_damping, "damping")
         rules.not_negative("toe_damping", self.toe_damping, "damping")
         rules.not_negative("after_pause", self.after_pause)
+        rules.must(
+            math.isfinite(self.setup) and self.setup >= 1, "setup", "must be >= 1", self.setup
+        )
         depths = [depth for depth, _ in self.shaft_shape]
         shares = [share for _, share in self.shaft_shape]
         rules.must(

@@ -40,9 +40,15 @@ WIDTH_IN_NOTEBOOK = 100
 
 def map_page(found: StrokeMap, units: Units) -> Page:
     """Return the map: the answer, the grid, what it rests on."""
-    head = f"{found.hammer.name} at stage {found.stage.name!r}: {map_answer(found, units)}."
+    head = f"{map_place(found)}: {map_answer(found, units)}."
     grid = _Grid(found, units)
     return [Headline(head), grid, Prose((*basis(found.job, units), CAUTION))]
+
+
+def map_place(found: StrokeMap) -> str:
+    """Return which hammer the map is of, and where."""
+    where = "at every stage" if found.everywhere else f"at stage {found.stage.name!r}"
+    return f"{found.hammer.name} {where}"
 
 
 def map_answer(found: StrokeMap, units: Units) -> str:
@@ -127,6 +133,7 @@ def map_table(found: StrokeMap, units: Units) -> Table:
         Column("cushion", "cushion"),
         Column(units.key("stroke", "stroke"), "stroke", 3),
         Column("state", "state"),
+        Column("closed_at", "closed at"),
         Column(units.key("set", "set"), "set", 3),
         Column("compression_percent", "compression", 1),
         Column("tension_percent", "tension", 1),
@@ -136,6 +143,7 @@ def map_table(found: StrokeMap, units: Units) -> Table:
             _label(stack, units),
             units.value(float(stroke), "stroke"),
             found.states[row][column],
+            found.closed_at[row][column] or None,
             units.value(float(found.sets[row, column]), "set"),
             percent(float(found.compression_uses[row, column])),
             percent(float(found.tension_uses[row, column])),
@@ -154,6 +162,7 @@ def map_document(found: StrokeMap) -> dict[str, Any]:
             "hammer_cushion": stack.hammer.text if stack.hammer else found.hammer.cushion_text,
             "stroke_m": float(stroke),
             "state": found.states[row][column],
+            "closed_at": found.closed_at[row][column] or None,
             "set_mm": number(float(found.sets[row, column]), 1e3),
             "blows_per_25cm": _count(float(found.sets[row, column])),
             "compression_use": number(float(found.compression_uses[row, column])),
@@ -168,6 +177,7 @@ def map_document(found: StrokeMap) -> dict[str, Any]:
         "hammer": found.hammer.name,
         "stage": found.stage.name,
         "case": found.stage.case or None,
+        "every_stage": found.everywhere,
         "set_needed_mm": 1e3 * found.stage.set_needed,
         "limits": limits_document(found.job),
         "open": found.is_open,

@@ -65,7 +65,7 @@ def _figures(blow: Blow, units: Units) -> Table:
         (
             "energy audit",
             f"{100 * abs(blow.balance):.2f}%",
-            "unaccounted for, of the ram's energy at impact",
+            "unaccounted for, of the energy put in by ram and gravity",
         ),
         (
             "computed with",

@@ -32,26 +32,32 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
         (VERDICT, lambda o: o.verdict),
         (Column("hammer", "hammer", wrap=14), lambda o: o.hammer.name),
     ]
-    if objective == "time":
+    if any(option.cases for option in options):
+        fields += [
+            (Column("minutes", "min", 0), lambda o: _whole(o, "seconds", 1 / 60)),
+            (Column("blows", "blows", 0), lambda o: _whole(o, "blows")),
+        ]
+    elif objective == "time":
         speed = Column(units.speed_key, f"speed\n{units.speed_unit}", 2)
         fields.append((speed, lambda o: units.speed(o.target.speed)))
     fields += [
-        _measured("stroke", "stroke", "stroke", units, lambda o: o.target.stroke),
+        measured("stroke", "stroke", "stroke", units, lambda o: o.target.stroke),
         (Column("cushion", "pile\ncushion", wrap=12), lambda o: units.cushion(o.stack.pile)),
     ]
     if any(option.stack.hammer for option in options):
         cushion = Column("hammer_cushion", "hammer\ncushion", wrap=12)
         fields.append((cushion, lambda o: _hammer_cushion(o, units)))
     fields += [
-        _measured("set", "set", "set", units, lambda o: o.target.set),
-        (_blow_count(units), lambda o: units.blow_count(o.target.set)),
-        _measured("blow_energy", "energy", "energy", units, lambda o: o.target.blow_energy),
+        measured("set", "set", "set", units, lambda o: o.target.set),
+        (blow_count(units), lambda o: units.blow_count(o.target.set)),
+        measured("blow_energy", "energy", "energy", units, lambda o: o.target.blow_energy),
         (
             Column("compression_percent", "compr.\n% of\nlimit", 0),
             lambda o: percent(o.compression_use),
         ),
         (Column("tension_percent", "tension\n% of\nlimit", 0), lambda o: percent(o.tension_use)),
         (GOVERNS, lambda o: o.governs),
+        *_where(options, units),
         (_window(units, keep=2), lambda o: _range(o.target, units)),
         (Column("reach", "reach", 2, keep=4), _reach),
         (Column("blows_per_minute", "blows\n/min", 0, keep=1), lambda o: _rate(o.target)),
@@ -59,12 +65,34 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
     return tabled(options, fields)
 
 
+def _whole(option: Option, what: str, scale: float = 1.0) -> float | None:
+    """Return blows or seconds of the whole drive, in the required case that takes the most."""
+    taken = None if option.slowest is None or not option.drives else option.slowest.taken
+    value = None if taken is None else getattr(taken, what)
+    return None if value is None else scale * value
+
+
+def _where(options: Sequence[Option], units: Units) -> list[Field[Option]]:
+    """Return, for whole drives, the station and case with the largest use of a stress limit."""
+    if not any(option.cases for option in options):
+        return []
+    text = Column("most_stressed", "most stress at", keep=3)
+
+    def shown(option: Option) -> str | None:
+        plan = option.tightest
+        if plan is None:
+            return None
+        return f"{units.text(plan.stage.penetration, 'length')}, {plan.stage.case}"
+
+    return [(text, shown)]
+
+
 def schedule_table(options: Sequence[Option], units: Units) -> Table:
     """Return what options do at every stage."""
     fields: list[Field[tuple[Option, StagePlan]]] = [
         (Column("hammer", "hammer", wrap=14, once=True), lambda row: row[0].hammer.name),
         (Column("stage", "stage", wrap=18), lambda row: row[1].stage.name),
-        _measured(
+        measured(
             "penetration",
             "penetration",
             "length",
@@ -72,26 +100,26 @@ def schedule_table(options: Sequence[Option], units: Units) -> Table:
             lambda row: row[1].stage.penetration,
             keep=1,
         ),
-        _measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
+        measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
         (_window(units), lambda row: _range(row[1], units)),
-        _measured("set", "set", "set", units, lambda row: row[1].set),
-        _measured("set_needed", "needed", "set", units, lambda row: row[1].stage.set_needed),
-        (_blow_count(units), lambda row: units.blow_count(row[1].set)),
-        (
-            Column("compression_percent", "compr.\n% limit", 0),
-            lambda row: percent(row[1].compression_use),
-        ),
-        (Column("tension_percent", "tension\n% limit", 0), lambda row: percent(row[1].tension_use)),
+        measured("set", "set", "set", units, lambda row: row[1].set),
+        measured("set_needed", "needed", "set", units, lambda row: row[1].stage.set_needed),
+        (blow_count(units), lambda row: units.blow_count(row[1].set)),
+        *stress_shares(_plan_of),
     ]
     return tabled([(option, plan) for option in options for plan in option.plans], fields)
 
 
-def _measured(
+def _plan_of(row: tuple[Option, StagePlan]) -> StagePlan:
+    return row[1]
+
+
+def measured(
     key: str,
     header: str,
     quantity: str,
     units: Units,
-    of: Callable[[Row], float],
+    of: Callable[[Row], float | None],
     keep: int = 9,
 ) -> Field[Row]:
     """Return a column of values of one quantity, with the usual decimals."""
@@ -104,7 +132,22 @@ def _measured(
     return column, lambda row: units.value(of(row), quantity)
 
 
-def _blow_count(units: Units) -> Column:
+def stress_shares(of: Callable[[Row], StagePlan]) -> tuple[Field[Row], Field[Row]]:
+    """Return the columns of both stresses as shares of their limits."""
+    return (
+        (
+            Column("compression_percent", "compr.\n% limit", 0),
+            lambda row: percent(of(row).compression_use),
+        ),
+        (
+            Column("tension_percent", "tension\n% limit", 0),
+            lambda row: percent(of(row).tension_use),
+        ),
+    )
+
+
+def blow_count(units: Units) -> Column:
+    """Return the column of blows per 25 cm or per foot."""
     counted = units.counted
     return Column(f"blows_per_{counted.replace(' ', '')}", f"blows\n/{counted}", 0)
 

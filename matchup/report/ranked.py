@@ -32,7 +32,7 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
     best = ranking.options[:SCHEDULES_SHOWN]
     if best:
         page.append(options_table(ranking.options, units, objective))
-    if best and len(job.stages) > 1:
+    if best and len(job.stages) > 1 and job.drive is None:
         which = f" of the best {len(best)}" if len(best) > 1 else ""
         page += [Headline(f"Stroke schedule{which}:"), schedule_table(best, units)]
     softer = [softer_sentence(option, objective, units) for option in best if option.runner_up]
@@ -41,14 +41,14 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
     if ranking.rejected:
         lines = tuple(_answer(option, job, units) for option in ranking.rejected)
         page.append(Prose(lines, "Hammers that can't, nearest miss first:"))
-    return [*page, _foot(ranking, units)]
+    return [*page, foot(ranking, units)]
 
 
 def _answer(option: Option, job: Job, units: Units) -> str:
     return f"{option.hammer.name}: {option.verdict}; {reason(option, job, units)}."
 
 
-def _foot(ranking: Ranking, units: Units) -> Prose:
+def foot(ranking: Ranking, units: Units) -> Prose:
     """Return what an answer rests on, how it was found, and the caution."""
     everyone = (*ranking.options, *ranking.rejected)
     reach = [REACH] if any(option.reach is not None for option in everyone) else []
@@ -64,8 +64,8 @@ def check_page(ranking: Ranking, units: Units) -> Page:
         Headline(f"{can}: {option.hammer.name} {option.verdict}; {reason(option, job, units)}."),
         margins_table(option, ranking, units),
     ]
-    if len(job.stages) > 1 and option.drives:
+    if len(job.stages) > 1 and option.drives and job.drive is None:
         page.append(schedule_table((option,), units))
     if option.runner_up is not None:
         page.append(Prose((softer_sentence(option, job.search.objective, units),)))
-    return [*page, _foot(ranking, units)]
+    return [*page, foot(ranking, units)]

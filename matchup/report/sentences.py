@@ -26,6 +26,8 @@ CAUTION = (
     "A screening aid: confirm by trial driving and dynamic testing; local codes and the licensed "
     "engineer in charge decide."
 )
+STAGES_NAMED = 4
+"""Of more stages with a reduced stroke, only the number is told."""
 SHORT_OF_SET = (NOT_REACHED, REFUSES)
 
 
@@ -42,6 +44,10 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
     if ranking.job.search.objective == "time":
         objective, speed = "fastest", units.speed(plan.speed)
         figure = "its blow rate not known" if speed is None else f"{speed:.2f} {units.speed_unit}"
+    if best.slowest is not None:
+        taken = best.slowest.taken
+        figure += f", {taken.blows:.0f} blows"
+        figure += "" if taken.seconds is None else f" in {taken.seconds / 60:.0f} min"
     return (
         f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
         f"{units.text(plan.stroke, 'stroke')}{on_stack(best.stack, units)}, {figure}."
@@ -146,12 +152,12 @@ def _held_back(option: Option, units: Units) -> str:
     """Return the stages whose stroke must stay below the target's, in words."""
     if option.verdict != REDUCED:
         return ""
-    held = [
-        f"{units.text(plan.stroke, 'stroke')} at {plan.stage.name!r}"
-        for plan in option.plans
-        if plan.stroke < option.target.stroke
-    ]
-    return f"; stroke kept to {', '.join(held)}"
+    held = [plan for plan in option.plans if plan.stroke < option.target.stroke]
+    if len(held) > STAGES_NAMED:
+        low, high = (units.text(f(p.stroke for p in held), "stroke") for f in (min, max))
+        return f"; stroke kept to {low} to {high} at {len(held)} of {len(option.plans)} stages"
+    named = [f"{units.text(plan.stroke, 'stroke')} at {plan.stage.name!r}" for plan in held]
+    return f"; stroke kept to {', '.join(named)}"
 
 
 def _cured(cure: Cure | None, option: Option, units: Units) -> str:
@@ -236,6 +242,9 @@ def basis(job: Job, units: Units) -> list[str]:
             "limits."
         )
     lines += [f"Warning: {text}." for text in limits.warnings]
+    if job.drive is not None:
+        told = dict.fromkeys(note for stage in job.stages for note in stage.notes)
+        lines.append(f"Ground: {'; '.join(map(units.retold, told))}.")
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
     lines += [f"Notice: {text.rstrip('.')}." for text in job.notices]
@@ -245,7 +254,7 @@ def basis(job: Job, units: Units) -> list[str]:
 def _notes(job: Job, units: Units) -> list[str]:
     """Return what was taken by default, with the stages for what is not the same at all."""
     stages: dict[str, list[str]] = {}
-    for stage in job.stages:
+    for stage in job.stages if job.drive is None else ():
         for note in stage.notes:
             stages.setdefault(note, []).append(repr(stage.name))
     return [units.retold(note) for note in job.pile.notes] + [

@@ -126,9 +126,57 @@ class StagePlan:
         return self.set / self.stage.set_needed
 
     @property
+    def stress_use(self) -> float:
+        """The larger use of a stress limit [-]."""
+        return max(self.compression_use, self.tension_use)
+
+    @property
     def speed(self) -> float | None:
         """Penetration speed [m/s]; None where the blow rate is not known."""
         return None if self.blow_rate is None else self.blow_rate * self.set
+
+
+@dataclass(frozen=True, slots=True)
+class CaseDrive:
+    """The whole drive in one ground case, as far as it got.
+
+    Parameters
+    ----------
+    case : str
+    required : bool
+        Whether an option must manage it.
+    plans : tuple of StagePlan
+        Station by station.
+    failing : StagePlan or None
+        The station that stops it.
+    settled : float or None
+        Penetration down to which the pile goes under its weight; None where the first station
+        takes blows already. [m]
+    """
+
+    case: str
+    required: bool
+    plans: tuple[StagePlan, ...]
+    failing: StagePlan | None
+    settled: float | None
+
+    @property
+    def taken(self) -> Taken:
+        """Blows and time down to the last station that was reached."""
+        takings = [plan.taken for plan in self.plans if plan.taken is not None]
+        return takings[-1] if takings else Taken()
+
+    @property
+    def hardest(self) -> StagePlan | None:
+        """The station with the least set; None where none took a blow."""
+        driven = [plan for plan in self.plans if plan.verdict != GOES_DOWN]
+        return min(driven, key=lambda plan: plan.set, default=None)
+
+    @property
+    def tightest(self) -> StagePlan | None:
+        """The station with the largest use of a stress limit; None where none took a blow."""
+        driven = [plan for plan in self.plans if plan.verdict != GOES_DOWN]
+        return max(driven, key=lambda plan: plan.stress_use, default=None)
 
 
 @dataclass(frozen=True, slots=True)
@@ -198,6 +246,8 @@ class Option:
         Whether `reach` is only as far as was looked: the true one is no less.
     cure : Cure or None
         What would let a failing hammer drive the pile.
+    cases : tuple of CaseDrive
+        The whole drive by ground case; empty for stages given by hand.
     """
 
     hammer: Hammer
@@ -214,6 +264,23 @@ class Option:
     reach: float | None = None
     reach_is_open: bool = False
     cure: Cure | None = None
+    cases: tuple[CaseDrive, ...] = ()
+
+    @property
+    def tightest(self) -> StagePlan | None:
+        """The station of a drive, over required cases, with the largest use of a stress limit."""
+        plans = [case.tightest for case in self.cases if case.required]
+        return max(
+            (plan for plan in plans if plan is not None),
+            key=lambda plan: plan.stress_use,
+            default=None,
+        )
+
+    @property
+    def slowest(self) -> CaseDrive | None:
+        """The required case that takes the most blows; None for stages given by hand."""
+        required = [case for case in self.cases if case.required]
+        return max(required, key=lambda case: case.taken.blows, default=None)
 
     @property
     def drives(self) -> bool:

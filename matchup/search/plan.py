@@ -32,7 +32,7 @@ from matchup.search.option import (
     Option,
     StagePlan,
 )
-from matchup.search.way import Walk, stage_plan, walk
+from matchup.search.way import Walk, case_drives, stage_plan, walk
 
 GOVERNS = {
     PILE_RUNS: "weight",
@@ -343,6 +343,7 @@ class Planner:
             plans=plans,
             target=target,
             cost=self.cost(hammer, stack),
+            cases=case_drives(self.rig.job, plans, float(self.rig.chains.weights[hammer])),
             runner_up=None if softer is None else self._option(hammer, softer),
         )
 
@@ -372,13 +373,15 @@ class Planner:
         nearest = min(stacks, key=lambda c: (self._excess(hammer, c), c))
         failing = self._failing(hammer, nearest)
         assert failing is not None
+        plans = self.stage_plans(hammer, nearest)
         return Option(
             hammer=self.rig.job.hammers[hammer],
             verdict=failing.verdict,
             governs=GOVERNS[failing.verdict],
             stack=self.rig.stacks[nearest],
-            plans=self.stage_plans(hammer, nearest),
+            plans=plans,
             target=self.target_plan(hammer, nearest),
+            cases=case_drives(self.rig.job, plans, float(self.rig.chains.weights[hammer])),
             cost=math.inf,
             failing=failing,
         )

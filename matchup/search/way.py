@@ -25,7 +25,7 @@ from matchup.analysis.cells import (
     Found,
 )
 from matchup.analysis.window import WindowFinder
-from matchup.model.job import Course
+from matchup.model.job import Course, Job
 from matchup.search.option import (
     DRIVES,
     FINE,
@@ -36,6 +36,7 @@ from matchup.search.option import (
     OVER_TENSION,
     PILE_RUNS,
     REFUSES,
+    CaseDrive,
     StagePlan,
     Taken,
 )
@@ -191,6 +192,38 @@ def _at_pause(one: Walk, stage: int, finder: WindowFinder) -> Taken:
     return one.taken
 
 
+def settled_depth(last: StagePlan, following: StagePlan, weight: float) -> float:
+    """Return the penetration [m] between two stations at which resistance exceeds the weight."""
+    low, high = last.stage.resistance, following.stage.resistance
+    share = (weight - low) / (high - low) if high > low else 1.0
+    length = following.stage.penetration - last.stage.penetration
+    return last.stage.penetration + min(max(share, 0.0), 1.0) * length
+
+
+def case_drives(job: Job, plans: Sequence[StagePlan], weight: float) -> tuple[CaseDrive, ...]:
+    """Return a drive's plans by ground case; nothing for stages given by hand.
+
+    Parameters
+    ----------
+    weight : float
+        Of the pile and all that stands on it. [N]
+    """
+    if job.drive is None:
+        return ()
+    drives = []
+    for course in job.courses:
+        mine = tuple(plan for plan in plans if plan.stage.case == course.case)
+        failing = next((plan for plan in mine if plan.verdict not in FINE), None)
+        down = [i for i, plan in enumerate(mine) if plan.verdict == GOES_DOWN]
+        settled = None
+        if down:
+            last = mine[down[-1]]
+            after = mine[down[-1] + 1] if down[-1] + 1 < len(mine) else last
+            settled = settled_depth(last, after, weight)
+        drives.append(CaseDrive(course.case, course.required, mine, failing, settled))
+    return tuple(drives)
+
+
 def _onward(finder: WindowFinder, one: Walk, plan: StagePlan) -> Taken:
     """Return what the drive takes down to a station.
 
@@ -204,10 +237,8 @@ def _onward(finder: WindowFinder, one: Walk, plan: StagePlan) -> Taken:
     last = one.plans[-1]
     length = plan.stage.penetration - last.stage.penetration
     if last.verdict == GOES_DOWN:
-        weight = finder.rig.chains.weights[one.hammer]
-        low, high = last.stage.resistance, plan.stage.resistance
-        length *= 1 - (weight - low) / (high - low) if high > low else 1
-        blows = length / plan.set
+        weight = float(finder.rig.chains.weights[one.hammer])
+        blows = (plan.stage.penetration - settled_depth(last, plan, weight)) / plan.set
         seconds = None if plan.blow_rate is None else blows / plan.blow_rate
     else:
         halves = (0.5 * length / last.set, 0.5 * length / plan.set)

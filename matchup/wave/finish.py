@@ -14,6 +14,7 @@ from matchup.wave.layout import (
     FORCE_MOST,
     HEAD_BLOCK,
     HEAD_V,
+    HEAD_X,
     HELMET_V,
     HELMET_WEIGHT,
     HELMET_X,
@@ -235,7 +236,10 @@ def write_result(
             envelope[row, i, 1] = state[at + LEAST_ALL]
     tip = HEAD_BLOCK + nodes * BLOCK + lane
     energy, soil_work, momentum = energy_taken(bar, head, state, lane)
-    error = (energy - energy_at_impact) / (0.5 * head[0] * head[1] ** 2)
+    # In soft ground the pile goes so far that gravity puts in more than the ram does.
+    weight = state[RAM_WEIGHT + lane] + state[HELMET_WEIGHT + lane] + bar.weight.sum()
+    put_in = 0.5 * head[0] * head[1] ** 2 + weight * max(state[HEAD_X + lane], 0.0)
+    error = (energy - energy_at_impact) / put_in
     finite = math.isfinite(error) and math.isfinite(peak) and math.isfinite(state[tip + TOE_X])
     out[row, 0] = status if finite else DIVERGED
     out[row, 1] = step

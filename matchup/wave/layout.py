@@ -55,7 +55,7 @@ COLUMNS = (
     "tension_node",
     "force_most",  # largest force on the pile head [N]
     "passed_most",  # largest work done on the pile head [J]
-    "balance",  # energy unaccounted for over the ram's energy at impact [-]
+    "balance",  # energy unaccounted for over that put in by ram and gravity [-]
     "ram_velocity",  # at the end [m/s]
     "momentum",  # of ram, helmet and pile at the end [N s]
     "soil_work",  # done on the soil, less that of gravity on the pile [J]

@@ -242,6 +242,29 @@ def test_stevens_bounds_enclose_each_other():
     assert np.all(np.diff(np.array(totals), axis=0) > 0)
 
 
+@given(st.floats(1, 30), st.floats(1, 29))
+def test_stevens_clay_and_bounds_follow_the_stated_formulas(ocr, tip):
+    # Formula and factors are from memory: this holds the code to what the docstring says.
+    ground = Ground(Profile((clay(0, 30, 60 * KPA, ocr=ocr),), 1.0))
+    static = unit_of("api 2011", ground, TUBE, [tip]).down_to(tip)
+    full = np.trapezoid(static.initial, static.depth) * math.pi
+    (low_core, low_plug), _, (high_core, high_plug) = (
+        stages(ground, [tip], "stevens 1982", TUBE, [Case(c)])[0].modes
+        for c in ("low", "best", "high")
+    )
+    outer, inner = 0.5 * ocr**0.3 * full * np.array([0.762, 0.724])
+    assert low_core[1:3] == pytest.approx((outer, 0.5 * inner))
+    assert high_core[1:3] == pytest.approx((outer, inner))
+    assert high_plug.outer == pytest.approx(low_plug.outer)
+    assert high_plug.toe == pytest.approx(1.67 * low_plug.toe)
+    dry = Ground(Profile((sand(0, 30),), 1.0))
+    low, high = (
+        stages(dry, [tip], "stevens 1982", TUBE, [Case(c)])[0].modes[1] for c in ("low", "high")
+    )
+    assert high.outer == pytest.approx(1.3 * low.outer)
+    assert high.toe == pytest.approx(1.5 * low.toe)
+
+
 # --- toe near a thin layer ----------------------------------------------------------------------
 
 
@@ -435,6 +458,14 @@ def test_a_static_table_is_reduced_by_its_setup():
         stages(Ground(table=replace(static, setup=None)), [14.0], "table")
 
 
+def test_a_pause_needs_a_setup_factor():
+    with pytest.raises(ModelError, match=r"table\.setup"):
+        stages(Ground(table=OWN), [14.0], "table", pauses=[Pause(14.0, DAY)])
+    ground = Ground(Profile((clay(0, 30, 20 * KPA),), 0.0), table=OWN)
+    driving, restart = stages(ground, [14.0], "table", pauses=[Pause(14.0, 90 * DAY)])
+    assert restart.stage.shaft == pytest.approx(2.0 * driving.stage.shaft)
+
+
 def test_a_table_without_the_case_or_depth_says_so():
     with pytest.raises(ModelError, match="low, best"):
         stages(Ground(table=OWN), [14.0], "table", cases=[Case("high")])
@@ -484,11 +515,88 @@ def test_cases_pauses_and_loosened_parts_check_themselves():
             make()
 
 
+def test_a_toe_at_the_first_reading_has_no_shaft():
+    measured = soft_over_dense_sounding()
+    ground = Ground(soft_over_dense(), replace(measured, predrilled=4.0))
+    stage = stages(ground, [4.0, 5.0], "alm hamre 2001")[0].stage
+    assert (stage.shaft, stage.shaft_shape, stage.shaft_damping) == (0.0, (), 0.25)
+    assert stage.toe > 0
+
+
+def test_quakes_and_damping_of_a_companion_are_printed_as_its_own():
+    choices = Choices(companion="alm hamre 2001")
+    ground = Ground(soft_over_dense(), soft_over_dense_sounding())
+    stage = stages(ground, [20.0], "nen 9997 base", choices=choices)[0].stage
+    assert stage.shaft_damping == 0.25
+    assert any("quakes and damping: the pair fitted with Alm" in note for note in stage.notes)
+    assert not any("tables by soil" in note for note in stage.notes)
+
+
 def test_the_needed_set_may_differ_by_station():
     made = resistance_stages(
         pile(CLOSED), Ground(soft_over_dense()), "api 2011", [5.0, 9.0], [1e-3, 4e-3], BEST
     )
     assert [s.stage.set_needed for s in made] == [1e-3, 4e-3]
+
+
+@st.composite
+def grounds(draw) -> Ground:
+    """Layers of any kind with everything that the methods ask for, and a sounding."""
+    borders = sorted(draw(st.sets(st.floats(0.05, 29.95).map(lambda d: round(d, 2)), max_size=5)))
+    layers = []
+    for top, bottom in pairwise([0.0, *borders, 30.0]):
+        is_clay = draw(st.booleans())
+        layers.append(
+            Layer(
+                top,
+                bottom,
+                "clay" if is_clay else "sand",
+                draw(st.floats(11e3, 24e3)),
+                density=None if is_clay else "medium dense",
+                strength=draw(st.floats(1e3, 500e3)) if is_clay else None,
+                strength_bottom=draw(st.floats(1e3, 500e3)) if is_clay else None,
+                ocr=draw(st.floats(1, 30)) if is_clay else None,
+                beta=draw(st.floats(0.05, 1)),
+                toe_factor=draw(st.floats(1, 300)),
+                shaft_damping=draw(st.none() | st.floats(0, 2)),
+                setup=draw(st.none() | st.floats(1, 5)),
+            )
+        )
+    random = np.random.default_rng(draw(st.integers(0, 10**6)))
+    depth = np.cumsum(random.uniform(0.005, 0.5, 400))
+    tip = np.abs(np.cumsum(random.normal(0, 1 * MPA, 400)))
+    cone = sounding(depth, tip, random.uniform(0, 0.1) * tip, water=draw(st.floats(-30, 10)))
+    profile = Profile(tuple(layers), draw(st.floats(-30, 40)))
+    return Ground(profile if draw(st.booleans()) else None, cone)
+
+
+@settings(max_examples=100, deadline=None)
+@given(
+    grounds(),
+    st.sampled_from(["api 2011", "stevens 1982", "effective stress", "alm hamre 2001"]),
+    st.sampled_from([TUBE, CLOSED, SQUARE, H]),
+    st.sets(st.floats(0.51, 29.9), min_size=1, max_size=4),
+    st.floats(0.1, 29),
+)
+def test_any_ground_makes_sound_stages(ground, name, section, tips, to):
+    if ground.profile is None:
+        name = "alm hamre 2001"
+    tips = sorted(tips)
+    made = stages(
+        ground,
+        tips,
+        name,
+        section,
+        [Case("low", 0.8), Case("best"), Case("high", 1.3)],
+        pauses=[Pause(tips[-1], DAY)],
+        loosened=[Loosened(to, 0.0)],
+    )
+    assert len(made) == 3 * (len(tips) + 1)
+    for low, best, high in zip(made[::3], made[1::3], made[2::3], strict=True):
+        totals = [each.stage.resistance for each in (low, best, high)]
+        assert np.isfinite(totals).all()
+        assert totals == sorted(totals)
+        assert best.stage.shaft == 0 or best.stage.shaft_shape
 
 
 def test_a_whole_drive_takes_well_under_a_second():

@@ -29,6 +29,7 @@ def drawn(states: list[list[str]], step: float = 0.1) -> StrokeMap:
         stacks=tuple(sheets(count) for count in range(4, 4 + shape[0])),
         strokes=step * np.arange(1, shape[1] + 1),
         states=tuple(tuple(row) for row in states),
+        closed_at=tuple(("",) * len(row) for row in states),
         sets=blank,
         compression_uses=blank,
         tension_uses=blank,

@@ -27,7 +27,7 @@ from matchup.report.figures.drawing import (
     settle,
     short_name,
 )
-from matchup.report.mapped import map_answer
+from matchup.report.mapped import map_answer, map_place
 from matchup.report.shown import Units
 from matchup.search.stroke_map import (
     OPEN_CELL,
@@ -91,7 +91,7 @@ def window_figure(
     most = max(panel.rows.size for panel in panels)
     height = min(2.9, 0.8 + 0.16 * most)
     with drawing():
-        title = f"{found.hammer.name} at stage {found.stage.name!r}: {map_answer(found, units)}"
+        title = f"{map_place(found)}: {map_answer(found, units)}"
         figure = new_figure(title, height * down + 0.55)
         across = min(ACROSS, len(panels))
         grid = figure.subplots(down, across, squeeze=False, sharex=True)

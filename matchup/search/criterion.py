@@ -1,0 +1,112 @@
+"""The termination criterion: which set at which stroke proves the resistance that is asked for."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from matchup.analysis.cells import UNSOUND, Cells, job_demands
+from matchup.analysis.rig import Rig, Tell
+from matchup.analysis.window import WindowFinder
+from matchup.model.job import Job
+from matchup.model.stage import Stage
+from matchup.search.option import Option
+from matchup.search.reach import scaled
+from matchup.wave.layout import Floats
+
+MULTIPLES = tuple(round(0.4 + 0.1 * i, 1) for i in range(15))
+"""Of the target's resistance, for the table of sets."""
+STROKES_EACH_WAY = 3
+"""Settings told below and above the planned one."""
+
+
+@dataclass(frozen=True, slots=True)
+class Criterion:
+    """What sets mean at the target, with the option's cushions.
+
+    The distribution of the resistance is that of `stage`. Of the wear states the one with the
+    smaller set counts, so that a set never proves more than it does in the other.
+
+    Parameters
+    ----------
+    stage : Stage
+    planned : float
+        Stroke planned there. [m]
+    strokes : (strokes,) float64 array
+        [m]
+    driving, later : (multiples,) float64 array
+        Resistance while driving, and long after it, with the shaft's set-up. [N]
+    sets : (multiples, strokes) float64 array
+        NaN where a blow can't be trusted or the pile runs. [m]
+    stress_uses : (multiples, strokes) float64 array
+        Larger use of a stress limit. [-]
+    needed : float or None
+        Resistance long after driving to be proven; None where the job does not say. [N]
+    proving : (strokes,) float64 array or None
+        Set that proves it; NaN where none does, or a stress limit breaks. [m]
+    """
+
+    stage: Stage
+    planned: float
+    strokes: Floats
+    driving: Floats
+    later: Floats
+    sets: Floats
+    stress_uses: Floats
+    needed: float | None
+    proving: Floats | None
+
+
+def find_criterion(
+    job: Job, option: Option, workers: int | None = None, tell: Tell | None = None
+) -> Criterion:
+    """Return the termination criterion of an option."""
+    plan = next(
+        (c.plans[-1] for c in option.cases if c.case == "best" and c.failing is None), option.target
+    )
+    stage = plan.stage
+    multiples = list(MULTIPLES)
+    needed = job.drive.capacity if job.drive else None
+    if needed is not None:
+        multiples.append(needed / _later(stage))
+    stages = tuple(
+        replace(scaled(stage, multiple), name=f"{row}") for row, multiple in enumerate(multiples)
+    )
+    rig = Rig(replace(job, stages=stages, hammers=(option.hammer,), drive=None), workers, tell)
+    finder = WindowFinder(rig, job_demands(rig).without_set())
+    count = finder.strokes[0].size
+    at = np.arange(max(0, plan.at - STROKES_EACH_WAY), min(count, plan.at + STROKES_EACH_WAY + 1))
+    shape = (len(stages), at.size)
+    sets, uses = np.full((2, *shape), np.nan)
+    rows = [row for row in range(len(stages)) if not rig.runs(row, 0)]
+    if rows:
+        row = np.repeat(rows, at.size)
+        zero = np.zeros(row.size, np.int64)
+        cells = Cells(row, zero, zero + rig.stacks.index(option.stack))
+        struck = finder.strike(cells, np.tile(at, len(rows)))
+        found = np.where(struck.state != UNSOUND, struck.set, np.nan)
+        sets[rows] = found.reshape(len(rows), at.size)
+        limits = job.limits
+        worst = np.maximum(struck.compression / limits.compression, struck.tension / limits.tension)
+        uses[rows] = worst.reshape(len(rows), at.size)
+    later = np.array([_later(one) for one in stages])
+    # A stroke that breaks a limit is none to prove anything with.
+    provable = (sets[-1] > 0) & (uses[-1] <= 1)
+    known = slice(0, len(MULTIPLES))
+    return Criterion(
+        stage=stage,
+        planned=plan.stroke,
+        strokes=finder.stroke(np.zeros(at.size, np.int64), at),
+        driving=np.array([one.resistance for one in stages])[known],
+        later=later[known],
+        sets=sets[known],
+        stress_uses=uses[known],
+        needed=needed,
+        proving=None if needed is None else np.where(provable, sets[-1], np.nan),
+    )
+
+
+def _later(stage: Stage) -> float:
+    """Return the resistance long after driving: the shaft's set-up on top, the toe's never [N]."""
+    return stage.setup * stage.shaft + stage.toe
