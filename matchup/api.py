@@ -27,6 +27,7 @@ from matchup.model.selection import (
 )
 from matchup.report.document import blow_document, check_document, ranking_document
 from matchup.report.driven import (
+    chosen_case,
     criterion_document,
     criterion_page,
     drive_document,
@@ -219,6 +220,13 @@ class DriveResult(CheckResult):
         if self.criterion is not None:
             page[-1:-1] = criterion_page(self.criterion, self.job, units)
         return page
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""
+        from matchup.report.figures.drive import drive_figure
+
+        told = chosen_case(self.option, self.case)
+        return drive_figure(self.option, told, self.job, _units(self.job, display))
 
     def to_frame(self) -> pd.DataFrame:
         """Return every station of every case as a row, in the JSON document's fixed units."""

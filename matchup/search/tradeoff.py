@@ -9,14 +9,21 @@ from matchup.search.option import Option
 
 
 def costs(option: Option) -> tuple[float, float, float]:
-    """Return what one wants little of: blow energy [J], highest stress use [-], slowness [s/m].
+    """Return what one wants little of: blow energy [J], highest stress use [-], and time.
 
-    Slowness is the time that a length of penetration takes at the target, infinite where the
-    blow rate is not known.
+    Time is that of the whole drive [s], or for stages given by hand what a length of penetration
+    takes at the target [s/m]; infinite where the blow rate is not known.
     """
-    speed = option.target.speed
     use = max(option.compression_use, option.tension_use)
-    return option.target.blow_energy, use, 1 / speed if speed else math.inf
+    return option.target.blow_energy, use, _time(option)
+
+
+def _time(option: Option) -> float:
+    if option.slowest is not None:
+        seconds = option.slowest.taken.seconds
+        return math.inf if seconds is None else seconds
+    speed = option.target.speed
+    return 1 / speed if speed else math.inf
 
 
 def is_beaten(option: Option, others: Sequence[Option]) -> bool:

@@ -45,18 +45,18 @@ def tradeoff_figure(ranking: Ranking, units: Units) -> Figure:
     use = [100 * max(o.compression_use, o.tension_use) for o in options]
     allowed = 100 * (1 - ranking.job.search.reserve)
     energy = [units.value(o.target.blow_energy, "energy") for o in options]
-    speed = [units.speed(o.target.speed) for o in options]
-    parts = [(energy, f"blow energy, {units.unit('energy')}", "less is better")]
-    if any(speed):
-        label = f"penetration speed at the target, {units.speed_unit}"
-        parts.append((speed, label, "more is better"))
+    parts = [(energy, f"blow energy, {units.unit('energy')} (less is better)")]
+    what = "energy and stress"
+    times, label, word = _times(options, units)
+    if any(times):
+        parts.append((times, label))
+        what = f"energy, stress and {word}"
     with drawing():
-        what = "energy, stress and speed" if any(speed) else "energy and stress"
         figure = new_figure(_finding(options, leading, what), 3.1)
         panels = figure.subplots(1, len(parts), sharey=True, squeeze=False)[0]
         panels[0].set_ylabel("highest stress over the drive, % of its limit")
-        for axes, (values, label, better) in zip(panels, parts, strict=True):
-            axes.set_xlabel(f"{label} ({better})")
+        for axes, (values, label) in zip(panels, parts, strict=True):
+            axes.set_xlabel(label)
             _draw(axes, values, use, leading)
             axes.axhline(allowed, color=TENSION, linewidth=1.6)
         panels[0].annotate(
@@ -67,10 +67,21 @@ def tradeoff_figure(ranking: Ranking, units: Units) -> Figure:
             textcoords="offset points",
             color=TENSION,
         )
-        for axes, (values, _, _) in zip(panels, parts, strict=True):
+        for axes, (values, _) in zip(panels, parts, strict=True):
             _name(figure, axes, options, values, use, leading)
         settle(figure)
     return figure
+
+
+def _times(options: Sequence[Option], units: Units) -> tuple[list[float | None], str, str]:
+    """Return the time of a whole drive, else the speed at the target; its label; a word for it."""
+    drives = [option.slowest for option in options]
+    if any(drives):
+        seconds = [None if drive is None else drive.taken.seconds for drive in drives]
+        label = "time of driving, min (less is better)"
+        return [None if s is None else s / 60 for s in seconds], label, "time"
+    label = f"penetration speed at the target, {units.speed_unit} (more is better)"
+    return [units.speed(option.target.speed) for option in options], label, "speed"
 
 
 def _finding(options: Sequence[Option], leading: Sequence[bool], what: str) -> str:
