@@ -8,13 +8,14 @@ from __future__ import annotations
 
 import os
 from collections.abc import Sequence
+from contextlib import suppress
 from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
-from matchup.errors import InputError, Problem
+from matchup.errors import AnalysisError, InputError, Problem
 from matchup.inputs import load_job
 from matchup.model.job import Job
 from matchup.model.selection import (
@@ -34,14 +35,17 @@ from matchup.report.driven import (
     drive_page,
     stations_table,
 )
-from matchup.report.files import figure_kind, write_file
+from matchup.report.files import figure_kind, refuse_taken, write_file, write_folder
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.options import options_table, schedule_table
-from matchup.report.page import Page, page_html, page_text
+from matchup.report.page import Headline, Page, page_html, page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table
+from matchup.report.tender.bundle import NAMES, report_files
+from matchup.report.tender.dossier import Dossier
+from matchup.report.tender.sections import sections
 from matchup.search.criterion import Criterion, find_criterion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers
@@ -57,12 +61,14 @@ __all__ = [
     "CheckResult",
     "DriveResult",
     "RankingResult",
+    "ReportResult",
     "WindowResult",
     "blow",
     "check",
     "drive",
     "load_job",
     "rank",
+    "tender_report",
     "window",
 ]
 
@@ -330,6 +336,61 @@ class BlowResult(_Shown):
         return blow_document(self.blow, traces)
 
 
+@dataclass(frozen=True)
+class ReportResult(_Shown):
+    """A tender report that can be shown and written.
+
+    Parameters
+    ----------
+    dossier : Dossier
+    """
+
+    dossier: Dossier
+
+    @property
+    def can(self) -> bool:
+        """Whether any hammer can drive the pile."""
+        return bool(self.dossier.ranking.options)
+
+    def page(self, display: str | None = None) -> Page:
+        """Return the report as blocks, each section under its heading."""
+        parts = sections(self.dossier, _units(self.dossier.job, display))
+        return [block for part in parts for block in (Headline(part.heading), *part.blocks)]
+
+    def files(self, display: str | None = None) -> dict[str, bytes]:
+        """Return the report's files by name: web page, PDF, workbook, CSV and JSON.
+
+        The PDF needs the extra ``pdf`` and is left out without it.
+        """
+        return report_files(self.dossier, _units(self.dossier.job, display))
+
+    def write(
+        self, folder: str | os.PathLike[str], display: str | None = None, force: bool = False
+    ) -> tuple[str, ...]:
+        """Write the report's files to a folder, all or none, and return their names.
+
+        Parameters
+        ----------
+        folder : path
+            Made if need be.
+        force : bool
+            Replace the files of a report that is there.
+
+        Raises
+        ------
+        InputError
+            If the folder holds a report already, or can't be written to.
+        """
+        if not force:
+            refuse_taken(Path(folder), NAMES, "output")
+        made = self.files(display)
+        write_folder(Path(folder), made, "output")
+        return tuple(made)
+
+    def _repr_html_(self) -> str:
+        return page_html(self.page())
+
+
 def _units(job: Job, display: str | None) -> Units:
     return Units(display or job.display)
 
@@ -546,6 +607,66 @@ def blow(
         job, selected.stage, selected.hammer, selected.stack, selected.wear, stroke
     )
     return BlowResult(computed, job)
+
+
+def tender_report(
+    job: JobLike,
+    detail: str | None = None,
+    workers: int | None = None,
+    seed: int | None = None,
+    tell: Tell | None = None,
+) -> ReportResult:
+    """Compute all that a tender report tells of.
+
+    Parameters
+    ----------
+    job : Job or path
+    detail : str or None
+        Name of the hammer that is told in full; None takes the best, or the nearest miss.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+    seed : int or None
+        Replaces the job's.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+
+    Raises
+    ------
+    InputError
+        If the job has problems, or no hammer of that name.
+    """
+    job = _job(job)
+    name = None if detail is None else select_hammer(job, detail).name
+    ranking = rank(job, workers, seed, tell).ranking
+    job = ranking.job
+    everyone = (*ranking.options, *ranking.rejected)
+    option = next(o for o in everyone if name in (None, o.hammer.name))
+    alone = replace(job, hammers=(option.hammer,))
+    proof = None
+    if job.drive is not None and option.drives:
+        proof = find_criterion(alone, option, workers, tell)
+    found = map_strokes(job, option.hammer, option.target.stage, workers, tell)
+    return ReportResult(Dossier(ranking, option, found, _telling_blows(job, option), proof))
+
+
+def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
+    """Return a blow at the target, and one where the stress is highest, where they can be had."""
+    plans = [option.failing or option.target]
+    tightest = option.tightest or max(option.plans, key=lambda plan: plan.stress_use)
+    if tightest.stage != plans[0].stage:
+        plans.append(tightest)
+    wears = job.cushions.wears if job.cushions else (pick_wear(job, None, []),)
+    telling = []
+    for plan in plans:
+        blows = []
+        for wear in (plan.wear,) if plan.wear else wears:
+            with suppress(AnalysisError):
+                blows.append(
+                    compute_blow(job, plan.stage, option.hammer, option.stack, wear, plan.stroke)
+                )
+        # Of the wear states, the one that decides.
+        telling += sorted(blows, key=lambda blow: -blow.stress_use)[:1]
+    return tuple(telling)
 
 
 def _job(job: JobLike) -> Job:

@@ -143,6 +143,11 @@ class Blow:
         return self.stack.pile
 
     @property
+    def stress_use(self) -> float:
+        """The larger use of a stress limit [-]."""
+        return max(self.compression_use, self.tension_use)
+
+    @property
     def hammer_cushion(self) -> str:
         """Hammer cushion in words."""
         return self.stack.hammer.text if self.stack.hammer else self.hammer.cushion_text

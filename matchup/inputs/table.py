@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import csv
+import hashlib
 import io
 import re
 import zipfile
@@ -136,7 +137,9 @@ def read_bytes(path: Path, findings: Findings) -> bytes | None:
             must = f"must be at most {LARGEST_FILE // 1_000_000} MB"
             findings.add(file, None, "", must, f"{path.stat().st_size // 1_000_000} MB")
         else:
-            return path.read_bytes()
+            data = path.read_bytes()
+            findings.digests[file] = hashlib.sha256(data).hexdigest()
+            return data
     except (OSError, ValueError) as error:
         why = getattr(error, "strerror", None) or str(error)
         must = f"must be a file that can be read; this one can't: {why[:1].lower()}{why[1:]}"

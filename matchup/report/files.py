@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from contextlib import suppress
 from pathlib import Path
 
@@ -81,7 +81,7 @@ def write_folder(folder: Path, files: Mapping[str, bytes], place: str) -> None:
         raise InputError([Problem(str(folder), None, place, must, why)]) from None
 
 
-def refuse_taken(folder: Path, names: list[str], place: str) -> None:
+def refuse_taken(folder: Path, names: Iterable[str], place: str) -> None:
     """Refuse a folder that holds some of the files already, or that is none.
 
     Raises
