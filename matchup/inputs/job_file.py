@@ -98,6 +98,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),
+            digests=tuple(findings.digests.items()),
         )
     except ModelError as error:
         text.wrong_model(error, ())

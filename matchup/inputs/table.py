@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import csv
+import hashlib
 import io
 import re
 import zipfile
@@ -127,7 +128,9 @@ def read_bytes(path: Path, findings: Findings) -> bytes | None:
     fault = file_fault(path)
     if fault is None:
         try:
-            return path.read_bytes()
+            data = path.read_bytes()
+            findings.digests[shown_path(path)] = hashlib.sha256(data).hexdigest()
+            return data
         except OSError as error:
             fault = _unreadable(path, error)
     findings.problems.append(fault)

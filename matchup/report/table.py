@@ -120,6 +120,24 @@ class Table:
         lines.insert(len(header), "-" * max(map(len, lines)))
         return "\n".join(lines)
 
+    def shown(self) -> tuple[list[str], list[list[str]], list[str], list[str]]:
+        """Return headings, rows, alignments and notes as people see them on a wide page.
+
+        Headings may hold line breaks.
+        A text that repeats what stands above it is left out where its column says so.
+        """
+        rows = []
+        for above, row in zip((None, *self.rows), self.rows, strict=False):
+            repeats = [
+                c.once and above is not None and above[i] == row[i]
+                for i, c in enumerate(self.columns)
+            ]
+            texts = [_cell(v, c).replace("\n", " ") for v, c in zip(row, self.columns, strict=True)]
+            rows.append(["" if same else t for same, t in zip(repeats, texts, strict=True)])
+        headings = [column.header for column in self.columns]
+        notes = self._notes(range(len(self.columns)))
+        return headings, rows, self._alignment(self.columns), notes
+
     def to_html(self) -> str:
         """Return the table for a notebook; every text is escaped."""
         table = tabulate(
@@ -184,7 +202,8 @@ def _cell(value: object, column: Column) -> str:
         return "-"
     if column.digits is not None and isinstance(value, (int, float)):
         return f"{value:.{column.digits}f}{'+' if isinstance(value, AtLeast) else ''}"
-    text = column.short.get(str(value), str(value))
+    plain = f"{float(f'{value:.4g}'):g}" if isinstance(value, float) else str(value)
+    text = column.short.get(plain, plain)
     if column.wrap:
         text = "\n".join(textwrap.wrap(text, column.wrap)) or text
     return text
