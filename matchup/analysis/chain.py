@@ -172,6 +172,10 @@ class Chains:
     stages : tuple of Stage
     gravity : float
         Standard gravity, or zero. [m/s2]
+    resistances : (stages,) float64 array
+        Shaft and toe together. [N]
+    set_quakes : (stages,) float64 array
+        See `set_quake`. [m]
     """
 
     bar: Bar
@@ -182,6 +186,8 @@ class Chains:
     hammers: tuple[Hammer, ...]
     stages: tuple[Stage, ...]
     gravity: float
+    resistances: Floats
+    set_quakes: Floats
 
 
 def build_chains(
@@ -240,7 +246,18 @@ def build_chains(
         np.array(settlements).reshape(-1, nodes),
         analysis.damping == "smith",
     )
-    return Chains(bar, depth, grounds, ground_of, weights, tuple(hammers), tuple(stages), gravity)
+    return Chains(
+        bar,
+        depth,
+        grounds,
+        ground_of,
+        weights,
+        tuple(hammers),
+        tuple(stages),
+        gravity,
+        np.array([stage.resistance for stage in stages]),
+        np.array([set_quake(stage)[0] for stage in stages]),
+    )
 
 
 def _settle(stage: Stage, strength: Floats, bar: Bar, load: float) -> Floats | None:

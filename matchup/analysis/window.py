@@ -253,17 +253,21 @@ class WindowFinder:
 
     # --- other strokes that work ----------------------------------------------------------------
 
+    def play(self, cells: Cells, at: Integers) -> Found:
+        """Return what given settings do, whatever comes of it; nothing where the pile runs."""
+        found = self._nothing(cells)
+        alive = np.flatnonzero(found.state == OPEN)
+        if alive.size:
+            found.put(alive, self.strike(cells.take(alive), at[alive]))
+        return found
+
     def nearest(self, cells: Cells, wanted: Integers) -> Found:
         """Return the stroke nearest to a wanted setting that works: it, a lower, or a higher one.
 
         Where stresses break at the wanted setting, lower ones are scanned while they reach the
         set; after that, and where the set falls short, the window's lowest stroke is taken.
         """
-        found = self._nothing(cells)
-        alive = np.flatnonzero(found.state == OPEN)
-        if not alive.size:
-            return found
-        found.put(alive, self.strike(cells.take(alive), wanted[alive]))
+        found = self.play(cells, wanted)
         rows = np.flatnonzero((found.state == TENSION) | (found.state == COMPRESSION))
         if rows.size:
 

@@ -72,6 +72,11 @@ class Stage:
         Rest before this stage, at the same penetration as the stage before it; zero for none. [s]
     setup : float
         Shaft resistance long after driving over the one of this stage. [-]
+    static : bool
+        Whether the method gives resistance long after driving, from which that of this stage
+        follows by the set-up.
+    regained : float
+        Share of the set-up that the shaft has regained in the pause. [-]
     modes : tuple of StageMode
         Of an open section, every way in which it may go down; one of them gave `shaft` and `toe`.
     notes : tuple of str
@@ -91,6 +96,8 @@ class Stage:
     case: str = ""
     after_pause: float = 0.0
     setup: float = 1.0
+    static: bool = False
+    regained: float = 0.0
     modes: tuple[StageMode, ...] = ()
     notes: tuple[str, ...] = ()
 
@@ -108,6 +115,7 @@ class Stage:
         rules.must(
             math.isfinite(self.setup) and self.setup >= 1, "setup", "must be >= 1", self.setup
         )
+        rules.must(0 <= self.regained <= 1, "regained", "must be from 0 to 1", self.regained)
         depths = [depth for depth, _ in self.shaft_shape]
         shares = [share for _, share in self.shaft_shape]
         rules.must(
