@@ -59,12 +59,13 @@ def _stages(
 
 def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     """Return the job, once every part of it has been looked at."""
-    from matchup.inputs import build_cushions, build_pile, build_stages
+    from matchup.inputs import build_cushions, build_doubt, build_pile, build_stages
 
     pile = build_pile.build_pile(text, keys.pile)
     limits = build_pile.build_limits(text, keys, pile)
     stages, drive = _stages(text, keys, pile, findings)
     analysis, search = build_stages.build_settings(text, keys)
+    doubt = build_doubt.build_doubt(text, keys, stages)
 
     cushions = named_file(text, ("catalog", "cushions"), keys.catalog.cushions)
     known = read_cushions(cushions, findings) if cushions else CushionCatalogue(complete=False)
@@ -95,6 +96,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             search=search,
             analysis=analysis,
             drive=drive,
+            doubt=doubt,
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),

@@ -129,11 +129,13 @@ def _holder(data: Any, path: KeyPath) -> Any:
 
 
 def _stand_in(data: dict[str, Any], unread: set[KeyPath], path: KeyPath) -> None:
-    """Replace what holds a wrong value: a whole key, or an element of the stages."""
+    """Replace what holds a wrong value: a whole key, or an element of a list of tables."""
     unread.add(path)
     depth = 1 if len(path) == 1 else 2
     if path[0] == "stages":
         depth = min(len(path), 3)
+    elif len(path) > 2 and isinstance(path[2], int):
+        depth = 3
     key = path[:depth]
     unread.add(key)
     holder = _holder(data, key)

@@ -116,30 +116,24 @@ class Stage:
             math.isfinite(self.setup) and self.setup >= 1, "setup", "must be >= 1", self.setup
         )
         rules.must(0 <= self.regained <= 1, "regained", "must be from 0 to 1", self.regained)
-        depths = [depth for depth, _ in self.shaft_shape]
-        shares = [share for _, share in self.shaft_shape]
-        rules.must(
-            not any(a >= b for a, b in pairwise(depths)),
-            "shaft_shape",
-            "must have depths that increase",
-            ", ".join(f"{depth:g} m" for depth in depths),
-        )
-        rules.must(
-            all(math.isfinite(s) and s >= 0 for s in shares),
-            "shaft_shape",
-            "must have intensities >= 0",
-            ", ".join(f"{share:g}" for share in shares),
-        )
         if self.shaft_shape:
-            rules.must(
-                len(self.shaft_shape) > 1
-                and not depths[0] >= self.penetration
-                and any(s > 0 for d, s in self.shaft_shape if not d > self.penetration),
-                "shaft_shape",
-                "must have two rows or more and a positive intensity within the penetration",
-                ", ".join(f"{depth:g} m: {share:g}" for depth, share in self.shaft_shape),
-            )
+            self._check_shape(rules)
         rules.close()
+
+    def _check_shape(self, rules: Rules) -> None:
+        # Texts only where they are needed: samples make stages by the ten thousand.
+        depths, shares = zip(*self.shaft_shape, strict=True)
+        if any(a >= b for a, b in pairwise(depths)):
+            found = ", ".join(f"{depth:g} m" for depth in depths)
+            rules.must(False, "shaft_shape", "must have depths that increase", found)
+        if not all(0 <= share < math.inf for share in shares):
+            found = ", ".join(f"{share:g}" for share in shares)
+            rules.must(False, "shaft_shape", "must have intensities >= 0", found)
+        inside = any(s > 0 for d, s in self.shaft_shape if not d > self.penetration)
+        if len(depths) < 2 or depths[0] >= self.penetration or not inside:
+            must = "must have two rows or more and a positive intensity within the penetration"
+            found = ", ".join(f"{depth:g} m: {share:g}" for depth, share in self.shaft_shape)
+            rules.must(False, "shaft_shape", must, found)
 
     @property
     def resistance(self) -> float:

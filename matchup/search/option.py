@@ -8,6 +8,7 @@ from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
+from matchup.search.odds import Odds
 
 DRIVES = "drives"
 REDUCED = "drives with reduced stroke"
@@ -248,6 +249,8 @@ class Option:
         What would let a failing hammer drive the pile.
     cases : tuple of CaseDrive
         The whole drive by ground case; empty for stages given by hand.
+    odds : Odds or None
+        What becomes of it under the job's doubt; None where it was not looked at.
     """
 
     hammer: Hammer
@@ -265,6 +268,7 @@ class Option:
     reach_is_open: bool = False
     cure: Cure | None = None
     cases: tuple[CaseDrive, ...] = ()
+    odds: Odds | None = None
 
     @property
     def tightest(self) -> StagePlan | None:

@@ -3,13 +3,18 @@
 from __future__ import annotations
 
 import time
+from dataclasses import replace
 
 from matchup.analysis.rig import Rig, Tell
 from matchup.model.job import Job
 from matchup.search.cure import find_cures
-from matchup.search.option import Option, Ranking
+from matchup.search.doubt import find_odds
+from matchup.search.option import NOT_ANALYSED, PILE_RUNS, Option, Ranking
 from matchup.search.plan import Planner
 from matchup.search.reach import find_reach
+
+LOOKED_AT = 5
+"""Options of a ranking whose odds under doubt are looked at; a lone hammer's always are."""
 
 
 def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None) -> Ranking:
@@ -36,6 +41,47 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
         rejected=tuple(sorted(failing, key=_shortfall)),
         analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
         runtime=time.perf_counter() - started,
+    )
+
+
+def with_odds(
+    ranking: Ranking,
+    samples: int,
+    workers: int | None = None,
+    tell: Tell | None = None,
+    *,
+    influences: bool = False,
+) -> Ranking:
+    """Return a ranking whose best options have their odds under the job's doubt.
+
+    Parameters
+    ----------
+    ranking : Ranking
+    samples : int
+        Of each option, at least.
+    workers, tell
+        As for `rank_hammers`.
+    influences : bool
+        Find out as well what matters to each of them.
+    """
+    started = time.perf_counter()
+    options, rejected = ranking.options, ranking.rejected
+    if not options and len(rejected) == 1 and rejected[0].verdict not in (PILE_RUNS, NOT_ANALYSED):
+        chosen = rejected
+    else:
+        chosen = options[:LOOKED_AT]
+    found = {
+        option.hammer.name: find_odds(
+            ranking.job, option, samples, workers, tell, influences=influences
+        )
+        for option in chosen
+    }
+    return replace(
+        ranking,
+        options=tuple(replace(o, odds=found.get(o.hammer.name)) for o in options),
+        rejected=tuple(replace(o, odds=found.get(o.hammer.name)) for o in rejected),
+        analyses=ranking.analyses + sum(odds.analyses for odds in found.values()),
+        runtime=ranking.runtime + time.perf_counter() - started,
     )
 
 
