@@ -48,7 +48,7 @@ from matchup.report.tender.dossier import Dossier
 from matchup.report.tender.sections import sections
 from matchup.search.criterion import Criterion, find_criterion
 from matchup.search.option import Option, Ranking
-from matchup.search.ranking import rank_hammers
+from matchup.search.ranking import rank_hammers, with_odds
 from matchup.search.stroke_map import StrokeMap, map_strokes
 from matchup.units import UnitError, parse_quantity
 
@@ -418,6 +418,7 @@ def rank(
     workers: int | None = None,
     seed: int | None = None,
     tell: Tell | None = None,
+    samples: int | None = None,
 ) -> RankingResult:
     """Rank all hammers of a job.
 
@@ -430,6 +431,8 @@ def rank(
         Replaces the job's.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
 
     Raises
     ------
@@ -439,7 +442,9 @@ def rank(
     job = _job(job)
     if seed is not None:
         job = replace(job, search=replace(job.search, seed=seed))
-    return RankingResult(rank_hammers(job, workers, tell))
+    wanted = _samples(job, samples)
+    ranking = rank_hammers(job, workers, tell)
+    return RankingResult(with_odds(ranking, wanted, workers, tell) if wanted else ranking)
 
 
 def check(
@@ -447,6 +452,7 @@ def check(
     hammer: str | None = None,
     workers: int | None = None,
     tell: Tell | None = None,
+    samples: int | None = None,
 ) -> CheckResult:
     """Answer whether one hammer can drive the pile, and if not, what stops it.
 
@@ -459,6 +465,8 @@ def check(
         Threads; None takes as many as there are processors.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
 
     Raises
     ------
@@ -467,7 +475,8 @@ def check(
     """
     job = _job(job)
     alone = replace(job, hammers=(select_hammer(job, hammer),))
-    return CheckResult(rank_hammers(alone, workers, tell))
+    wanted = _samples(job, samples)
+    return CheckResult(_ranked_alone(alone, wanted, workers, tell))
 
 
 def drive(
@@ -482,6 +491,7 @@ def drive(
     hammer_cushion: str | None = None,
     case: str | None = None,
     criterion: bool = False,
+    samples: int | None = None,
 ) -> DriveResult:
     """Predict the whole drive of one hammer, station by station in every ground case.
 
@@ -501,6 +511,8 @@ def drive(
         Whose stations are shown; the answer is about all required ones.
     criterion : bool
         Add the termination criterion: which set at which stroke proves which resistance.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
 
     Raises
     ------
@@ -519,7 +531,7 @@ def drive(
     thickness = _quantity(thickness, "thickness", "thickness", problems)
     selection = Selection(hammer, None, cushion, sheets, thickness, None, hammer_cushion)
     alone = _with_selected(job, selection, problems)
-    ranking = rank_hammers(alone, workers, tell)
+    ranking = _ranked_alone(alone, _samples(job, samples), workers, tell)
     proof = None
     if criterion and ranking.options:
         proof = find_criterion(alone, ranking.options[0], workers, tell)
@@ -671,6 +683,23 @@ def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
 
 def _job(job: JobLike) -> Job:
     return job if isinstance(job, Job) else load_job(job)
+
+
+def _samples(job: Job, samples: int | None) -> int:
+    """Return how many samples to play."""
+    if job.doubt is None:
+        if samples:
+            do = "For example shaft = { lognormal = { mean = 1.0, cov = 0.2 } } below [doubt]."
+            must = "must be left out, or the job must say in [doubt] what is in doubt"
+            raise InputError([Problem(job.file, None, "samples", must, str(samples), do)])
+        return 0
+    return (job.doubt.samples or 0) if samples is None else samples
+
+
+def _ranked_alone(job: Job, samples: int, workers: int | None, tell: Tell | None) -> Ranking:
+    """Return the ranking of a lone hammer, with its odds and what matters if samples are played."""
+    ranking = rank_hammers(job, workers, tell)
+    return with_odds(ranking, samples, workers, tell, influences=True) if samples else ranking
 
 
 def _with_selected(job: Job, selection: Selection, problems: list[Problem]) -> Job:

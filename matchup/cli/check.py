@@ -7,19 +7,20 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, Samples, show_result
 
 
 def check(
     job: Annotated[Path, Parameter(help="Job file.")],
     *,
     hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
+    samples: Samples = None,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
     """Answer whether a hammer can drive the pile, and if not, why."""
     from matchup import api
 
     with Progress(common) as tell:
-        result = api.check(job, hammer, workers=common.workers, tell=tell)
+        result = api.check(job, hammer, workers=common.workers, tell=tell, samples=samples)
     show_result(result, common)
     return 0 if result.can else THE_ANSWER_IS_NO

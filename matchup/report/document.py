@@ -8,6 +8,7 @@ from typing import Any
 from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
 from matchup.model.job import Job
+from matchup.report.doubted import odds_document
 from matchup.report.sentences import reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, Ranking, StagePlan
@@ -101,6 +102,7 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "reach_ratio": number(option.reach),
         "reach_is_open": option.reach_is_open,
         "cure": cure_document(option.cure),
+        "odds": odds_document(option.odds),
     }
 
 

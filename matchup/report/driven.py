@@ -13,6 +13,7 @@ from matchup.report.document import (
     check_document,
     number,
 )
+from matchup.report.doubted import doubt_blocks
 from matchup.report.options import blow_count, measured, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.ranked import foot
@@ -44,6 +45,7 @@ def drive_page(ranking: Ranking, units: Units, case: str | None = None) -> Page:
     others = [drive.case for drive in option.cases if drive is not chosen]
     if others and case is None:
         page.append(Prose((f"Other cases: {', '.join(others)}.",)))
+    page += doubt_blocks(ranking, units)
     return [*page, foot(ranking, units)]
 
 

@@ -67,7 +67,7 @@ def with_odds(
     started = time.perf_counter()
     options, rejected = ranking.options, ranking.rejected
     if not options and len(rejected) == 1 and rejected[0].verdict not in (PILE_RUNS, NOT_ANALYSED):
-        chosen = rejected
+        chosen: tuple[Option, ...] = rejected
     else:
         chosen = options[:LOOKED_AT]
     found = {
