@@ -15,9 +15,10 @@ from matchup.search.option import CAN_DRIVE, Option, Ranking
 
 NAMED = 0.5
 """What a verdict hangs on are the inputs with at least so much of the leading one's share. [-]"""
+MOST_NAMED = 3
 HOW = {
-    "adapt": "strokes adapted to the ground of each sample, as a crew would; a sample fails where "
-    "no stroke works",
+    "adapt": "at every station the stroke nearest to the planned one that works in that ground, as "
+    "a crew would find it; a sample fails where no stroke works",
     "keep": "planned strokes kept whatever they do; driving goes on where a stress limit breaks",
 }
 
@@ -206,7 +207,8 @@ def _leading(found: Influences, of: Callable[[Influence], Indices | None]) -> st
         return "no single input for sure" if shares else ""
     most = max(sure)[0]
     named = [(value, name) for value, name in sorted(sure, reverse=True) if value >= NAMED * most]
-    return " and ".join(f"{name} ({min(value, 1):.0%} of its variance)" for value, name in named)
+    words = [f"{name} ({min(value, 1):.0%} of its variance)" for value, name in named[:MOST_NAMED]]
+    return " and ".join([", ".join(words[:-1]), words[-1]] if len(words) > 1 else words)
 
 
 def influences_table(found: Influences) -> Table:

@@ -16,7 +16,7 @@ from matchup.search.option import OVER_COMPRESSION, OVER_TENSION, VERDICTS
 from matchup.search.player import Outcomes, Player
 from matchup.wave.layout import Floats
 
-FEWEST = 4
+FEWEST = 16
 """Points of each scrambling, at least."""
 
 

@@ -14,12 +14,12 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from matchup.analysis.cells import Cells, job_demands
+from matchup.analysis.cells import job_demands
 from matchup.analysis.rig import Rig, Tell
 from matchup.analysis.sampling import sampled_stages
 from matchup.analysis.window import WindowFinder
 from matchup.model.doubt import Doubt
-from matchup.model.job import Course, Job
+from matchup.model.job import Job
 from matchup.search.option import (
     DRIVES,
     GOES_DOWN,
@@ -28,7 +28,7 @@ from matchup.search.option import (
     VERDICTS,
     Option,
 )
-from matchup.search.way import Walk, find_targets, stage_plan, walk, wanted_on_the_way
+from matchup.search.way import Walk, walk
 from matchup.wave.layout import Flags, Floats, Integers
 
 STAGES_AT_ONCE = 20_000
@@ -108,11 +108,9 @@ class Player:
         )
         self.case = base_case(job)
         self.stages = [stage for stage in job.stages if stage.case == self.case]
-        planned = {plan.stage.name: plan for plan in option.plans if plan.verdict != GOES_DOWN}
-        at = option.target.at
-        self.kept = [
-            planned[stage.name].at if stage.name in planned else at for stage in self.stages
-        ]
+        struck = {plan.stage.name: plan for plan in option.plans if plan.verdict != GOES_DOWN}
+        # Where no stroke is planned, it is the target's.
+        self.planned = [struck.get(stage.name, option.target).at for stage in self.stages]
         self.workers, self.tell = workers, tell
         self.spent = 0
 
@@ -133,26 +131,11 @@ class Player:
         job = replace(self.job, stages=sampled.stages)
         rig = Rig(job, self.workers, self.tell, sampled.scales)
         finder = WindowFinder(rig, job_demands(rig))
-        if self.doubt.strokes == "keep":
-            walks = [Walk(course, 0, 0, None, self.kept, keeps=True) for course in job.courses]
-        else:
-            walks = self._adapting(finder, job.courses)
+        keeps = self.doubt.strokes == "keep"
+        walks = [Walk(course, 0, 0, None, self.planned, keeps) for course in job.courses]
         walk(finder, walks)
         self.spent += rig.spent
         return _outcomes(walks, finder)
-
-    def _adapting(self, finder: WindowFinder, courses: Sequence[Course]) -> list[Walk]:
-        """Return walks whose targets are planned as they would be in their own ground."""
-        targets = np.array([course.target for course in courses])
-        zero = np.zeros(targets.size, np.int64)
-        objective = self.job.search.objective
-        found = find_targets(finder, Cells(targets, zero, zero), objective)
-        made = []
-        for row, course in enumerate(courses):
-            target = stage_plan(finder, found, row)
-            wanted = wanted_on_the_way(finder, 0, target.at, objective)
-            made.append(Walk(course, 0, 0, target, [wanted] * len(course.stages)))
-        return made
 
 
 def base_case(job: Job) -> str:

@@ -95,8 +95,7 @@ class Walk:
     hammer, stack : int
         Places in a rig.
     target : StagePlan or None
-        Planned already, for every wear state asked for: nobody knows how worn the cushion is then.
-        None where strokes are kept.
+        Where it is planned already; None where it comes like any other stage.
     wanted : sequence of int
         Setting numbers, stage by stage, to keep as near to as works.
     keeps : bool
@@ -168,25 +167,6 @@ def _plans_ahead(finder: WindowFinder, going: Sequence[Walk]) -> list[StagePlan]
     return [plan for plan in ahead if plan is not None]
 
 
-def find_targets(finder: WindowFinder, cells: Cells, objective: str) -> Found:
-    """Return the strokes that an objective asks for at targets, or why there is none."""
-    found = finder.find(cells)
-    if objective == "time":
-        # The pile goes in fastest at the highest stroke: the set grows at least in proportion
-        # to it, and the blow rate falls at most in inverse proportion.
-        works = np.flatnonzero(found.state == OPEN)
-        if works.size:
-            some = cells.take(works)
-            tops = finder.tops(some, found.at[works])
-            found.put(works, finder.strike(some, tops))
-    return found
-
-
-def wanted_on_the_way(finder: WindowFinder, hammer: int, target: int, objective: str) -> int:
-    """Return the setting to keep as near to as works, where `target` is planned at the target."""
-    return int(finder.last_settings(np.array([hammer]))[0]) if objective == "time" else target
-
-
 def _play(finder: WindowFinder, cells: Cells, at: Integers) -> Found:
     """Return what kept settings do; one that falls short ends a drive, whatever its stresses."""
     found = finder.play(cells, at)
@@ -211,18 +191,20 @@ def _wear_ahead(finder: WindowFinder, one: Walk, stage: int) -> int:
     """Return the wear state in which the cushion arrives at the next stage.
 
     In a drive it follows from the blows taken down to the last station, and as many more as its
-    set foretells. Where the catalogue does not say how long a cushion stays new, and for stages
-    given by hand, every wear state asked for counts.
+    set foretells. At the target every wear state asked for counts, since it must be reached with
+    a cushion of any; so it does where the catalogue does not say how long one stays new, and for
+    stages given by hand.
     """
     rig = finder.rig
     cushion = rig.stacks[one.stack].pile
-    if rig.job.drive is None or cushion is None or cushion.material.new_for is None:
+    new_for = None if cushion is None else cushion.material.new_for
+    if rig.job.drive is None or new_for is None or stage == one.course.target:
         return EVERY_WEAR
     ahead = _at_pause(one, stage, finder).on_cushion
     if one.plans and one.plans[-1].verdict != GOES_DOWN:
         last = one.plans[-1]
         ahead += (rig.job.stages[stage].penetration - last.stage.penetration) / last.set
-    wear = "new" if ahead < cushion.material.new_for else "worn"
+    wear = "new" if ahead < new_for else "worn"
     return rig.wears.index(wear) if wear in rig.wears else EVERY_WEAR
 
 
