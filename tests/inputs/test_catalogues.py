@@ -119,6 +119,13 @@ def test_decimal_commas_where_commas_do_not_separate(hammers, separator):
     assert (hammer.ram_mass, hammer.stroke_max, hammer.efficiency) == (7500.0, 1.25, 0.55)
 
 
+def test_headers_and_names_that_are_broken_into_lines(hammers):
+    head = headed(ram_mass="ram\nmass\n[t]")
+    [hammer], problems, _ = hammers(write(",", head, changed(name="A\nlong  name")))
+    assert not problems
+    assert (hammer.name, hammer.ram_mass) == ("A long name", 9000.0)
+
+
 def test_columns_in_any_order(hammers):
     turned = [list(reversed(row)) for row in (HEAD, GOOD)]
     [hammer], problems, _ = hammers(write(",", *turned))
