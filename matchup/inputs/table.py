@@ -165,7 +165,8 @@ def _neighbours(path: Path) -> str:
     names = sorted(p.name for p in path.parent.iterdir() if p.suffix == path.suffix)
     if not names:
         return ""
-    return did_you_mean(path.name, names) or f"There: {', '.join(names[:8])}."
+    near = did_you_mean(path.stem, [Path(name).stem for name in names])
+    return near.replace("`?", f"{path.suffix}`?") or f"There: {', '.join(names[:8])}."
 
 
 _SIGNATURES = {

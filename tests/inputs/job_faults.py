@@ -73,10 +73,9 @@ FAULTS = [
         '"500 kN"',
         '"50 ton"',
         'stages 1 ("soft clay").shaft',
-        "must have a unit without doubt: 'ton' may be t (1000 kg), short ton (2000 lb), "
-        "long ton (2240 lb) or, as a weight, kip",
+        "must have a unit without doubt, and 'ton' may be several",
         '"50 ton"',
-        "",
+        "Write t (1000 kg), short ton (2000 lb), long ton (2240 lb) or, as a weight, kip.",
     ),
     (
         '"500 kN"',
