@@ -10,8 +10,11 @@ from pathlib import Path
 def starter_files() -> dict[str, str]:
     """Return the starter job's files, by name."""
     demo = _demo_folder()
+    here = files("matchup.inputs")
     return {
-        "job.toml": files("matchup.inputs").joinpath("starter.toml").read_text("utf-8"),
+        "job.toml": here.joinpath("starter.toml").read_text("utf-8"),
+        "drive.toml": here.joinpath("starter_drive.toml").read_text("utf-8"),
+        "layers.csv": here.joinpath("starter_layers.csv").read_text("utf-8"),
         "hammers.csv": demo.joinpath("hammers.csv").read_text("utf-8"),
         "cushions.csv": demo.joinpath("cushions.csv").read_text("utf-8"),
     }

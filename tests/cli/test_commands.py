@@ -23,6 +23,7 @@ ROOT = Path(__file__).parents[2]
 FINAL = str(examples.path("final_set"))
 TUBE = str(examples.path("dolphin_tube"))
 STAGES = str(examples.path("three_stages"))
+DRIVE = "examples/hollowmere_landing/whole_drive.toml"
 CURLEW = ("--hammer", "Curlew")
 GOSHAWK = ("--hammer", "Goshawk")
 COMMANDS = ("rank", "check", "window", "blow", "new", "lint", "schema", "completion")
@@ -277,7 +278,7 @@ def test_a_name_that_a_console_cannot_write_does_not_end_the_run():
 
 def test_ctrl_c_ends_with_130_and_leaves_nothing(tmp_path):
     process = subprocess.Popen(
-        [*PROGRAM, "rank", STAGES, "--csv", str(tmp_path / "x.csv")],
+        [*PROGRAM, "rank", DRIVE, "--csv", str(tmp_path / "x.csv")],
         cwd=ROOT,
         stdout=subprocess.PIPE,
         stderr=subprocess.PIPE,

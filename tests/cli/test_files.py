@@ -33,10 +33,11 @@ def test_new_writes_a_job_that_ranks(tmp_path):
 
 def test_new_says_what_every_key_is(tmp_path):
     run("new", tmp_path / "job")
-    text = (tmp_path / "job" / "job.toml").read_text(encoding="utf-8")
-    from matchup.inputs.schema import JobKeys, PileKeys, StageKeys
+    jobs = (tmp_path / "job" / name for name in ("job.toml", "drive.toml"))
+    text = "".join(path.read_text(encoding="utf-8") for path in jobs)
+    from matchup.inputs.schema import GroundKeys, JobKeys, PileKeys, StageKeys, TargetKeys
 
-    for model in (JobKeys, PileKeys, StageKeys):
+    for model in (JobKeys, PileKeys, StageKeys, GroundKeys, TargetKeys):
         missing = [name for name in model.model_fields if name not in text]
         assert not missing
 
