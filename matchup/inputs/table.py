@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from datetime import date, time
 from pathlib import Path
 
+from matchup.errors import Problem
 from matchup.inputs.findings import Findings, did_you_mean, shown_path
 
 SEPARATORS = (";", "\t", ",")
@@ -122,26 +123,39 @@ def _width(separator: str, rows: Sequence[_Cells]) -> int:
 
 def read_bytes(path: Path, findings: Findings) -> bytes | None:
     """Return a file's bytes, or note why they can't be had."""
+    findings.begin(shown_path(path))
+    fault = file_fault(path)
+    if fault is None:
+        try:
+            return path.read_bytes()
+        except OSError as error:
+            fault = _unreadable(path, error)
+    findings.problems.append(fault)
+    return None
+
+
+def file_fault(path: Path) -> Problem | None:
+    """Return what is wrong with a path that is no file to read; None where nothing is."""
     file = shown_path(path)
-    findings.begin(file)
     try:
         if path.is_dir():
-            findings.add(file, None, "", "must be a file", "a folder")
-        elif not path.exists():
-            must = "must be a file that exists; there is none of this name"
-            findings.add(file, None, "", must, do=_neighbours(path))
-        elif not path.is_file():
-            findings.add(file, None, "", "must be a file", "a device or a pipe")
-        elif path.stat().st_size > LARGEST_FILE:
+            return Problem(file, None, "", "must be a file", "a folder")
+        if not path.exists():
+            return Problem(file, None, "", "must be a file that exists", "", _neighbours(path))
+        if not path.is_file():
+            return Problem(file, None, "", "must be a file", "a device or a pipe")
+        if path.stat().st_size > LARGEST_FILE:
             must = f"must be at most {LARGEST_FILE // 1_000_000} MB"
-            findings.add(file, None, "", must, f"{path.stat().st_size // 1_000_000} MB")
-        else:
-            return path.read_bytes()
-    except (OSError, ValueError) as error:
-        why = getattr(error, "strerror", None) or str(error)
-        must = f"must be a file that can be read; this one can't: {why[:1].lower()}{why[1:]}"
-        findings.add(file, None, "", must)
+            return Problem(file, None, "", must, f"{path.stat().st_size // 1_000_000} MB")
+    except OSError as error:
+        return _unreadable(path, error)
     return None
+
+
+def _unreadable(path: Path, error: OSError) -> Problem:
+    why = error.strerror or str(error)
+    must = f"must be a file that can be read; this one can't: {why[:1].lower()}{why[1:]}"
+    return Problem(shown_path(path), None, "", must, "")
 
 
 def _neighbours(path: Path) -> str:
@@ -164,6 +178,8 @@ _SIGNATURES = {
 def decode(file: str, data: bytes, findings: Findings) -> str | None:
     """Return text in UTF-8, UTF-16 or Windows' western code page, or note that it is none."""
     known = next((known for known in _SIGNATURES if data.startswith(known)), None)
+    if _is_garbled(file, data, findings):
+        return None
     for encoding in _encodings(data) if known is None else []:
         try:
             text = data.decode(encoding)
@@ -174,6 +190,27 @@ def decode(file: str, data: bytes, findings: Findings) -> str | None:
     what, do = ("binary data", "") if known is None else _SIGNATURES[known]
     findings.add(file, None, "", "must be a text file", what, do)
     return None
+
+
+_SEVERAL_BYTES = re.compile(
+    rb"[\xc2-\xdf][\x80-\xbf]|[\xe0-\xef][\x80-\xbf]{2}|[\xf0-\xf4][\x80-\xbf]{3}"
+)
+"""A letter of UTF-8; in a text of Windows, an unlikely row of accents and marks."""
+
+
+def _is_garbled(file: str, data: bytes, findings: Findings) -> bool:
+    """Note that a text in UTF-8 has a byte that is none, which would garble all other letters."""
+    try:
+        data.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        if _encodings(data)[0] != "utf-8-sig" or not _SEVERAL_BYTES.search(data):
+            return False
+        line = data[: error.start].count(b"\n") + 1
+        found = f"the byte {data[error.start]:#04x} among letters of UTF-8"
+        do = "Type the line again, and save the file as UTF-8."
+        findings.add(file, line, "", "must be text in one encoding", found, do)
+        return True
+    return False
 
 
 def _encodings(data: bytes) -> list[str]:

@@ -583,6 +583,13 @@ def test_a_bad_cushion(cushions, cells, place, must, found, do):
     assert catalogue.is_broken(cells[0])
 
 
+def test_a_torn_row_of_a_cushion_is_told_once_and_its_name_is_known(cushions):
+    catalogue, [problem], _ = cushions(replaced(CUSHIONS, ("414", "4,14")))
+    assert told(problem)[1:5] == (3, "oak", "must have the header's 5 cells", "6 cells")
+    assert catalogue.is_broken("Oak")
+    assert catalogue.find("oak") is None
+
+
 def test_the_life_of_a_cushion_is_longer_than_it_is_new(cushions):
     text = "name,use,modulus [MPa],restitution,new_for,life\noak,pile,400,0.5,300,200\n"
     _, [problem], _ = cushions(text)
