@@ -215,7 +215,12 @@ class CheckResult(RankingResult):
         return self._with_opinions(check_page(self.ranking, units), units)
 
     def figure(self, display: str | None = None) -> Figure:
-        """Draw how far the hammer is from what is asked of it."""
+        """Draw what the hammer hangs on, or else how far it is from what is asked of it."""
+        odds = self.option.odds
+        if odds is not None and odds.influences is not None:
+            from matchup.report.figures.doubt import doubt_figure
+
+            return doubt_figure(odds)
         from matchup.report.figures.margins import margins_figure
 
         return margins_figure((self.option,), self.ranking, _units(self.job, display))
@@ -668,6 +673,7 @@ def tender_report(
     workers: int | None = None,
     seed: int | None = None,
     tell: Tell | None = None,
+    samples: int | None = None,
 ) -> ReportResult:
     """Compute all that a tender report tells of.
 
@@ -682,6 +688,8 @@ def tender_report(
         Replaces the job's.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
 
     Raises
     ------
@@ -690,10 +698,15 @@ def tender_report(
     """
     job = _job(job)
     name = None if detail is None else select_hammer(job, detail).name
-    ranking = rank(job, workers, seed, tell).ranking
+    wanted = _samples(job, samples)
+    ranking = rank(job, workers, seed, tell, samples=0).ranking
     job = ranking.job
     everyone = (*ranking.options, *ranking.rejected)
-    option = next(o for o in everyone if name in (None, o.hammer.name))
+    name = name or everyone[0].hammer.name
+    if wanted:
+        ranking = with_odds(ranking, wanted, workers, tell, influences=(name,))
+        everyone = (*ranking.options, *ranking.rejected)
+    option = next(o for o in everyone if o.hammer.name == name)
     alone = replace(job, hammers=(option.hammer,))
     proof = None
     if job.drive is not None and option.drives:
@@ -740,7 +753,9 @@ def _samples(job: Job, samples: int | None) -> int:
 def _ranked_alone(job: Job, samples: int, workers: int | None, tell: Tell | None) -> Ranking:
     """Return the ranking of a lone hammer, with its odds and what matters if samples are played."""
     ranking = rank_hammers(job, workers, tell)
-    return with_odds(ranking, samples, workers, tell, influences=True) if samples else ranking
+    if not samples:
+        return ranking
+    return with_odds(ranking, samples, workers, tell, influences=(job.hammers[0].name,))
 
 
 def _with_selected(job: Job, selection: Selection, problems: list[Problem]) -> Job:

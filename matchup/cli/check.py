@@ -7,7 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, Samples, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, Samples, show_result
 
 
 def check(
@@ -15,6 +15,7 @@ def check(
     *,
     hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
     samples: Samples = None,
+    plot: Plot = None,
     formulas: Annotated[
         bool, Parameter(negative="", help="Add dynamic formulas as a second opinion.")
     ] = False,
@@ -27,5 +28,5 @@ def check(
         result = api.check(
             job, hammer, workers=common.workers, tell=tell, samples=samples, formulas=formulas
         )
-    show_result(result, common)
+    show_result(result, common, plot=plot)
     return 0 if result.can else THE_ANSWER_IS_NO

@@ -37,7 +37,8 @@ def doubt_blocks(ranking: Ranking, units: Units) -> list[Block]:
     for option in looked:
         assert option.odds is not None
         if option.odds.influences is not None:
-            blocks += _influence_blocks(option.odds, units)
+            who = f"{option.hammer.name}: " if len(looked) > 1 else ""
+            blocks += _influence_blocks(option.odds, who, units)
     return [*blocks, Prose(tuple(_basis(ranking.job, looked)))]
 
 
@@ -45,7 +46,8 @@ def _finding(options: Sequence[Option]) -> str:
     """Return which option is the surest, or how sure a lone one is."""
     best = max(options, key=lambda option: _odds(option).works.value)
     odds = _odds(best)
-    works = f"works in {odds.works.value:.1%} of {odds.samples} samples"
+    share = "all" if odds.works.value == 1 else f"{odds.works.value:.1%} of"
+    works = f"works in {share} {odds.samples} samples"
     error = f"(standard error {100 * odds.works.error:.1f} points)"
     if len(options) > 1:
         return f"the surest is {best.hammer.name}, which {works} {error}."
@@ -141,10 +143,8 @@ def _basis(job: Job, options: Sequence[Option]) -> list[str]:
         f"Doubt, as factors on{case or ' what the job says'}: {_doubted(job.doubt)}. "
         f"Samples: {HOW[odds.strokes]}.",
         f"{odds.scramblings} independently scrambled Sobol sequences, seed {job.search.seed}; "
-        "standard errors follow from the scatter between them, at most "
-        f"{100 * max(_odds(option).worst_error for option in options):.2g} points of a "
-        "probability and % of a median. Blows and minutes are of the samples that reach the "
-        "target.",
+        "standard errors follow from the scatter between them: "
+        f"{_errors([_odds(option) for option in options])}.",
     ]
     asked = job.doubt.standard_error
     missed = [o.hammer.name for o in options if asked and _odds(o).worst_error > asked]
@@ -154,6 +154,19 @@ def _basis(job: Job, options: Sequence[Option]) -> list[str]:
             f"than {odds.samples} samples are not drawn."
         )
     return lines
+
+
+def _errors(odds: Sequence[Odds]) -> str:
+    """Return how large the standard errors are, in words."""
+    shares = max(one.share_error for one in odds)
+    text = f"at most {100 * shares:.1f} points of a probability"
+    if not any(one.blows for one in odds):
+        return text
+    drives = max(one.drive_error for one in odds)
+    return (
+        f"{text}, and {100 * drives:.1f}% of the median for blows and minutes, which are of the "
+        "samples that reach the target"
+    )
 
 
 def _doubted(doubt: Doubt) -> str:
@@ -168,12 +181,12 @@ def _doubted(doubt: Doubt) -> str:
 # --- what matters -------------------------------------------------------------------------------
 
 
-def _influence_blocks(odds: Odds, units: Units) -> list[Block]:
+def _influence_blocks(odds: Odds, who: str, units: Units) -> list[Block]:
     """Return what an option hangs on."""
     found = odds.influences
     assert found is not None
     blocks: list[Block] = [
-        Headline(hangs_on(odds)),
+        Headline(f"{who}{hangs_on(odds)}"),
         influences_table(found),
         Headline("One input at a time at its P10 and P90, the others at their medians:"),
         swings_table(found, units),
@@ -186,20 +199,25 @@ def _influence_blocks(odds: Odds, units: Units) -> list[Block]:
     return [*blocks, Prose((note,))]
 
 
-def hangs_on(odds: Odds) -> str:
-    """Return in a sentence what verdict and time hang on."""
+def hangs_on(odds: Odds, shares: bool = True) -> str:
+    """Return in a sentence what verdict and time hang on, with or without shares."""
     found = odds.influences
     assert found is not None
-    works, time = _leading(found, lambda one: one.works), _leading(found, lambda one: one.time)
+    works, time = (
+        _leading(found, of, shares) for of in (lambda one: one.works, lambda one: one.time)
+    )
     if works:
-        told = f"The verdict hangs on {works}"
+        told = f"the verdict hangs on {works}"
     else:
         every = "works" if odds.works.value > 0.5 else "fails"
-        told = f"The verdict is in no doubt: every one of {found.samples} drives {every}"
-    return f"{told}; the time of the drive hangs on {time}." if time else f"{told}."
+        told = f"the verdict is in no doubt: every one of {found.samples} drives {every}"
+    told = f"{told}; the time of the drive hangs on {time}" if time else told
+    return f"{told[:1].upper()}{told[1:]}."
 
 
-def _leading(found: Influences, of: Callable[[Influence], Indices | None]) -> str:
+def _leading(
+    found: Influences, of: Callable[[Influence], Indices | None], with_shares: bool
+) -> str:
     """Return the inputs with the largest shares of a variance, with these; empty if none has."""
     shares = [(indices.total, one.name) for one in found.inputs if (indices := of(one))]
     sure = [(share.value, name) for share, name in shares if share.value > 2 * share.error]
@@ -207,7 +225,10 @@ def _leading(found: Influences, of: Callable[[Influence], Indices | None]) -> st
         return "no single input for sure" if shares else ""
     most = max(sure)[0]
     named = [(value, name) for value, name in sorted(sure, reverse=True) if value >= NAMED * most]
-    words = [f"{name} ({min(value, 1):.0%} of its variance)" for value, name in named[:MOST_NAMED]]
+    words = [
+        f"{name} ({min(value, 1):.0%} of its variance)" if with_shares else name
+        for value, name in named[:MOST_NAMED]
+    ]
     return " and ".join([", ".join(words[:-1]), words[-1]] if len(words) > 1 else words)
 
 
@@ -262,7 +283,7 @@ def _swing(
             lambda one: units.value(of(one).depth, "length"),
         ),
         (Column(f"{key}_blows", "blows", 0, keep=6), lambda one: of(one).blows),
-        (Column(f"{key}_minutes", "min", 1, keep=6), lambda one: _minutes(of(one))),
+        (Column(f"{key}_minutes", "min", 1, keep=6), lambda one: minutes(of(one).seconds)),
     ]
 
 
@@ -270,8 +291,9 @@ def _told(swing: Swing) -> str:
     return "works" if swing.verdict in CAN_DRIVE else swing.verdict
 
 
-def _minutes(swing: Swing) -> float | None:
-    return None if swing.seconds is None else swing.seconds / 60
+def minutes(seconds: float | None) -> float | None:
+    """Return seconds as minutes; None where they are not known."""
+    return None if seconds is None else seconds / 60
 
 
 # --- documents ----------------------------------------------------------------------------------
@@ -349,5 +371,5 @@ def _swing_document(swing: Swing) -> dict[str, Any]:
         "verdict": swing.verdict,
         "stopped_at_m": swing.depth,
         "blows": swing.blows,
-        "minutes": _minutes(swing),
+        "minutes": minutes(swing.seconds),
     }

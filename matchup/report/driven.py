@@ -13,7 +13,7 @@ from matchup.report.document import (
     check_document,
     number,
 )
-from matchup.report.doubted import doubt_blocks
+from matchup.report.doubted import doubt_blocks, minutes
 from matchup.report.options import blow_count, measured, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.ranked import foot
@@ -123,11 +123,6 @@ def _which(plan: StagePlan | None) -> str | None:
     if plan is None:
         return None
     return "compression" if plan.compression_use >= plan.tension_use else "tension"
-
-
-def minutes(seconds: float | None) -> float | None:
-    """Return seconds as minutes; None where they are not known."""
-    return None if seconds is None else seconds / 60
 
 
 def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:

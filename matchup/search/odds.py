@@ -155,14 +155,23 @@ class Odds:
     analyses: int
 
     @property
-    def worst_error(self) -> float:
-        """Largest standard error of a probability, or of a percentile over the median [-]."""
+    def share_error(self) -> float:
+        """Largest standard error of a probability [-]."""
         shares = (self.works, self.reaches, self.refuses, self.short, self.breaks)
-        errors = [share.error for share in shares]
-        for spread in (self.blows, self.seconds):
-            if spread is not None:
-                errors += [one.error / spread.p50.value for one in spread if spread.p50.value > 0]
-        return max(errors)
+        return max(share.error for share in shares)
+
+    @property
+    def drive_error(self) -> float:
+        """Largest standard error of a percentile of blows or time, over the median [-]."""
+        known = [spread for spread in (self.blows, self.seconds) if spread is not None]
+        return max(
+            (one.error / s.p50.value for s in known for one in s if s.p50.value > 0), default=0.0
+        )
+
+    @property
+    def worst_error(self) -> float:
+        """The larger of both [-]."""
+        return max(self.share_error, self.drive_error)
 
 
 def probability(held: Flags) -> Estimate:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import time
+from collections.abc import Collection
 from dataclasses import replace
 
 from matchup.analysis.rig import Rig, Tell
@@ -14,7 +15,7 @@ from matchup.search.plan import Planner
 from matchup.search.reach import find_reach
 
 LOOKED_AT = 5
-"""Options of a ranking whose odds under doubt are looked at; a lone hammer's always are."""
+"""Options of a ranking whose odds under doubt are looked at."""
 
 
 def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None) -> Ranking:
@@ -50,7 +51,7 @@ def with_odds(
     workers: int | None = None,
     tell: Tell | None = None,
     *,
-    influences: bool = False,
+    influences: Collection[str] = (),
 ) -> Ranking:
     """Return a ranking whose best options have their odds under the job's doubt.
 
@@ -61,20 +62,23 @@ def with_odds(
         Of each option, at least.
     workers, tell
         As for `rank_hammers`.
-    influences : bool
-        Find out as well what matters to each of them.
+    influences : collection of str
+        Names of hammers that are looked at in any case, and of which it is found out what matters.
     """
     started = time.perf_counter()
     options, rejected = ranking.options, ranking.rejected
-    if not options and len(rejected) == 1 and rejected[0].verdict not in (PILE_RUNS, NOT_ANALYSED):
-        chosen: tuple[Option, ...] = rejected
-    else:
-        chosen = options[:LOOKED_AT]
     found = {
         option.hammer.name: find_odds(
-            ranking.job, option, samples, workers, tell, influences=influences
+            ranking.job,
+            option,
+            samples,
+            workers,
+            tell,
+            influences=option.hammer.name in influences,
         )
-        for option in chosen
+        for place, option in enumerate((*options, *rejected))
+        if place < min(LOOKED_AT, len(options)) or option.hammer.name in influences
+        if option.verdict not in (PILE_RUNS, NOT_ANALYSED)
     }
     return replace(
         ranking,

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import matchup
+from matchup.report.doubted import doubt_blocks
 from matchup.report.driven import (
     answer,
     cases_table,
@@ -79,6 +80,7 @@ def sections(dossier: Dossier, units: Units) -> tuple[Section, ...]:
         _options,
         _rejected,
         _plan,
+        _doubt,
         _window,
         _blows,
         _inputs,
@@ -172,6 +174,25 @@ def _drive(dossier: Dossier, units: Units) -> list[Block]:
     if dossier.criterion is not None:
         blocks += criterion_page(dossier.criterion, dossier.job, units)
     return blocks
+
+
+def _doubt(dossier: Dossier, units: Units) -> Section | None:
+    blocks = doubt_blocks(dossier.ranking, units)
+    if not blocks:
+        return None
+    odds = dossier.detail.odds
+    if odds is not None and odds.influences is not None:
+        from matchup.report.figures.doubt import doubt_figure
+
+        blocks.append(
+            _picture(
+                "doubt",
+                doubt_figure(odds),
+                f"What {dossier.detail.hammer.name} hangs on: the drive with one input at a time "
+                "at its P10 and P90, and each input's share of the doubt.",
+            )
+        )
+    return Section("What becomes of the plans under doubt", tuple(blocks))
 
 
 def _window(dossier: Dossier, units: Units) -> Section:
