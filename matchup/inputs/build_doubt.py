@@ -136,7 +136,7 @@ def _note_without_effect(
     deepest = max((stage.penetration for stage in stages or ()), default=math.inf)
     for of in FACTORS:
         for path, place, one in _tables(given, of):
-            if (one.from_ or 0.0) >= deepest:
+            if (one.from_ or 0.0) > deepest:
                 text.notice((*path, *place), "has no effect: the pile does not get there")
 
 

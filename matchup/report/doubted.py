@@ -89,6 +89,7 @@ def odds_table(options: Sequence[Option], units: Units) -> Table:
         _share("short_of_set", "no set\n%", lambda odds: odds.short),
         _share("over_compression", "over\ncompr.\n%", lambda odds: odds.compression),
         _share("over_tension", "over\ntension\n%", lambda odds: odds.tension),
+        *_others(options),
         (
             Column(units.key("refusal_depth_p50", "length"), f"stopped\nat {length}\nP50", 1),
             lambda o: _middle(_odds(o).refusal_depth, units),
@@ -102,6 +103,14 @@ def odds_table(options: Sequence[Option], units: Units) -> Table:
     else:
         fields += _percentiles("stress_percent", "stress\n%", lambda odds: odds.stress_use, 100.0)
     return tabled(options, fields)
+
+
+def _others(options: Sequence[Option]) -> list[Field[Option]]:
+    """Return the column of what else stops samples, where anything does."""
+    if not any(_odds(option).others for option in options):
+        return []
+    column = Column("other_percent", "other\n%", 1)
+    return [(column, lambda o: 100 * sum(share.value for _, share in _odds(o).others))]
 
 
 def works_column() -> Field[Option]:
@@ -239,6 +248,8 @@ def influences_table(found: Influences) -> Table:
         ("verdict", "verdict", lambda one: one.works),
         ("time", "time", lambda one: one.time),
     ):
+        if not any(of(one) for one in found.inputs):
+            continue
         for place, order, header in ((0, "first", "alone"), (1, "total", "in all")):
             fields += _index(f"{key}_{order}", f"{words}\n{header}", of, place)
     return tabled(found.inputs, fields)
@@ -266,25 +277,29 @@ def swings_table(found: Influences, units: Units) -> Table:
         ("p10", "P10", lambda one: one.low),
         ("p90", "P90", lambda one: one.high),
     ):
-        fields += _swing(key, header, of, units)
+        fields += _swing(key, header, of, units, found.middle.blows is not None)
     return tabled(found.inputs, fields)
 
 
 def _swing(
-    key: str, header: str, of: Callable[[Influence], Swing], units: Units
+    key: str, header: str, of: Callable[[Influence], Swing], units: Units, takes_time: bool
 ) -> list[Field[Influence]]:
     """Return the columns of one side."""
     length = units.unit("length")
-    return [
+    fields: list[Field[Influence]] = [
         (Column(f"{key}_factor", f"factor\n{header}", 2), lambda one: of(one).factor),
         (Column(f"{key}_verdict", "then", wrap=16), lambda one: _told(of(one))),
         (
             Column(units.key(f"{key}_stopped_at", "length"), f"at\n{length}", 1, keep=4),
             lambda one: units.value(of(one).depth, "length"),
         ),
-        (Column(f"{key}_blows", "blows", 0, keep=6), lambda one: of(one).blows),
-        (Column(f"{key}_minutes", "min", 1, keep=6), lambda one: minutes(of(one).seconds)),
     ]
+    if takes_time:
+        fields += [
+            (Column(f"{key}_blows", "blows", 0, keep=6), lambda one: of(one).blows),
+            (Column(f"{key}_minutes", "min", 1, keep=6), lambda one: minutes(of(one).seconds)),
+        ]
+    return fields
 
 
 def _told(swing: Swing) -> str:
