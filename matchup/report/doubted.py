@@ -244,14 +244,14 @@ def _leading(
 def influences_table(found: Influences) -> Table:
     """Return the shares of variance that inputs account for."""
     fields: list[Field[Influence]] = [(Column("input", "input", wrap=34), lambda one: one.name)]
-    for key, words, of in (
-        ("verdict", "verdict", lambda one: one.works),
-        ("time", "time", lambda one: one.time),
-    ):
-        if not any(of(one) for one in found.inputs):
-            continue
-        for place, order, header in ((0, "first", "alone"), (1, "total", "in all")):
-            fields += _index(f"{key}_{order}", f"{words}\n{header}", of, place)
+    shares: list[tuple[str, Callable[[Influence], Indices | None]]] = [
+        ("verdict", lambda one: one.works),
+        ("time", lambda one: one.time),
+    ]
+    for what, of in shares:
+        if any(of(one) for one in found.inputs):
+            fields += _index(f"{what}_first", f"{what}\nalone", of, 0)
+            fields += _index(f"{what}_total", f"{what}\nin all", of, 1)
     return tabled(found.inputs, fields)
 
 
