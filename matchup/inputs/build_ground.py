@@ -16,6 +16,7 @@ from matchup.ground.cases import Case, Loosened, Pause
 from matchup.ground.methods import METHODS
 from matchup.ground.soil import SetupLaw
 from matchup.ground.stages import resistance_stages
+from matchup.inputs.build_pile import length_of, length_typed
 from matchup.inputs.findings import Findings
 from matchup.inputs.job_text import JobText, named_file
 from matchup.inputs.layers import read_layers, read_resistance_table
@@ -172,8 +173,8 @@ def _stations(text: JobText, keys: JobKeys, given: GroundKeys) -> Any:
     if keys.target and keys.target.set is None:
         do = 'Write for example set = "4 mm", or the refusal set itself.'
         text.wrong(("target", "set"), "must be given with a [ground]", do)
-    if target > keys.pile.length:
-        must = f"must be at most the pile's length, {text.typed(('pile', 'length'))}"
+    if target > length_of(keys.pile) * (1 + 1e-9):
+        must = f"must be at most the pile's length, {length_typed(text, keys.pile)}"
         text.wrong(("target", "penetration"), must)
     if given.start > target:
         must = f"must be at most the target's {text.typed(('target', 'penetration'))}"

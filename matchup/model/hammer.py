@@ -135,6 +135,16 @@ class Hammer:
         lifted = 1 / (stroke / self.lift_speed + fall)
         return lifted if self.blow_rate_max is None else min(lifted, self.blow_rate_max)
 
-    def impact_velocity(self, stroke: float) -> float:
-        """Return ``sqrt(2 g h efficiency)`` [m/s]."""
-        return math.sqrt(2 * STANDARD_GRAVITY * stroke * self.efficiency)
+    def share_at_impact(self, rake: float) -> float:
+        """Return the share of the blow energy that is left at impact, along a raked pile.
+
+        Parameters
+        ----------
+        rake : float
+            Angle between the pile and the vertical. [rad]
+        """
+        return self.efficiency * math.cos(rake)
+
+    def impact_velocity(self, stroke: float, rake: float = 0.0) -> float:
+        """Return ``sqrt(2 g h share)`` with the share of the energy left at impact [m/s]."""
+        return math.sqrt(2 * STANDARD_GRAVITY * stroke * self.share_at_impact(rake))

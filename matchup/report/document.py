@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterable
 from typing import Any
 
 from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
 from matchup.model.job import Job
+from matchup.model.limits import PartLimits
 from matchup.report.sentences import reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, Ranking, StagePlan
@@ -18,15 +20,29 @@ SCHEMA_VERSION = 1
 def limits_document(job: Job) -> dict[str, object]:
     """Return the stress limits and their sources."""
     limits = job.limits
+    parts = [{"part": part.part or None, **_part_limits(part)} for part in limits.parts]
     return {
-        "compression_MPa": limits.compression / 1e6,
-        "tension_MPa": limits.tension / 1e6,
-        "compression_rule": limits.squeeze.text,
-        "compression_values_MPa": {name: value / 1e6 for name, value in limits.squeeze.values},
-        "tension_rule": limits.pull.text,
-        "tension_values_MPa": {name: value / 1e6 for name, value in limits.pull.values},
+        **_part_limits(limits.parts[-1]),
         "warnings": list(limits.warnings),
+        "parts": parts if len(parts) > 1 else None,
     }
+
+
+def _part_limits(part: PartLimits) -> dict[str, object]:
+    """Return both limits of a part; null where they are not limited."""
+    return {
+        "compression_MPa": number(part.squeeze.stress, 1e-6),
+        "tension_MPa": number(part.pull.stress, 1e-6),
+        "compression_rule": part.squeeze.text,
+        "compression_values_MPa": {name: value / 1e6 for name, value in part.squeeze.values},
+        "tension_rule": part.pull.text,
+        "tension_values_MPa": {name: value / 1e6 for name, value in part.pull.values},
+    }
+
+
+def peak(stresses: Iterable[float], job: Job) -> float | None:
+    """Return the largest stress [MPa]; None where parts have limits, and so peaks, of their own."""
+    return None if job.limits.differ else number(max(stresses), 1e-6)
 
 
 def number(value: float | None, scale: float = 1.0) -> float | None:
@@ -86,9 +102,9 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "blows_per_25cm": blows_per_25cm(plan.set),
         "blow_energy_kJ": number(plan.blow_energy, 1e-3),
         "transferred_energy_kJ": number(plan.transferred, 1e-3),
-        "peak_compression_MPa": number(max(p.compression for p in option.plans), 1e-6),
+        "peak_compression_MPa": peak((p.compression for p in option.plans), job),
         "compression_use": number(option.compression_use),
-        "peak_tension_MPa": number(max(p.tension for p in option.plans), 1e-6),
+        "peak_tension_MPa": peak((p.tension for p in option.plans), job),
         "tension_use": number(option.tension_use),
         "blow_rate_per_min": number(plan.blow_rate, 60),
         "blows_total": None if option.slowest is None else option.slowest.taken.blows,
@@ -183,8 +199,10 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
         "toe_displacement_max_mm": 1e3 * blow.toe_most,
         "peak_compression_MPa": blow.compression / 1e6,
         "peak_compression_at_m": blow.compression_at,
+        "peak_compression_in": blow.compression_in or None,
         "peak_tension_MPa": blow.tension / 1e6,
         "peak_tension_at_m": blow.tension_at,
+        "peak_tension_in": blow.tension_in or None,
         "compression_use": blow.compression_use,
         "tension_use": blow.tension_use,
         "head_force_peak_kN": blow.head_force / 1e3,

@@ -12,6 +12,7 @@ from matchup.report.document import (
     blows_per_25cm,
     check_document,
     number,
+    peak,
 )
 from matchup.report.options import blow_count, measured, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
@@ -289,7 +290,9 @@ def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
         "schema_version": SCHEMA_VERSION,
         **checked,
         "cases": [_case_document(drive) for drive in option.cases],
-        "stations": [_station_document(plan) for drive in option.cases for plan in drive.plans],
+        "stations": [
+            _station_document(plan, ranking.job) for drive in option.cases for plan in drive.plans
+        ],
     }
 
 
@@ -308,7 +311,7 @@ def _case_document(drive: CaseDrive) -> dict[str, Any]:
     }
 
 
-def _station_document(plan: StagePlan) -> dict[str, Any]:
+def _station_document(plan: StagePlan, job: Job) -> dict[str, Any]:
     stage = plan.stage
     moves = plan.verdict == GOES_DOWN
     taken = plan.taken
@@ -326,8 +329,8 @@ def _station_document(plan: StagePlan) -> dict[str, Any]:
         "set_needed_mm": 1e3 * stage.set_needed,
         "set_mm": number(plan.set, 1e3),
         "blows_per_25cm": None if moves else blows_per_25cm(plan.set),
-        "compression_MPa": number(plan.compression, 1e-6),
-        "tension_MPa": number(plan.tension, 1e-6),
+        "compression_MPa": peak((plan.compression,), job),
+        "tension_MPa": peak((plan.tension,), job),
         "compression_use": number(plan.compression_use),
         "tension_use": number(plan.tension_use),
         "transferred_energy_kJ": number(plan.transferred, 1e-3),

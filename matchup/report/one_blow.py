@@ -40,13 +40,13 @@ def _figures(blow: Blow, units: Units) -> Table:
         (
             "peak compression",
             units.text(blow.compression, "stress"),
-            f"{share_text(blow.compression_use)} of the limit, "
+            f"{share_text(blow.compression_use)} of the limit{_of(blow.compression_in)}, "
             f"{units.text(blow.compression_at, 'length')} from the head",
         ),
         (
             "peak tension",
             units.text(blow.tension, "stress"),
-            f"{share_text(blow.tension_use)} of the limit, "
+            f"{share_text(blow.tension_use)} of the limit{_of(blow.tension_in)}, "
             f"{units.text(blow.tension_at, 'length')} from the head",
         ),
         ("hammer cushion", "", units.retold(blow.hammer_cushion)),
@@ -79,6 +79,10 @@ def _figures(blow: Blow, units: Units) -> Table:
         Column("remark", "remark", wrap=60),
     )
     return Table(columns, tuple(rows))
+
+
+def _of(part: str) -> str:
+    return f" of {part}" if part else ""
 
 
 def blow_notices(blow: Blow, job: Job, units: Units) -> list[str]:

@@ -6,7 +6,7 @@ import math
 from collections.abc import Callable, Sequence
 
 from matchup.report.sentences import needed_set
-from matchup.report.shown import Units, percent
+from matchup.report.shown import Units, percent, share_text
 from matchup.report.table import AtLeast, Column, Field, Row, Table, tabled
 from matchup.search.option import REDUCED, Option, Ranking, StagePlan
 
@@ -192,6 +192,9 @@ def margins_table(option: Option, ranking: Ranking, units: Units) -> Table:
     ):
         if math.isfinite(found):
             peak, most = units.together(found, limit, "stress")
+            if job.limits.differ:
+                # Stresses of parts with limits of their own compare by their use alone.
+                peak, most = f"{share_text(keep * found / limit)} of its limit", share_text(keep)
             rows.append((f"peak {name}", peak, f"at most {most}", 100 * (1 - found / limit)))
     if option.reach is not None:
         reach = f"{option.reach:.2f}{'+' if option.reach_is_open else ''}"

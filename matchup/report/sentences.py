@@ -7,7 +7,7 @@ from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
 from matchup.model.job import Job
-from matchup.model.limits import Limit
+from matchup.model.limits import NOT_LIMITED, Limit, StressLimits
 from matchup.model.stage import Stage
 from matchup.report.shown import Units, share_text
 from matchup.search.cure import BEYOND, HEAVIER
@@ -230,10 +230,7 @@ def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
 def basis(job: Job, units: Units) -> list[str]:
     """Return what the answer rests on: limits with their sources, defaults, warnings."""
     limits = job.limits
-    lines = [
-        f"Limits: compression {_limit(limits.squeeze, units)}; "
-        f"tension {_limit(limits.pull, units)}."
-    ]
+    lines = _limits(limits, units)
     keep = job.search.reserve
     if keep:
         lines.append(
@@ -251,8 +248,24 @@ def basis(job: Job, units: Units) -> list[str]:
     return lines
 
 
+def _limits(limits: StressLimits, units: Units) -> list[str]:
+    """Return the stress limits, parts with the same ones told together."""
+    told: dict[str, list[str]] = {}
+    for part in limits.parts:
+        both = (_limit(part.squeeze, units), _limit(part.pull, units))
+        text = f"compression {both[0]}; tension {both[1]}"
+        if part.squeeze == part.pull:
+            text = f"compression and tension {both[0]}"
+        told.setdefault(text, []).append(part.part)
+    if len(told) == 1:
+        return [f"Limits: {text}." for text in told]
+    return [f"Limits of {' and '.join(names)}: {text}." for text, names in told.items()]
+
+
 def _limit(limit: Limit, units: Units) -> str:
     """Return a stress limit with its rule, clause, formula and the numbers in it."""
+    if limit == NOT_LIMITED:
+        return limit.text
     values = [f"{name} {units.text(value, 'stress')}" for name, value in limit.values]
     told = f"{limit.text}; {', '.join(values)}" if values else limit.text
     return f"{units.text(limit.stress, 'stress')} ({told})"
