@@ -153,8 +153,7 @@ def enough_segments(pile: Pile, cushioned: bool, stages: Sequence[Stage] = ()) -
 def pile_contact(pile: Pile) -> Spring:
     """Return the spring between helmet and pile where there is no pile cushion."""
     head = pile.head
-    share = head.section.area_at(0.0) / head.section.area
-    stiffness = share * head.stiffness / PILE_CONTACT_LENGTH
+    stiffness = head.impedance_at(0.0) * head.wave_speed / PILE_CONTACT_LENGTH
     return Spring(stiffness, PILE_CONTACT_RESTITUTION)
 
 

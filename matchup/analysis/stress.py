@@ -60,6 +60,14 @@ def uses_of_segments(chains: Chains, limits: StressLimits, envelope: Floats) -> 
     return np.asarray(at_ends / bearable[:, None, :])
 
 
+def uses_at_nodes(chains: Chains, limits: StressLimits, envelope: Floats) -> Floats:
+    """Return the uses of the stress limits at the nodes, (nodes, 2), the larger of both sides."""
+    ends = uses_of_segments(chains, limits, envelope)
+    above = np.concatenate((ends[:1, 0], ends[:, 1]))
+    below = np.concatenate((ends[:, 0], ends[-1:, 1]))
+    return np.asarray(np.maximum(above, below))
+
+
 def _forces(envelope: Floats) -> Floats:
     """Return the largest compressive and tensile forces, both positive."""
     return np.asarray(np.maximum(envelope * (1.0, -1.0), 0.0))

@@ -50,6 +50,7 @@ def build_drive(
     given = keys.ground
     assert given is not None
     before = len(findings.problems)
+    _check_pile(text, keys, pile)
     ground = _ground(text, given, findings)
     cases = _cases(text, given, ground.table if ground else None)
     stations = _stations(text, keys, given)
@@ -129,6 +130,16 @@ def _ground(text: JobText, given: GroundKeys, findings: Findings) -> Ground | No
             given.unit_weight,
         ),
     )
+
+
+def _check_pile(text: JobText, keys: JobKeys, pile: Pile | None) -> None:
+    """Note piles that resistance methods do not know: raked ones, and those of several outlines."""
+    if keys.pile.rake:
+        must = "must be left out with a [ground], which goes by depth"
+        text.wrong(("pile", "rake"), must, "Give [[stages]] along the raked pile.")
+    if pile is not None and len({part.section.perimeter for part in pile.parts}) > 1:
+        must = "must have one outline with a [ground]"
+        text.wrong(("pile", "parts"), must, "Give [[stages]].", "parts of different perimeter")
 
 
 def _cases(text: JobText, given: GroundKeys, table: ResistanceTable | None) -> list[Case]:

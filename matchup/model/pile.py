@@ -340,6 +340,10 @@ class Part:
         """``E A / c``, of a tapered part the mean [N s/m]."""
         return self.stiffness / self.wave_speed
 
+    def impedance_at(self, share: float) -> float:
+        """Return the impedance at a share of the length from the head [N s/m]."""
+        return self.impedance * self.section.area_at(share) / self.section.area
+
     @property
     def bearing_area(self) -> float:
         """Force over the stress in the part's own material [m2].

@@ -215,11 +215,19 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
     if traces:
         envelope, trace = blow.envelope, blow.trace
         document["envelope"] = [
-            {"distance_m": x, "compression_MPa": c / 1e6, "tension_MPa": t / 1e6}
-            for x, c, t in zip(
+            {
+                "distance_m": x,
+                "compression_MPa": c / 1e6,
+                "tension_MPa": t / 1e6,
+                "compression_use": cu,
+                "tension_use": tu,
+            }
+            for x, c, t, cu, tu in zip(
                 envelope.distance.tolist(),
                 envelope.compression.tolist(),
                 envelope.tension.tolist(),
+                envelope.compression_use.tolist(),
+                envelope.tension_use.tolist(),
                 strict=True,
             )
         ]

@@ -229,6 +229,19 @@ def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
 
 def basis(job: Job, units: Units) -> list[str]:
     """Return what the answer rests on: limits with their sources, defaults, warnings."""
+    return [*rests_on(job, units), *warned(job)]
+
+
+def warned(job: Job) -> list[str]:
+    """Return warnings, and what the readers noticed."""
+    return [
+        *(f"Warning: {text}." for text in job.limits.warnings),
+        *(f"Notice: {text.rstrip('.')}." for text in job.notices),
+    ]
+
+
+def rests_on(job: Job, units: Units) -> list[str]:
+    """Return limits with their sources, the ground, and what was taken by default."""
     limits = job.limits
     lines = _limits(limits, units)
     keep = job.search.reserve
@@ -238,13 +251,11 @@ def basis(job: Job, units: Units) -> list[str]:
             f"{1 + keep:.4g} times the one needed, stresses at most {100 * (1 - keep):.3g}% of the "
             "limits."
         )
-    lines += [f"Warning: {text}." for text in limits.warnings]
     if job.drive is not None:
         told = dict.fromkeys(note for stage in job.stages for note in stage.notes)
         lines.append(f"Ground: {'; '.join(map(units.retold, told))}.")
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
-    lines += [f"Notice: {text.rstrip('.')}." for text in job.notices]
     return lines
 
 
@@ -283,8 +294,14 @@ def _notes(job: Job, units: Units) -> list[str]:
     ]
 
 
-def searched(ranking: Ranking) -> str:
-    """Return how the answers were found, hammers of one kind of answer told together."""
+def searched(ranking: Ranking, timed: bool = True) -> str:
+    """Return how the answers were found, hammers of one kind of answer told together.
+
+    Parameters
+    ----------
+    timed : bool
+        Whether to tell the time it took, which is never the same twice.
+    """
     groups: dict[str, list[list[int]]] = {}
     for option in (*ranking.options, *ranking.rejected):
         numbers = [int(number) for number in re.findall(r"\d+", option.certificate)]
@@ -298,7 +315,7 @@ def searched(ranking: Ranking) -> str:
         many = f"{len(found)} hammer{'s' if len(found) > 1 else ''}: " if len(groups) > 1 else ""
         told.append(many + text + (" (exact)" if kind == "exact" else ""))
     spent = (
-        f"{ranking.analyses} blows in {ranking.runtime:.1f} s"
+        f"{ranking.analyses} blows" + (f" in {ranking.runtime:.1f} s" if timed else "")
         if ranking.analyses
         else "no blow was needed, the weight decides"
     )
