@@ -150,6 +150,11 @@ class Blow:
     waves: Waves
 
     @property
+    def left_at_impact(self) -> float:
+        """Share of the blow energy left at impact [-]."""
+        return 0.5 * self.hammer.ram_mass * self.impact_velocity**2 / self.blow_energy
+
+    @property
     def cushion(self) -> Cushion | None:
         """Pile cushion."""
         return self.stack.pile

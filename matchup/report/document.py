@@ -8,6 +8,7 @@ from typing import Any
 
 from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
+from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.limits import PartLimits
 from matchup.report.sentences import reason
@@ -48,6 +49,11 @@ def peak(stresses: Iterable[float], job: Job) -> float | None:
 def number(value: float | None, scale: float = 1.0) -> float | None:
     """Return a number times `scale`, or None where it is absent or not finite."""
     return None if value is None or not math.isfinite(value) else float(value) * scale
+
+
+def energy_set(hammer: Hammer, stroke: float) -> float | None:
+    """Return a hammer's setting where that is an energy [kJ], and the stroke its equivalent."""
+    return hammer.blow_energy(stroke) / 1e3 if hammer.set_by_energy else None
 
 
 def cushion_document(cushion: Cushion | None) -> dict[str, object] | None:
@@ -96,6 +102,7 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "cushion": cushion_document(option.stack.pile),
         "hammer_cushion": hammer_cushion(option),
         "stroke_m": number(plan.stroke),
+        "energy_set_kJ": number(plan.energy_set, 1e-3),
         "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
         "schedule": [_stage_document(stage_plan) for stage_plan in option.plans],
         "set_mm": number(plan.set, 1e3),
@@ -133,6 +140,7 @@ def _stage_document(plan: StagePlan) -> dict[str, object]:
         "penetration_m": plan.stage.penetration,
         "verdict": plan.verdict,
         "stroke_m": number(plan.stroke),
+        "energy_set_kJ": number(plan.energy_set, 1e-3),
         "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
         "set_needed_mm": 1e3 * plan.stage.set_needed,
         "set_mm": number(plan.set, 1e3),
@@ -189,6 +197,7 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
         "hammer_cushion": blow.hammer_cushion,
         "wear": blow.wear if blow.cushion else None,
         "stroke_m": blow.stroke,
+        "energy_set_kJ": energy_set(blow.hammer, blow.stroke),
         "impact_velocity_m_s": blow.impact_velocity,
         "blow_energy_kJ": blow.blow_energy / 1e3,
         "transferred_energy_kJ": blow.transferred / 1e3,

@@ -14,7 +14,7 @@ from matchup.report.document import (
     number,
     peak,
 )
-from matchup.report.options import blow_count, measured, stress_shares
+from matchup.report.options import blow_count, measured, setting_columns, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.ranked import foot
 from matchup.report.sentences import on_stack, reason
@@ -141,7 +141,7 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
         measured("shaft", "shaft", "force", units, lambda row: row[1].stage.shaft),
         measured("toe", "toe", "force", units, lambda row: row[1].stage.toe),
         *_modes(rows, units),
-        measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
+        *setting_columns(_plan_of, [plan for _, plan in rows], units),
         measured("set", "set", "set", units, lambda row: row[1].set),
         (blow_count(units), lambda row: _count(row[1], units)),
         *stress_shares(_plan_of),
@@ -211,7 +211,7 @@ def _taken(plan: StagePlan) -> Any:
 
 def criterion_page(found: Criterion, job: Job, units: Units) -> Page:
     """Return what sets mean at the target, and which one proves the resistance asked for."""
-    strokes = [units.text(float(stroke), "stroke") for stroke in found.strokes]
+    strokes = [units.setting(job.hammers[0], float(stroke)) for stroke in found.strokes]
     force, length = units.unit("force"), units.unit("set")
     columns = [
         Column(units.key("driving", "force"), f"while\ndriving\n{force}", 0),
@@ -254,7 +254,7 @@ def _proof(found: Criterion, job: Job, units: Units) -> str:
     needed = f"To prove {units.text(found.needed, 'force')} long after driving{why}"
     proving = [
         f"{units.text(float(set_), 'set')} ({units.blow_count(float(set_)):.0f} blows/"
-        f"{units.counted}) at {units.text(float(stroke), 'stroke')}"
+        f"{units.counted}) at {units.setting(job.hammers[0], float(stroke))}"
         for stroke, set_ in zip(found.strokes, found.proving, strict=True)
         if set_ == set_
     ]
@@ -326,6 +326,7 @@ def _station_document(plan: StagePlan, job: Job) -> dict[str, Any]:
             {"mode": m.name, "shaft_kN": m.shaft / 1e3, "toe_kN": m.toe / 1e3} for m in stage.modes
         ],
         "stroke_m": number(plan.stroke),
+        "energy_set_kJ": number(plan.energy_set, 1e-3),
         "set_needed_mm": 1e3 * stage.set_needed,
         "set_mm": number(plan.set, 1e3),
         "blows_per_25cm": None if moves else blows_per_25cm(plan.set),

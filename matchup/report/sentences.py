@@ -51,7 +51,7 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
         figure += "" if taken.seconds is None else f" in {taken.seconds / 60:.0f} min"
     return (
         f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
-        f"{units.text(plan.stroke, 'stroke')}{on_stack(best.stack, units)}, {figure}."
+        f"{units.setting(best.hammer, plan.stroke)}{on_stack(best.stack, units)}, {figure}."
     )
 
 
@@ -103,7 +103,7 @@ def reason(option: Option, job: Job, units: Units) -> str:
         return f"{at}{plan.why}{on}"
     if option.drives:
         uses = _uses(option.compression_use, option.tension_use, job)
-        stroke = units.text(plan.stroke, "stroke")
+        stroke = units.setting(option.hammer, plan.stroke)
         does = f"{stroke}{on} gives {set_text(plan.set, plan.stage, job, units)}"
     else:
         uses = _uses(plan.compression_use, plan.tension_use, job)
@@ -115,18 +115,19 @@ def reason(option: Option, job: Job, units: Units) -> str:
 def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> str:
     """Return the stroke that explains a failure, and the set that it gives."""
     hammer = option.hammer
-    stroke = f"{units.text(plan.stroke, 'stroke')}{on_stack(option.stack, units)}"
+    stroke = f"{units.setting(hammer, plan.stroke)}{on_stack(option.stack, units)}"
+    word = "setting" if hammer.set_by_energy else "stroke"
     gives = f"gives {set_text(plan.set, plan.stage, job, units)}"
     if hammer.stroke_min == hammer.stroke_max:
-        return f"its only stroke of {stroke} {gives}"
+        return f"its only {word} of {stroke} {gives}"
     if option.verdict in SHORT_OF_SET:
-        return f"full stroke of {stroke} {gives}"
+        return f"full {word} of {stroke} {gives}"
     if plan.stroke <= hammer.stroke_min:
-        return f"already its lowest stroke of {stroke} {gives}"
+        return f"already its lowest {word} of {stroke} {gives}"
     if hammer.stroke_step:
         return f"the lowest step that reaches the set, {stroke}, {gives}"
     needed = units.text(needed_set(plan.stage, job), "set")
-    return f"a set of {needed} needs a stroke of {stroke}"
+    return f"a set of {needed} needs a {word} of {stroke}"
 
 
 def set_text(set_: float, stage: Stage, job: Job, units: Units) -> str:
@@ -155,9 +156,9 @@ def _held_back(option: Option, units: Units) -> str:
         return ""
     held = [plan for plan in option.plans if plan.stroke < option.target.stroke]
     if len(held) > STAGES_NAMED:
-        low, high = (units.text(f(p.stroke for p in held), "stroke") for f in (min, max))
+        low, high = (units.setting(option.hammer, f(p.stroke for p in held)) for f in (min, max))
         return f"; stroke kept to {low} to {high} at {len(held)} of {len(option.plans)} stages"
-    named = [f"{units.text(plan.stroke, 'stroke')} at {plan.stage.name!r}" for plan in held]
+    named = [f"{units.setting(option.hammer, plan.stroke)} at {plan.stage.name!r}" for plan in held]
     return f"; stroke kept to {', '.join(named)}"
 
 
@@ -169,7 +170,7 @@ def _cured(cure: Cure | None, option: Option, units: Units) -> str:
     if cure.set_within is not None and cure.stroke_within is not None:
         words.append(
             f"within the limits it reaches a set of {units.text(cure.set_within, 'set')}, at "
-            f"{units.text(cure.stroke_within, 'stroke')}"
+            f"{units.setting(option.hammer, cure.stroke_within)}"
         )
     if cure.stack is not None:
         words.append(f"{cushions(cure.stack, units)}, more than allowed, would do")
@@ -209,7 +210,7 @@ def softer_sentence(option: Option, objective: str, units: Units) -> str:
     ]
     return (
         f"Softer for {option.hammer.name}: {cushions(softer.stack, units)} at "
-        f"{units.text(softer.target.stroke, 'stroke')}; {', '.join(changes)} of the limit, "
+        f"{units.setting(option.hammer, softer.target.stroke)}; {', '.join(changes)} of the limit, "
         f"{_at_what_cost(option.target, softer.target, objective)}."
     )
 

@@ -7,6 +7,7 @@ import re
 from dataclasses import dataclass
 
 from matchup.model.cushion import Cushion
+from matchup.model.hammer import Hammer
 from matchup.units import display_unit, parse_quantity, to_display
 
 DIGITS = {
@@ -64,6 +65,13 @@ class Units:
         """Return number and unit."""
         value = to_display(si, quantity, self.system)
         return f"{value:.{self.digits(quantity)}f} {self.unit(quantity)}"
+
+    def setting(self, hammer: Hammer, stroke: float) -> str:
+        """Return a hammer's setting: its stroke, or its energy with the equivalent stroke."""
+        told = self.text(stroke, "stroke")
+        if not hammer.set_by_energy:
+            return told
+        return f"{self.text(hammer.blow_energy(stroke), 'energy')} ({told})"
 
     def together(self, si: float, bound: float, quantity: str) -> tuple[str, str]:
         """Return a value and its bound with units, in as many decimals as tell them apart."""

@@ -338,6 +338,7 @@ HAMMER_NUMBERS = {
     "efficiency": "number",
     "stroke_step": "length",
     "blow_rate_max": "rate",
+    "blow_rate_full": "rate",
     "lift_speed": "velocity",
     "rated_energy": "energy",
     "helmet_mass": "mass",
@@ -352,6 +353,11 @@ CUSHION_NUMBERS = {
     "worn_restitution": "number",
     "new_for": "number",
     "life": "number",
+}
+ENERGIES = {
+    "energy_min": lambda hammer: hammer.blow_energy(hammer.stroke_min),
+    "energy_min_share": lambda hammer: hammer.stroke_min / hammer.stroke_max,
+    "energy_step": lambda hammer: hammer.blow_energy(hammer.stroke_step),
 }
 TRUTHS = {"rides_on_pile", "available"}
 TEXTS = {"name", "kind", "use", "source"}
@@ -391,6 +397,9 @@ def shows(item: Hammer | CushionMaterial, name: str, cell: str, unit: str, separ
     numbers = HAMMER_NUMBERS if isinstance(item, Hammer) else CUSHION_NUMBERS
     if name in numbers:
         return same(getattr(item, name), number(cell, unit, numbers[name], separator))
+    if name in ENERGIES and isinstance(item, Hammer):
+        dimension = "number" if name.endswith("share") else "energy"
+        return same(ENERGIES[name](item), number(cell, unit, dimension, separator))
     if name in TRUTHS and isinstance(item, Hammer):
         return getattr(item, name) is (cell.casefold() in {"yes", "y", "true", "1"})
     if name in TEXTS and hasattr(item, name):

@@ -53,6 +53,7 @@ CASES = [
     for field in fields(item)
     if isinstance(getattr(item, field.name), float)
 ]
+KINDS = "drop, hydraulic, air, double-acting"
 OTHER_NAMES = {"set_needed": "set"}
 
 
@@ -85,11 +86,16 @@ def test_faults_say_what_must_hold_and_what_to_do():
     with pytest.raises(ModelError) as caught:
         replace(SOUND[2], efficiency=55.0, kind="dropp")
     assert caught.value.faults == (
-        Fault("kind", "must be one of: drop, hydraulic, air", "dropp", do="Did you mean `drop`?"),
+        Fault(
+            "kind",
+            f"must be one of: {KINDS}",
+            "dropp",
+            do="Did you mean `drop`?",
+        ),
         Fault("efficiency", "must be above 0 and at most 1", 55.0, do="Write 0.55."),
     )
     assert str(caught.value) == (
-        "hammer 'Raven': kind must be one of: drop, hydraulic, air, but got 'dropp'; "
+        f"hammer 'Raven': kind must be one of: {KINDS}, but got 'dropp'; "
         "efficiency must be above 0 and at most 1, but got 55.0"
     )
 
