@@ -165,6 +165,7 @@ def _check_parts(text: JobText, keys: PileKeys) -> None:
         return
     if not keys.parts:
         text.wrong(("pile", "parts"), "must hold at least one part, or be left out")
+        return
     whole = math.fsum(math.nan if p.length is None else p.length for p in keys.parts)
     if keys.length is not None and abs(keys.length - whole) > SAME_LENGTH:
         must = f"must be the sum of the lengths of its parts, {whole:g} m, or be left out"
