@@ -7,7 +7,6 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-import matchup
 from matchup.report.driven import (
     answer,
     cases_table,
@@ -237,7 +236,7 @@ def _about(dossier: Dossier, units: Units) -> Section:
     """Return what it takes to get the same report again."""
     python = ".".join(map(str, sys.version_info[:3]))
     line = (
-        f"Made by matchup {matchup.__version__} with Python {python}, seed "
+        f"Made by matchup {dossier.version} with Python {python}, seed "
         f"{dossier.job.search.seed}. The same files and seed give the same report, byte by byte."
     )
     return Section("How to get this report again", (Prose((line,)), files_table(dossier)))
