@@ -169,6 +169,11 @@ class Table:
             if any(row[i] == text for row in self.rows)
         ]
 
+    def beside(self, other: Table) -> Table:
+        """Return the columns of both tables, row by row."""
+        rows = tuple((*mine, *others) for mine, others in zip(self.rows, other.rows, strict=True))
+        return Table((*self.columns, *other.columns), rows)
+
     def to_csv(self) -> str:
         """Return the table as CSV with plain numbers; absent values are empty."""
         out = io.StringIO()
