@@ -688,7 +688,8 @@ def tender_report(
     proof = None
     if job.drive is not None and option.drives:
         proof = find_criterion(alone, option, workers, tell)
-    found = map_strokes(job, option.hammer, option.target.stage, workers, tell)
+    plan = option.failing or option.target
+    found = map_strokes(job, option.hammer, plan.stage, workers, tell)
     blows = _telling_blows(job, option)
     return ReportResult(Dossier(ranking, option, found, blows, __version__, proof))
 

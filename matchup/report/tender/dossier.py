@@ -21,10 +21,10 @@ class Dossier:
     detail : Option
         The one told in full: of the ranking's options or of the rejected.
     map : StrokeMap
-        Of its hammer, at the target.
+        Of its hammer, at the target, or where it fails.
     blows : tuple of Blow
-        At its target, and at its station with the highest stress where that is another one; empty
-        where there is no blow to compute.
+        At its target, or where it fails, and at its station with the highest stress where that is
+        another one; empty where there is no blow to compute.
     version : str
         Of the program that made them.
     criterion : Criterion or None
