@@ -27,7 +27,6 @@ from matchup.model.selection import (
 from matchup.report.document import blow_document, check_document, ranking_document
 from matchup.report.driven import (
     criterion_document,
-    criterion_page,
     drive_document,
     drive_page,
     stations_table,
@@ -178,11 +177,7 @@ class DriveResult(CheckResult):
 
     def page(self, display: str | None = None) -> Page:
         """Return the drive as blocks of prose and tables."""
-        units = _units(self.job, display)
-        page = list(drive_page(self.ranking, units, self.case))
-        if self.criterion is not None:
-            page[-1:-1] = criterion_page(self.criterion, self.job, units)
-        return page
+        return drive_page(self.ranking, _units(self.job, display), self.case, self.criterion)
 
     def to_frame(self) -> pd.DataFrame:
         """Return every station of every case as a row, in the JSON document's fixed units."""
