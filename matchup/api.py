@@ -25,16 +25,12 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
-from matchup.report.driven import (
-    criterion_document,
-    drive_document,
-    drive_page,
-    stations_table,
-)
+from matchup.report.driven import drive_document, drive_page, stations_table
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.options import options_table, schedule_table
 from matchup.report.page import Page, page_html, page_text
+from matchup.report.proven import criterion_document
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table

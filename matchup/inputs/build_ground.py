@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from dataclasses import replace
 from functools import partial
@@ -14,14 +15,15 @@ from matchup.errors import Fault, ModelError, did_you_mean
 from matchup.ground.basis import Choices, Ground
 from matchup.ground.cases import Case, Loosened, Pause
 from matchup.ground.methods import METHODS
-from matchup.ground.soil import SetupLaw
+from matchup.ground.soil import SetupLaw, time_text
 from matchup.ground.stages import resistance_stages
-from matchup.inputs.findings import Findings, shown_fault
+from matchup.inputs.findings import Findings, shown_fault, shown_path
 from matchup.inputs.ground_told import ground_basis, known_depths, note_without_effect
 from matchup.inputs.job_text import JobText
 from matchup.inputs.layers import read_layers, read_resistance_table
 from matchup.inputs.schema import GroundKeys, JobKeys
 from matchup.inputs.sounding import read_sounding
+from matchup.inputs.table import read_table
 from matchup.model.ground import ResistanceTable
 from matchup.model.job import Drive
 from matchup.model.pile import Pile
@@ -35,8 +37,6 @@ PLACES = {
     "sounding": "cone_test",
     "table": "table",
     "companion": "shaft_method",
-    "start": "setup_starts",
-    "end": "setup_ends",
 }
 """Keys that the model's fields stand for, where they differ."""
 COLUMNS = {"tip": "cone resistance", "sleeve": "sleeve friction"}
@@ -57,7 +57,7 @@ def build_drive(
     cases = _cases(text, given, ground.table if ground else None)
     stations = _stations(text, keys, given)
     choices = _made(text, partial(_choices, given))
-    law = _made(text, partial(_law, given))
+    law = _law(text, given)
     capacity, words = _capacity(text, keys)
     loosened = [
         _made(text, partial(Loosened, part.to, part.share, part.how), ("loosened", i))
@@ -65,10 +65,11 @@ def build_drive(
     ]
     pauses = [Pause(pause.penetration, pause.lasts) for pause in given.pauses]
     _check_names(text, given, cases)
+    # What could not be read is told already, and gives nothing to go on with.
     if len(findings.problems) > before or pile is None or ground is None or stations is None:
         return None, None
-    assert choices is not None
-    assert law is not None
+    if choices is None or law is None:
+        return None, None
     try:
         made = resistance_stages(
             pile,
@@ -151,18 +152,21 @@ def _cases(text: JobText, given: GroundKeys, table: ResistanceTable | None) -> l
     if not factors:
         text.wrong(path, "must hold at least one case")
     cases = []
+    # Factors may stand for columns that a table does not have: then they are on its best one.
+    own = table.columns if table is not None and given.method == "table" else None
     for name, factor in factors.items():
+        bound = "" if listed or own is None or name in own else "best"
         try:
-            cases.append(Case(name, factor, given.plug.get(name, "")))
+            cases.append(Case(name, factor, given.plug.get(name, ""), bound))
         except ModelError as error:
             for fault in error.faults:
                 at = path if listed else (*path, name)
                 text.wrong(at, fault.must, fault.do, found=f'"{name}"' if listed else None)
-    for case in cases if table is not None and given.method == "table" else ():
-        if case.bound_asked not in table.columns:  # type: ignore[union-attr]
-            known = ", ".join(table.columns)  # type: ignore[union-attr]
-            must = f"must be cases that the table has columns for: {known}"
-            text.wrong(path, must, found=f'"{case.name}"')
+    for case in cases if own is not None else ():
+        if case.bound_asked not in own:  # type: ignore[operator]
+            must = f"must be cases that the table has columns for: {', '.join(own)}"  # type: ignore[arg-type]
+            do = "Or give factors on its best case: { low = 0.8, best = 1.0 }." if listed else ""
+            text.wrong(path, must, do, found=f'"{case.name}"')
     return cases
 
 
@@ -191,7 +195,9 @@ def _stations(text: JobText, keys: JobKeys, given: GroundKeys) -> Any:
         must = f"must be at most the target's {text.typed(('target', 'penetration'))}"
         text.wrong(("ground", "start"), must)
         return None
-    if not (target - given.start) / given.every < MOST_STATIONS:
+    if math.isnan(target + given.start + given.every):
+        return None  # told already
+    if (target - given.start) / given.every >= MOST_STATIONS:
         text.wrong(("ground", "every"), f"must make at most {MOST_STATIONS} stations")
         return None
     for i, pause in enumerate(given.pauses):
@@ -225,9 +231,10 @@ def _target(text: JobText, keys: JobKeys) -> float | None:
 def _sets(keys: JobKeys, stations: Any) -> list[float]:
     """Return the needed set of every station: the refusal set, and the target's at the target."""
     assert keys.target is not None
-    assert keys.target.set is not None
-    refusal = keys.target.refusal or REFUSAL_SET
-    return [refusal] * (len(stations) - 1) + [keys.target.set]
+    # A set that could not be read is told already, and must not be told again as a station's.
+    sets = (keys.target.refusal, keys.target.set)
+    refusal, last = (REFUSAL_SET if not set_ or math.isnan(set_) else set_ for set_ in sets)
+    return [refusal] * (len(stations) - 1) + [last]
 
 
 def _capacity(text: JobText, keys: JobKeys) -> tuple[float | None, str]:
@@ -265,9 +272,15 @@ def _choices(given: GroundKeys) -> Choices:
     return Choices(faces=given.faces, inside=given.inside, companion=given.shaft_method, **angle)
 
 
-def _law(given: GroundKeys) -> SetupLaw:
+def _law(text: JobText, given: GroundKeys) -> SetupLaw | None:
     usual = SetupLaw()
-    return SetupLaw(given.setup_starts or usual.start, given.setup_ends or usual.end)
+    try:
+        return SetupLaw(given.setup_starts or usual.start, given.setup_ends or usual.end)
+    except ModelError:
+        key = "setup_ends" if given.setup_ends else "setup_starts"
+        usually = f"{time_text(usual.start)} and {time_text(usual.end)} unless given"
+        text.wrong(("ground", key), f"must put `setup_ends` after `setup_starts` ({usually})")
+        return None
 
 
 def _made(text: JobText, make: Callable[[], Made], path: tuple[str | int, ...] = ()) -> Made | None:
@@ -293,20 +306,27 @@ def _tell_resistance(text: JobText, keys: JobKeys, ground: Ground, error: ModelE
         _tell_outside(text, keys, ground, outside)
     for fault in error.faults:
         place, _, field = fault.field.rpartition(".")
-        key = PLACES.get(fault.field, fault.field)
-        if place.startswith("layers."):
-            number = place.removeprefix("layers.")
-            must = f"needs of layer {number} of {given.layers} `{field}`, which {fault.must}"
-            text.wrong(("ground", "method"), must, fault.do, found="nothing")
-        elif place in PLACES:
-            file = getattr(given, PLACES[place])
-            must = f"needs of {file} `{COLUMNS.get(field, field)}`, which {fault.must}"
-            text.wrong(("ground", "method"), must, fault.do, shown_fault(fault))
+        if place in PLACES or place.startswith("layers."):
+            _tell_in_file(text, given, place, field, fault)
         elif fault.field == "section":
             text.wrong(("pile", "toe" if keys.pile.toe else "shape"), fault.must, fault.do)
         elif fault.field != "penetration":
-            typed = text.typed(("ground", key)) or shown_fault(fault)
-            text.wrong(("ground", key), fault.must, fault.do, typed)
+            path = ("ground", PLACES.get(fault.field, fault.field))
+            text.wrong(path, fault.must, fault.do, text.typed(path) or shown_fault(fault))
+
+
+def _tell_in_file(text: JobText, given: GroundKeys, place: str, field: str, fault: Fault) -> None:
+    """Note what a method lacks in one of the ground's files; of a layer, on its line."""
+    kind, _, number = place.partition(".")
+    path = text.folder / getattr(given, PLACES.get(kind, kind))
+    line = None
+    if number:
+        table = read_table(path, Findings())
+        assert table is not None, "it has been read before"
+        line = table.rows[int(number) - 1].line
+    column = f"`{COLUMNS.get(field, field)}`"
+    found = shown_fault(fault)
+    text.findings.add(shown_path(path), line, column, fault.must, found, fault.do)
 
 
 def _tell_outside(text: JobText, keys: JobKeys, ground: Ground, faults: list[Fault]) -> None:
