@@ -35,7 +35,7 @@ def check_catalogue(text: JobText, keys: JobKeys, hammers: Sequence[Hammer]) -> 
     if needs:
         path = ("catalog", "cushions")
         do = 'For example `cushions = "cushions.csv"`.'
-        text.wrong(path, f"must be given: {' and '.join(needs)} name materials", do)
+        text.wrong(path, f"must be given for {' and '.join(needs)}", do)
 
 
 def build_cushion_space(
@@ -46,7 +46,7 @@ def build_cushion_space(
     if given is None:
         return None
     path = ("pile_cushion",)
-    chosen = _materials(text, path, given.materials, catalogue)
+    chosen = _materials(text, path, given.materials, catalogue, "pile")
     sheets = _sheets(text, given.sheets)
     thicknesses = _thicknesses(text, (*path, "thickness"), given.thickness)
     if given.sheets is None and given.thickness is None:
@@ -77,23 +77,27 @@ def _area(text: JobText, keys: JobKeys, pile: Pile | None) -> float | None:
 
 
 def _materials(
-    text: JobText, path: KeyPath, names: Sequence[str], catalogue: CushionCatalogue
+    text: JobText, path: KeyPath, names: Sequence[str], catalogue: CushionCatalogue, use: str
 ) -> tuple[CushionMaterial, ...] | None:
-    """Return the materials that are named; None where one can't be had."""
+    """Return the materials that are named, for a use; None where one can't be had."""
     path = (*path, "materials")
     if not names:
         text.wrong(path, "must name at least one cushion")
         return None
-    chosen = {}
+    chosen: dict[str, CushionMaterial | None] = {}
     for place, name in enumerate(names):
         found = catalogue.find(name)
-        if found is not None:
-            chosen[found.name] = found
-        elif not catalogue.is_broken(name):
+        chosen[found.name if found else name] = found
+        if found is not None and found.use not in (use, "both"):
+            must = f"must be a cushion whose `use` is {use} or both"
+            text.wrong((*path, place), must, found=f"{found.name}, whose use is {found.use}")
+            chosen[found.name] = None
+        elif found is None and not catalogue.is_broken(name):
             known = catalogue.names
             do = did_you_mean(name, known) or f"There are: {_some(known)}."
             text.wrong((*path, place), "must be a name in the cushion catalogue", do)
-    return tuple(chosen.values()) if all(map(catalogue.find, names)) else None
+    materials = tuple(filter(None, chosen.values()))
+    return materials if len(materials) == len(chosen) else None
 
 
 def _sheets(text: JobText, given: int | list[int] | SheetRange | None) -> tuple[int, ...] | None:
@@ -149,13 +153,7 @@ def build_hammer_cushions(
     if given is None:
         return ()
     path = ("hammer_cushion",)
-    chosen = _materials(text, path, given.materials, catalogue)
-    for place, name in enumerate(given.materials):
-        material = catalogue.find(name)
-        if material and material.use not in ("hammer", "both"):
-            found = f"{material.name}, whose use is {material.use}"
-            must = "must be a cushion whose `use` is hammer or both"
-            text.wrong((*path, "materials", place), must, found=found)
+    chosen = _materials(text, path, given.materials, catalogue, "hammer")
     thicknesses = _thicknesses(text, (*path, "thickness"), given.thickness)
     note_unusual(text, (*path, "area"), given.area, "stack area")
     if chosen is None or thicknesses is None or text.is_unread(*path, "area"):

@@ -19,7 +19,7 @@ from matchup.ground.soil import SetupLaw, time_text
 from matchup.ground.stages import resistance_stages
 from matchup.inputs.findings import Findings, shown_fault, shown_path
 from matchup.inputs.ground_told import ground_basis, known_depths, note_without_effect
-from matchup.inputs.job_text import JobText
+from matchup.inputs.job_text import JobText, named_file
 from matchup.inputs.layers import read_layers, read_resistance_table
 from matchup.inputs.schema import GroundKeys, JobKeys
 from matchup.inputs.sounding import read_sounding
@@ -127,7 +127,8 @@ def _ground(text: JobText, given: GroundKeys, findings: Findings) -> Ground | No
     if given.location is not None and given.cone_test is None:
         text.wrong(("ground", "location"), "must be left out: there is no `cone_test`")
     for key, name in named.items():
-        read[key] = readers[key](text.folder / name)
+        path = named_file(text, ("ground", key), name)
+        read[key] = readers[key](path) if path else None
     if any(value is None for value in read.values()):
         return None
     return _made(

@@ -61,7 +61,10 @@ def build_pile(text: JobText, keys: PileKeys) -> Pile | None:
 
 
 def _note_unusual(text: JobText, keys: PileKeys) -> None:
-    for key in ("strength", "strength_at_driving", "modulus", "density"):
+    note_unusual(
+        text, ("pile", "strength_at_driving"), keys.strength_at_driving, "concrete strength"
+    )
+    for key in ("strength", "modulus", "density"):
         note_unusual(text, ("pile", key), getattr(keys, key), f"{keys.material} {key}")
     for key in ("length", "prestress", "width", "diameter", "wall", "depth"):
         note_unusual(text, ("pile", key), getattr(keys, key), f"pile {key}")

@@ -22,8 +22,8 @@ from matchup.model.stage import (
 def build_stages(text: JobText, keys: JobKeys, pile: Pile | None) -> tuple[Stage, ...] | None:
     """Return the stages, or note what is wrong with them."""
     if keys.stages is None:
-        do = "Write [[stages]], and its keys below."
-        text.wrong(("stages",), "must be given, or a [ground] that they follow from", do)
+        do = "Write [[stages]], and its keys below, or a [ground] that they follow from."
+        text.wrong(("stages",), "must be given", do)
         return None
     if not keys.stages:
         text.wrong(("stages",), "must hold at least one stage")

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -75,16 +74,8 @@ def read_cushions(path: Path, findings: Findings) -> CushionCatalogue:
             findings.notice(record.file, record.line, text)
     return CushionCatalogue(
         materials=tuple(material for material in made if material is not None),
-        broken=_broken(records, made),
+        broken=tuple(r.label for r, m in zip(records, made, strict=True) if not m and r.label),
         complete=all(record.label for record in records),
-    )
-
-
-def _broken(records: Sequence[Record], made: Sequence[CushionMaterial | None]) -> tuple[str, ...]:
-    return tuple(
-        record.label
-        for record, material in zip(records, made, strict=True)
-        if material is None and record.label
     )
 
 

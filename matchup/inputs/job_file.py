@@ -10,7 +10,7 @@ from matchup.errors import ModelError
 from matchup.inputs.cushions import CushionCatalogue, read_cushions
 from matchup.inputs.findings import Findings
 from matchup.inputs.hammers import read_hammers
-from matchup.inputs.job_text import JobText, read_job_text
+from matchup.inputs.job_text import JobText, named_file, read_job_text
 from matchup.model.job import Drive, Job
 from matchup.model.pile import Pile
 from matchup.model.stage import Stage
@@ -34,20 +34,11 @@ def load_job(path: str | os.PathLike[str]) -> Job:
     """
     findings = Findings()
     text = read_job_text(Path(path), findings)
-    if text is None:
-        findings.close()
-        raise AssertionError("a file that can't be read has problems")
+    findings.close()
+    assert text is not None
     from matchup.inputs.job_keys import read_keys
 
     return _build(text, read_keys(text), findings)
-
-
-def _catalogue(text: JobText, keys: JobKeys, findings: Findings) -> CushionCatalogue | None:
-    """Return the cushion catalogue; None where the job names none."""
-    if text.is_unread("catalog", "cushions"):
-        return CushionCatalogue(complete=False)
-    named = keys.catalog.cushions
-    return None if named is None else read_cushions(text.folder / named, findings)
 
 
 def _stages(
@@ -75,16 +66,18 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     stages, drive = _stages(text, keys, pile, findings)
     analysis, search = build_stages.build_settings(text, keys)
 
-    catalogue = _catalogue(text, keys, findings)
-    unread = text.is_unread("catalog", "hammers")
-    hammers = (
-        () if unread else read_hammers(text.folder / keys.catalog.hammers, catalogue, findings)
-    )
+    cushions = named_file(text, ("catalog", "cushions"), keys.catalog.cushions)
+    known = read_cushions(cushions, findings) if cushions else CushionCatalogue(complete=False)
+    file = named_file(text, ("catalog", "hammers"), keys.catalog.hammers)
+    hammers = read_hammers(file, known if cushions else None, findings) if file else ()
     build_cushions.check_catalogue(text, keys, hammers)
-    known = catalogue or CushionCatalogue(complete=False)
     space = build_cushions.build_cushion_space(text, keys, pile, known)
     others = build_cushions.build_hammer_cushions(text, keys, known)
     hammers = build_cushions.with_helmets(text, keys, hammers)
+    unknown = [hammer.name for hammer in hammers if hammer.blow_rate(hammer.stroke_max) is None]
+    if keys.search.objective == "time" and 0 < len(unknown) < len(hammers):
+        what = f"puts {', '.join(unknown)} last: their rows give no blow rate"
+        text.notice(("search", "objective"), what)
     findings.close()
     assert pile is not None
     assert limits is not None
@@ -105,6 +98,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),
+            digests=tuple(findings.digests.items()),
         )
     except ModelError as error:
         text.wrong_model(error, ())

@@ -76,7 +76,7 @@ def _tell(text: JobText, path: KeyPath, detail: ErrorDetails) -> None:
         cause = context["error"]
         text.tell(path, getattr(cause, "must", str(cause)), getattr(cause, "do", ""))
     elif kind == "literal_error":
-        options = [str(option) for option in get_args(_literal(_annotation(path)))]
+        options = [str(option) for option in get_args(_literal(_field(path).annotation))]
         do = did_you_mean(text.typed(path).strip("\"'"), options)
         text.tell(path, f"must be one of: {', '.join(options)}", do)
     elif kind == "form":
@@ -97,14 +97,16 @@ def _brackets(kind: str, path: KeyPath) -> str:
 
 def how_to_write(path: KeyPath) -> str:
     """Return a hint at how a key that is missing may be given."""
-    annotation, key = _annotation(path), path[-1]
-    if quantity := _quantity(annotation):
+    field, key = _field(path), path[-1]
+    if quantity := _quantity(field):
         return f"For example `{key} = {example_of(quantity)}`."
-    if literal := _literal(annotation):
+    if literal := _literal(field.annotation):
         return f"One of: {', '.join(map(str, get_args(literal)))}."
     if path == ("stages",):
         return "Write [[stages]], and its keys below."
-    return f"Write [{key}], and its keys below." if _model(annotation) and len(path) == 1 else ""
+    return (
+        f"Write [{key}], and its keys below." if _model(field.annotation) and len(path) == 1 else ""
+    )
 
 
 def _path_in_file(data: Any, where: tuple[int | str, ...]) -> KeyPath:
@@ -136,7 +138,7 @@ def _stand_in(data: dict[str, Any], unread: set[KeyPath], path: KeyPath) -> None
     unread.add(key)
     holder = _holder(data, key)
     if isinstance(key[-1], int):
-        holder[key[-1]] = _required(_model(_annotation(key[:-1])))
+        holder[key[-1]] = _required(_model(_field(key[:-1]).annotation))
         return
     field = _field(key)
     if field.is_required() or _quantity(field):
@@ -165,7 +167,7 @@ def _example(field: FieldInfo) -> Any:
 
 def _known_keys(path: KeyPath) -> list[str]:
     """Return the keys that a table of the job file may have."""
-    model = _model(_annotation(path)) if path else JobKeys
+    model = _model(_field(path).annotation) if path else JobKeys
     assert model is not None
     return [field.alias or name for name, field in model.model_fields.items()]
 
@@ -182,11 +184,6 @@ def _field(path: KeyPath) -> FieldInfo:
             model = _model(field.annotation)
     assert field is not None
     return field
-
-
-def _annotation(path: KeyPath) -> Any:
-    field = _field(path)
-    return field if _quantity(field) else field.annotation
 
 
 def _model(annotation: Any) -> type[Keys] | None:

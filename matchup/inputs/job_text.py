@@ -10,7 +10,7 @@ from typing import Any
 
 from matchup.errors import Element, ModelError
 from matchup.inputs.findings import Findings, shown_fault, shown_path
-from matchup.inputs.table import decode, read_bytes
+from matchup.inputs.table import decode, file_fault, read_bytes
 from matchup.inputs.toml_lines import Path as KeyPath
 from matchup.inputs.toml_lines import Spot, key_spots, spot_of
 
@@ -99,6 +99,20 @@ class JobText:
         self.findings.notice(self.file, self.line(path), f"{self.place(path)} {what}")
 
 
+def named_file(text: JobText, key: KeyPath, named: str | None) -> Path | None:
+    """Return the path of a file that a key names, or note on the key why there is none to read."""
+    if named is None or text.is_unread(*key):
+        return None
+    path = text.folder / named
+    fault = file_fault(path)
+    if fault is None:
+        return path
+    typed = text.typed(key)
+    found = f"{typed}, {fault.found}" if fault.found else typed
+    text.wrong(key, fault.must, fault.do, found)
+    return None
+
+
 def read_job_text(path: Path, findings: Findings) -> JobText | None:
     """Read a job file, or note why that can't be done."""
     data = read_bytes(path, findings)
@@ -137,7 +151,7 @@ _REMEDIES = (
 
 
 def _note_syntax(file: str, text: str, message: str, findings: Findings) -> None:
-    lines = text.split("\n")
+    lines = text.rstrip().split("\n")
     match = re.fullmatch(r"(.*) \(at line (\d+), column (\d+)\)", message, re.DOTALL)
     if match:
         what, line, place = match.group(1), int(match.group(2)), f"column {match.group(3)}"

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import csv
+import hashlib
 import io
 import re
 import zipfile
@@ -11,6 +12,7 @@ from dataclasses import dataclass
 from datetime import date, time
 from pathlib import Path
 
+from matchup.errors import Problem
 from matchup.inputs.findings import Findings, did_you_mean, shown_path
 
 SEPARATORS = (";", "\t", ",")
@@ -122,26 +124,41 @@ def _width(separator: str, rows: Sequence[_Cells]) -> int:
 
 def read_bytes(path: Path, findings: Findings) -> bytes | None:
     """Return a file's bytes, or note why they can't be had."""
+    findings.begin(shown_path(path))
+    fault = file_fault(path)
+    if fault is None:
+        try:
+            data = path.read_bytes()
+            findings.digests[shown_path(path)] = hashlib.sha256(data).hexdigest()
+            return data
+        except OSError as error:
+            fault = _unreadable(path, error)
+    findings.problems.append(fault)
+    return None
+
+
+def file_fault(path: Path) -> Problem | None:
+    """Return what is wrong with a path that is no file to read; None where nothing is."""
     file = shown_path(path)
-    findings.begin(file)
     try:
         if path.is_dir():
-            findings.add(file, None, "", "must be a file", "a folder")
-        elif not path.exists():
-            must = "must be a file that exists; there is none of this name"
-            findings.add(file, None, "", must, do=_neighbours(path))
-        elif not path.is_file():
-            findings.add(file, None, "", "must be a file", "a device or a pipe")
-        elif path.stat().st_size > LARGEST_FILE:
+            return Problem(file, None, "", "must be a file", "a folder")
+        if not path.exists():
+            return Problem(file, None, "", "must be a file that exists", "", _neighbours(path))
+        if not path.is_file():
+            return Problem(file, None, "", "must be a file", "a device or a pipe")
+        if path.stat().st_size > LARGEST_FILE:
             must = f"must be at most {LARGEST_FILE // 1_000_000} MB"
-            findings.add(file, None, "", must, f"{path.stat().st_size // 1_000_000} MB")
-        else:
-            return path.read_bytes()
-    except (OSError, ValueError) as error:
-        why = getattr(error, "strerror", None) or str(error)
-        must = f"must be a file that can be read; this one can't: {why[:1].lower()}{why[1:]}"
-        findings.add(file, None, "", must)
+            return Problem(file, None, "", must, f"{path.stat().st_size // 1_000_000} MB")
+    except OSError as error:
+        return _unreadable(path, error)
     return None
+
+
+def _unreadable(path: Path, error: OSError) -> Problem:
+    why = error.strerror or str(error)
+    must = f"must be a file that can be read; this one can't: {why[:1].lower()}{why[1:]}"
+    return Problem(shown_path(path), None, "", must, "")
 
 
 def _neighbours(path: Path) -> str:
@@ -151,7 +168,8 @@ def _neighbours(path: Path) -> str:
     names = sorted(p.name for p in path.parent.iterdir() if p.suffix == path.suffix)
     if not names:
         return ""
-    return did_you_mean(path.name, names) or f"There: {', '.join(names[:8])}."
+    near = did_you_mean(path.stem, [Path(name).stem for name in names])
+    return near.replace("`?", f"{path.suffix}`?") or f"There: {', '.join(names[:8])}."
 
 
 _SIGNATURES = {
@@ -164,6 +182,8 @@ _SIGNATURES = {
 def decode(file: str, data: bytes, findings: Findings) -> str | None:
     """Return text in UTF-8, UTF-16 or Windows' western code page, or note that it is none."""
     known = next((known for known in _SIGNATURES if data.startswith(known)), None)
+    if _is_garbled(file, data, findings):
+        return None
     for encoding in _encodings(data) if known is None else []:
         try:
             text = data.decode(encoding)
@@ -174,6 +194,27 @@ def decode(file: str, data: bytes, findings: Findings) -> str | None:
     what, do = ("binary data", "") if known is None else _SIGNATURES[known]
     findings.add(file, None, "", "must be a text file", what, do)
     return None
+
+
+_SEVERAL_BYTES = re.compile(
+    rb"[\xc2-\xdf][\x80-\xbf]|[\xe0-\xef][\x80-\xbf]{2}|[\xf0-\xf4][\x80-\xbf]{3}"
+)
+"""A letter of UTF-8; in a text of Windows, an unlikely row of accents and marks."""
+
+
+def _is_garbled(file: str, data: bytes, findings: Findings) -> bool:
+    """Note that a text in UTF-8 has a byte that is none, which would garble all other letters."""
+    try:
+        data.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        if _encodings(data)[0] != "utf-8-sig" or not _SEVERAL_BYTES.search(data):
+            return False
+        line = data[: error.start].count(b"\n") + 1
+        found = f"the byte {data[error.start]:#04x} among letters of UTF-8"
+        do = "Type the line again, and save the file as UTF-8."
+        findings.add(file, line, "", "must be text in one encoding", found, do)
+        return True
+    return False
 
 
 def _encodings(data: bytes) -> list[str]:
@@ -207,7 +248,7 @@ def _text_rows(file: str, text: str, findings: Findings) -> tuple[str, _Rows | N
     before = 0
     try:
         for cells in reader:
-            rows.append((skipped + before + 1, tuple(cell.strip() for cell in cells)))
+            rows.append((skipped + before + 1, tuple(map(_tidy, cells))))
             before = reader.line_num
     except csv.Error as error:
         line = skipped + before + 1
@@ -238,7 +279,7 @@ def _workbook_rows(file: str, data: bytes, findings: Findings) -> _Rows | None:
         # What a workbook says of its size may be a million empty rows.
         sheet.reset_dimensions()
         return [
-            (line, tuple(_workbook_cell(value).strip() for value in values))
+            (line, tuple(_tidy(_workbook_cell(value)) for value in values))
             for line, values in enumerate(sheet.iter_rows(values_only=True), 1)
         ]
     except Exception:
@@ -246,6 +287,11 @@ def _workbook_rows(file: str, data: bytes, findings: Findings) -> _Rows | None:
         do = "Save it as .xlsx or as CSV again."
         findings.add(file, None, "", "must be an XLSX workbook", "another or a damaged file", do)
         return None
+
+
+def _tidy(cell: str) -> str:
+    """Return a cell on one line; people break the lines of headers."""
+    return " ".join(cell.split())
 
 
 def _workbook_cell(value: object) -> str:

@@ -10,7 +10,11 @@ from matchup.report.shown import Units
 
 def closing(job: Job, units: Units, *lines: str) -> Page:
     """Return the ground of a whole drive, then limits and defaults, `lines`, and the caution."""
-    end = Prose((*basis(job, units), *lines, CAUTION))
+    return [*ground(job, units), Prose((*basis(job, units), *lines, CAUTION))]
+
+
+def ground(job: Job, units: Units) -> list[Prose]:
+    """Return what the resistances of a whole drive rest on; nothing for stages by hand."""
     if job.drive is None:
-        return [end]
-    return [Prose(tuple(map(units.retold, job.drive.basis)), "Ground:"), end]
+        return []
+    return [Prose(tuple(map(units.retold, job.drive.basis)), "Ground:")]

@@ -44,10 +44,7 @@ WIDTH_IN_NOTEBOOK = 100
 
 def map_page(found: StrokeMap, units: Units) -> Page:
     """Return the map: the answer, the grid, what it rests on."""
-    at = where(found.stage, found.job, units)
-    if found.everywhere:
-        at = "at every stage" if found.job.drive is None else "with one stroke for all stations"
-    head = f"{found.hammer.name} {at}: {_answer(found, units)}."
+    head = f"{map_place(found, units)}: {map_answer(found, units)}."
     closed = [Prose(_closing_stages(found, units))] if found.everywhere else []
     return [Headline(head), _Grid(found, units), *closed, *closing(found.job, units)]
 
@@ -80,7 +77,15 @@ def _closing_stages(found: StrokeMap, units: Units) -> tuple[str, ...]:
     return tuple(lines)
 
 
-def _answer(found: StrokeMap, units: Units) -> str:
+def map_place(found: StrokeMap, units: Units) -> str:
+    """Return which hammer the map is of, and where."""
+    at = where(found.stage, found.job, units)
+    if found.everywhere:
+        at = "at every stage" if found.job.drive is None else "with one stroke for all stations"
+    return f"{found.hammer.name} {at}"
+
+
+def map_answer(found: StrokeMap, units: Units) -> str:
     """Return on how many cushions it works, and between which strokes."""
     if not found.is_open:
         return "no stroke works" + (" on any cushion" if len(found.stacks) > 1 else "")
@@ -160,12 +165,12 @@ def map_table(found: StrokeMap, units: Units) -> Table:
     """Return every cell of the map as a row."""
     columns = (
         Column("cushion", "cushion"),
-        Column(units.key("stroke", "stroke"), "stroke", 3),
+        Column(units.key("stroke", "stroke"), f"stroke\n{units.unit('stroke')}", 3),
         Column("state", "state"),
         Column("closed_at", "closed at"),
-        Column(units.key("set", "set"), "set", 3),
-        Column("compression_percent", "compression", 1),
-        Column("tension_percent", "tension", 1),
+        Column(units.key("set", "set"), f"set\n{units.unit('set')}", 3),
+        Column("compression_percent", "compression\n% limit", 1),
+        Column("tension_percent", "tension\n% limit", 1),
     )
     rows = tuple(
         (

@@ -22,10 +22,11 @@ def blow_page(blow: Blow, job: Job, units: Units) -> Page:
     )
     notices = blow_notices(blow, job, units)
     noticed = [Prose(tuple(notices))] if notices else []
-    return [Headline(head), _figures(blow, units), *noticed, *closing(job, units)]
+    return [Headline(head), figures_table(blow, units), *noticed, *closing(job, units)]
 
 
-def _figures(blow: Blow, units: Units) -> Table:
+def figures_table(blow: Blow, units: Units) -> Table:
+    """Return what a blow comes to, each figure with a remark."""
     count = units.blow_count(blow.set)
     rows = [
         ("set", units.text(blow.set, "set"), f"largest toe displacement less {blow.set_rule}"),

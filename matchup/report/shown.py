@@ -7,7 +7,7 @@ import re
 from dataclasses import dataclass
 
 from matchup.model.cushion import Cushion
-from matchup.report.table import Figure
+from matchup.report.table import Marked
 from matchup.units import display_unit, parse_quantity, to_display
 
 DIGITS = {
@@ -168,7 +168,7 @@ def share_text(share: float) -> str:
     return "just over 100%" if share > 1 else "just under 100%"
 
 
-class OfLimit(Figure):
+class OfLimit(Marked):
     """A percentage of a limit: people never see 100 of what is above or below it."""
 
     def shown(self, digits: int) -> str:

@@ -178,4 +178,4 @@ def test_a_table_that_can_not_be_read(tmp_path):
     for reader in (read_layers, read_resistance_table):
         findings = Findings()
         assert reader(tmp_path / "none.csv", findings) is None
-        assert findings.problems[0].must == "must be a file that exists; there is none of this name"
+        assert findings.problems[0].must == "must be a file that exists"

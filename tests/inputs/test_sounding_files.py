@@ -208,7 +208,7 @@ def test_empty_and_binary_and_missing(tmp_path):
     assert bad(tmp_path, stream.getvalue())[0].must == "must be an XLSX workbook"
     findings = Findings()
     assert read_sounding(tmp_path / "none.gef", findings) is None
-    assert only(findings.problems).must == "must be a file that exists; there is none of this name"
+    assert only(findings.problems).must == "must be a file that exists"
     assert read_sounding(tmp_path, Findings()) is None
 
 

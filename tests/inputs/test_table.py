@@ -104,6 +104,14 @@ def test_short_rows_are_filled_and_widths_are_kept(tmp_path):
     assert [row.width for row in found.rows] == [3, 4]
 
 
+def test_empty_columns_at_the_end_of_a_spreadsheet_are_no_surplus(tmp_path):
+    path = tmp_path / "t.csv"
+    path.write_text("a,b,,\n1,2,,\n3,4,,\n")
+    found, problems = read(path)
+    assert not problems
+    assert [row.width for row in found.rows] == [found.width, found.width]
+
+
 @pytest.mark.parametrize(
     ("data", "must", "found", "do"),
     [
@@ -125,6 +133,16 @@ def test_what_is_no_table_is_said_to_be_none(tmp_path, data, must, found, do):
     assert table is None
     assert (problem.must, problem.found) == (must, found)
     assert do in problem.do
+
+
+def test_a_stray_byte_in_utf_8_does_not_garble_the_rest(tmp_path):
+    path = tmp_path / "t.csv"
+    path.write_bytes("name,x\nMüller,1\nMa".encode() + b"\xfcer,2\n")
+    table, [problem] = read(path)
+    assert table is None
+    assert (problem.line, problem.must) == (3, "must be text in one encoding")
+    assert problem.found == "the byte 0xfc among letters of UTF-8"
+    assert "UTF-8" in problem.do
 
 
 @pytest.mark.parametrize(
@@ -231,7 +249,7 @@ def test_files_that_can_not_be_read(tmp_path, monkeypatch):
     assert problem(tmp_path).found == "a folder"
     (tmp_path / "hammers.csv").write_text("x")
     missing = problem(Path("hamers.csv"))
-    assert missing.must == "must be a file that exists; there is none of this name"
+    assert missing.must == "must be a file that exists"
     assert missing.do == "Did you mean `hammers.csv`?"
     assert problem(Path("zzz.csv")).do == "There: hammers.csv."
     assert problem(Path("zzz.xlsx")).do == ""
@@ -265,6 +283,15 @@ def test_paths_are_shown_without_detours(tmp_path, monkeypatch):
     assert shown_path(here / "jobs" / "a.csv") == os.path.join("jobs", "a.csv")
     assert shown_path(tmp_path / "b" / ".." / "a.csv") == str(tmp_path / "a.csv")
     assert shown_path(Path("../a.csv")) == os.path.join("..", "a.csv")
+    assert shown_path(Path("a.csv")) == "a.csv"
     # With a link on the way, `..` leads elsewhere than the letters say.
     (here / "link").symlink_to(tmp_path / "linked" / "deep")
     assert shown_path(Path("link/../a.csv")) == "link/../a.csv"
+
+
+def test_a_path_from_a_folder_that_is_gone_is_shown_as_typed(monkeypatch):
+    def gone() -> str:
+        raise FileNotFoundError
+
+    monkeypatch.setattr(os, "getcwd", gone)
+    assert shown_path(Path("b/../a.csv")) == "b/../a.csv"
