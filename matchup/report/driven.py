@@ -33,7 +33,7 @@ from matchup.search.option import (
     Taken,
 )
 
-VERDICTS_SHORT = {DRIVES: "", GOES_DOWN: "goes down"}
+VERDICTS_SHORT = {DRIVES: "", GOES_DOWN: "down"}
 """For people a station that is driven needs no word."""
 
 
@@ -245,7 +245,7 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
         (Column("blows_per_minute", "blows\n/min", 0, keep=4), lambda row: _rate(row[1])),
         (Column("wear", "cush-\nion", keep=5), lambda row: _cushion(row[1])),
         (Column("blows", "blows\nso far", 0), lambda row: _taken(row[1]).blows),
-        (Column("minutes", "min", 0), lambda row: minutes(_taken(row[1]).seconds)),
+        (Column("minutes", "min", 0, keep=7), lambda row: minutes(_taken(row[1]).seconds)),
         (Column("verdict", "", short=VERDICTS_SHORT), lambda row: row[1].verdict),
     ]
     idle = {

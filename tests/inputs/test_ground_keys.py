@@ -461,9 +461,9 @@ def test_an_open_tube_has_no_nen_base(drives):
     assert "alm hamre 2001" in problem.do
 
 
-def test_a_missing_file_is_told_with_the_nearest_name(drives):
+def test_a_missing_file_is_told_on_its_key_with_the_nearest_name(drives):
     problem = drives.one(("layers.csv", "layer.csv"))
-    assert problem.file == "layer.csv"
+    assert (problem.file, problem.place) == ("job.toml", "ground.layers")
     assert "`layers.csv`" in problem.do
 
 
