@@ -181,7 +181,7 @@ class Job:
         )
         for stage in self.stages:
             rules.must(
-                not stage.penetration > self.pile.length,
+                not stage.penetration > self.pile.length * (1 + 1e-9),
                 f"stages.{stage.name}.penetration",
                 "must be at most the pile's length",
                 stage.penetration,

@@ -101,6 +101,8 @@ class StagePlan:
         The one wear state planned for; empty for every one asked for.
     taken : Taken or None
         In a drive, what it took to get here from the first station.
+    energy_set : float or None
+        The hammer's setting where that is an energy, and the stroke its equivalent. [J]
     """
 
     stage: Stage
@@ -122,6 +124,7 @@ class StagePlan:
     why: str = ""
     wear: str = ""
     taken: Taken | None = None
+    energy_set: float | None = None
 
     @property
     def set_share(self) -> float:
@@ -239,7 +242,8 @@ class Option:
     verdict : str
         One of `VERDICTS`.
     governs : str
-        ``set``, ``compression``, ``tension``, ``stroke range``, ``refusal`` or ``weight``.
+        ``set``, ``compression``, ``tension``, ``stroke range``, ``blow rate``, ``refusal`` or
+        ``weight``.
     stack : Stack
         Cushions.
     plans : tuple of StagePlan

@@ -19,7 +19,7 @@ from matchup.model.pile import Pile, Section
 from matchup.model.stage import Stage
 
 BLOWS = 4000
-PILE = Pile("concrete", Section.square(0.35), 20.0, 35e9, 2450.0, 50e6, 6e6)
+PILE = Pile.uniform("concrete", Section.square(0.35), 20.0, 35e9, 2450.0, 50e6, 6e6)
 HAMMER = Hammer(
     "ram 5 t", "hydraulic", 5000.0, 0.1, 1.5, 0.85, helmet_mass=800.0, cushion=Spring(2.5e9, 0.8)
 )

@@ -159,7 +159,7 @@ def uncommented(text: str) -> str:
     [
         ('material = "concrete"', 'material = "stone"', "job.pile.material is none of"),
         ('length = "24 m"', "length = 24", "job.pile.length is no string"),
-        ('length = "24 m"', "", "job.pile.length is missing"),
+        ('penetration = "21 m"', "", "job.stages[1].penetration is missing"),
         ('length = "24 m"', 'length = "24 m"\nlenght = "24 m"', "job.pile.lenght is unknown"),
         ('rule = "aashto"', 'rule = "x"', "job.limits.rule is none of"),
         ('rule = "aashto"', "tension = 85", "job.limits.tension is out of range"),
@@ -173,13 +173,14 @@ def test_the_schema_refuses_what_the_reader_refuses(old, new, fault):
 
 
 def test_the_schema_says_what_units_a_key_takes():
-    pile = SCHEMA["$defs"]["PileKeys"]["properties"]
-    assert pile["length"] == {
+    stage = SCHEMA["$defs"]["StageKeys"]["properties"]
+    assert stage["penetration"] == {
         "description": "length with its unit (m or ft), above 0",
-        "title": "Length",
+        "title": "Penetration",
         "type": "string",
     }
-    assert all("title" in one or "$ref" in one or "description" in one for one in pile.values())
+    for one in (*stage.values(), *SCHEMA["$defs"]["PileKeys"]["properties"].values()):
+        assert {"title", "$ref", "description", "anyOf"} & set(one)
 
 
 # --- starter -------------------------------------------------------------------------------------
@@ -205,8 +206,9 @@ def test_every_option_of_the_starter_can_be_put_in_force(tmp_path):
     path.write_text(text)
     job = load_job(path)
     assert len(job.hammer_cushions) == 6
-    assert job.limits.compression == 28e6
-    assert job.pile.modulus == 34e9
+    assert job.limits.compression == 0.9 * 28e6
+    assert job.pile.toe.modulus == 34e9
+    assert [part.name for part in job.pile.column] == ["follower", "upper", "lower"]
     assert [notice.rpartition(": ")[2] for notice in job.notices] == [
         "both limits are given",
         "`shaft_damping` is given",
