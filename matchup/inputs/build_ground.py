@@ -17,6 +17,7 @@ from matchup.ground.cases import Case, Loosened, Pause
 from matchup.ground.methods import METHODS
 from matchup.ground.soil import SetupLaw, time_text
 from matchup.ground.stages import resistance_stages
+from matchup.inputs.build_pile import length_of, length_typed
 from matchup.inputs.findings import Findings, shown_fault, shown_path
 from matchup.inputs.ground_told import ground_basis, known_depths, note_without_effect
 from matchup.inputs.job_text import JobText, named_file

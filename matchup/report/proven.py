@@ -81,7 +81,7 @@ def _proof(found: Criterion, job: Job, units: Units) -> str:
     needed = f"To prove {units.text(found.needed, 'force')} long after driving{why}"
     proving = [
         f"{units.text(float(set_), 'set')} ({units.blow_count(float(set_)):.0f} blows/"
-        f"{units.counted}) at {units.text(float(stroke), 'stroke')}"
+        f"{units.counted}) at {units.setting(job.hammers[0], float(stroke))}"
         for stroke, set_ in zip(found.strokes, found.proving, strict=True)
         if set_ == set_
     ]
