@@ -52,7 +52,8 @@ def test_the_same_verdict_comes_from_rank_check_and_drive():
         (("drive", TUBE, "--hammer", "Storck"), ["hammer: must name a hammer", "'Stork'"]),
         (("drive", TUBE, *STORK, "--case", "mean"), ["case: must be a case of the job: low, best"]),
         (("drive", TUBE, *STORK, "--cushion", "oak"), ["cushion: must be left out"]),
-        (("drive", TABLE, "--hammer", "Lapwing", "--cushion", "oak", "--sheets", "0"), ["sheets: must be >= 1"]),
+        (("drive", TABLE, "--hammer", "Lapwing", "--cushion", "oak", "--sheets", "0"),
+         ["sheets: must be >= 1"]),
         (("drive", TABLE, "--hammer", "Lapwing", "--thickness", "9"), ["thickness: must have a"]),
     ],
 )  # fmt: skip
