@@ -15,7 +15,7 @@ from matchup.model.hammer import STANDARD_GRAVITY, Hammer
 from matchup.model.job import Analysis
 from matchup.model.pile import Pile
 from matchup.model.stage import Stage
-from matchup.wave.layout import Bar, Blows, Floats, Grounds, Integers
+from matchup.wave.layout import SUBSTEPS, Bar, Blows, Floats, Grounds, Integers
 from matchup.wave.rest import rest
 
 CUSHIONED_TRAVEL = 0.125e-3
@@ -313,7 +313,7 @@ def head_rows(
         )
     )
     frequency = np.sqrt((unloading_1 + unloading) / helmet + unloading_1 / ram)
-    wanted = np.maximum(chains.bar.step * frequency / HEAD_ACCURACY, 1.0)
+    wanted = np.maximum(chains.bar.step * frequency / HEAD_ACCURACY, SUBSTEPS)
     substeps = (2 ** np.ceil(np.log2(wanted))).astype(np.int64)
     return np.ascontiguousarray(head), substeps
 
