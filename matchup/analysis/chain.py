@@ -18,10 +18,12 @@ from matchup.model.stage import Stage
 from matchup.wave.layout import SUBSTEPS, Bar, Blows, Floats, Grounds, Integers
 from matchup.wave.rest import rest
 
-CUSHIONED_TRAVEL = 0.125e-3
-"""Longest travel time of a segment under a pile cushion, about 0.5 m of concrete. [s]"""
+CUSHIONED_TRAVEL = 0.145e-3
+"""Longest travel time of a segment under a pile cushion, about 0.57 m of concrete. [s]"""
 BARE_TRAVEL = 0.08e-3
 """The same for a helmet on the pile, where the wave front is steeper: 0.4 m of steel. [s]"""
+TIMBER_TRAVEL = 0.07e-3
+"""The same for a timber pile, whose small impedance hardly damps the ringing of the helmet. [s]"""
 FEWEST_SEGMENTS = 16
 HEAD_ACCURACY = 0.3
 """Sub-step of the head times the largest circular frequency of ram and helmet."""
@@ -94,11 +96,12 @@ def enough_segments(pile: Pile, cushioned: bool, stages: Sequence[Stage] = ()) -
     """Return the number of segments that meets the accuracy asked of a blow.
 
     Found by comparing random realistic blows with refinements; the figures stand in the
-    contributor guide. A timber pile takes the finer step even under a cushion, since its small
-    impedance hardly damps the ringing of the helmet. Very stiff toes shorten the step further, so
-    that the toe spring gives way less in half a step than the pile.
+    contributor guide. Very stiff toes shorten the step further, so that the toe spring gives way
+    less in half a step than the pile.
     """
-    longest = CUSHIONED_TRAVEL if cushioned and pile.material != "timber" else BARE_TRAVEL
+    longest = CUSHIONED_TRAVEL if cushioned else BARE_TRAVEL
+    if pile.material == "timber":
+        longest = TIMBER_TRAVEL
     for stage in stages:
         if stage.toe > 0:
             longest = min(longest, 2 * pile.impedance * stage.toe_quake / stage.toe)
