@@ -56,11 +56,13 @@ from matchup.wave.layout import (
 QUIET_ENERGY = 0.01
 """A blow may end when the kinetic energy left is below this share of the ram's at impact and no
 extreme has grown since the last check, at `SETTLED_CHECKS` checks in a row."""
-SETTLED_CHECKS = 2
+SETTLED_CHECKS = 3
 RINGING_CHECKS = 6
-"""It may also end when ram and helmet have come to rest or left, and no extreme has grown at so
-many checks in a row: waves run up and down a pile in weak soil for long without reaching their
-extremes again."""
+"""It may also end when ram and helmet have come to rest or left, the pile head has been left alone
+and no extreme has grown at so many checks in a row: waves run up and down a pile in weak soil for
+long without reaching their extremes again, unless the helmet gives them new ones."""
+SLIGHT_FORCE = 0.1
+"""A force on the head below this share of the largest leaves it alone."""
 SLIGHT_TENSION = 0.02
 """Tension below this share of the largest compression is too slight to keep a blow going."""
 
@@ -133,11 +135,14 @@ def _judge(bar: Bar, state: Floats) -> None:
         hammer = _energy_left(h[RAM_MASS + lane], h[RAM_V + lane], h[FORCE_1 + lane])
         hammer += _energy_left(h[HELMET_MASS + lane], h[HELMET_V + lane], h[FORCE_2 + lane])
         little = h[LITTLE + lane]
+        left_alone = h[FORCE_NOW + lane] < SLIGHT_FORCE * h[HEAD_BLOCK + PEAK + lane]
         settles = (hammer + h[PILE_ENERGY + lane] < little) & ~grown
-        rings = (hammer < little) & ~grown
+        rings = (hammer < little) & left_alone & ~grown
         settled = h[SETTLED + lane] + 1.0 if settles else 0.0
         ringing = h[RINGING + lane] + 1.0 if rings else 0.0
-        over = (settled >= SETTLED_CHECKS) | (ringing >= RINGING_CHECKS)
+        speeds = h[RAM_V + lane] * h[RAM_V + lane] + h[HELMET_V + lane] * h[HELMET_V + lane]
+        diverged = ~(speeds + h[PILE_ENERGY + lane] < math.inf)
+        over = (settled >= SETTLED_CHECKS) | (ringing >= RINGING_CHECKS) | diverged
         h[IS_OVER + lane] = 1.0 if over else 0.0
         h[SETTLED + lane], h[RINGING + lane] = settled, ringing
         h[PEAK_SEEN + lane], h[LEAST_SEEN + lane], h[TOE_SEEN + lane] = peak, least, toe
