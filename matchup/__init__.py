@@ -22,12 +22,14 @@ if TYPE_CHECKING:
         CheckResult,
         DriveResult,
         RankingResult,
+        ReportResult,
         WindowResult,
         blow,
         check,
         drive,
         load_job,
         rank,
+        tender_report,
         window,
     )
 
@@ -40,6 +42,7 @@ __all__ = [
     "InputError",
     "MatchupError",
     "RankingResult",
+    "ReportResult",
     "WindowResult",
     "__version__",
     "blow",
@@ -47,6 +50,7 @@ __all__ = [
     "drive",
     "load_job",
     "rank",
+    "tender_report",
     "window",
 ]
 

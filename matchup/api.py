@@ -8,12 +8,15 @@ from __future__ import annotations
 
 import os
 from collections.abc import Sequence
+from contextlib import suppress
 from dataclasses import dataclass, replace
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from matchup import __version__
 from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
-from matchup.errors import InputError, Problem
+from matchup.errors import AnalysisError, InputError, Problem
 from matchup.inputs import load_job
 from matchup.model.job import Job
 from matchup.model.selection import (
@@ -26,20 +29,27 @@ from matchup.model.selection import (
 )
 from matchup.report.document import blow_document, check_document, ranking_document
 from matchup.report.driven import (
+    chosen_case,
     criterion_document,
     criterion_page,
     drive_document,
     drive_page,
     stations_table,
 )
+from matchup.report.files import figure_kind, refuse_taken, write_file, write_folder
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
+from matchup.report.opinions import formula_fields, opinion_document, opinions_page
 from matchup.report.options import options_table, schedule_table
-from matchup.report.page import Page, page_html, page_text
+from matchup.report.page import Headline, Page, page_html, page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
-from matchup.report.table import Table
+from matchup.report.table import Table, tabled
+from matchup.report.tender.bundle import NAMES, report_files
+from matchup.report.tender.dossier import Dossier
+from matchup.report.tender.sections import sections
 from matchup.search.criterion import Criterion, find_criterion
+from matchup.search.opinion import Opinion, second_opinion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers
 from matchup.search.stroke_map import StrokeMap, map_strokes
@@ -47,18 +57,21 @@ from matchup.units import UnitError, parse_quantity
 
 if TYPE_CHECKING:
     import pandas as pd
+    from matplotlib.figure import Figure
 
 __all__ = [
     "BlowResult",
     "CheckResult",
     "DriveResult",
     "RankingResult",
+    "ReportResult",
     "WindowResult",
     "blow",
     "check",
     "drive",
     "load_job",
     "rank",
+    "tender_report",
     "window",
 ]
 
@@ -76,8 +89,30 @@ class _Shown:
         """Return the result as it is printed, in ``metric`` or ``us`` units or the job's."""
         return page_text(self.page(display), width)
 
+    def figure(self, display: str | None = None) -> Figure:
+        """Return the result as a figure of matplotlib, to be shown, changed or saved."""
+        raise NotImplementedError
+
+    def plot(self, path: str | os.PathLike[str], display: str | None = None) -> None:
+        """Draw the result to a file, as SVG, PNG or PDF by the file's ending.
+
+        Raises
+        ------
+        InputError
+            If the ending is another one, or the file can't be written.
+        """
+        kind = figure_kind(Path(path))
+        from matchup.report.figures.drawing import rendered
+
+        write_file(Path(path), rendered(self.figure(display), kind), "plot")
+
     def _repr_html_(self) -> str:
-        return page_html(self.page())
+        from matchup.report.figures.drawing import rendered
+        from matchup.report.picture import picture_html
+
+        figure = self.figure()
+        drawn = picture_html(rendered(figure, "svg"), figure.get_suptitle())
+        return f"{page_html(self.page())}{drawn}"
 
     def __str__(self) -> str:
         return self.to_text()
@@ -90,9 +125,12 @@ class RankingResult(_Shown):
     Parameters
     ----------
     ranking : Ranking
+    opinions : tuple of Opinion
+        What dynamic formulas make of the options, best first; empty where not asked for.
     """
 
     ranking: Ranking
+    opinions: tuple[Opinion, ...] = ()
 
     @property
     def job(self) -> Job:
@@ -111,7 +149,27 @@ class RankingResult(_Shown):
 
     def page(self, display: str | None = None) -> Page:
         """Return the ranking as blocks of prose and tables."""
-        return ranking_page(self.ranking, _units(self.job, display))
+        units = _units(self.job, display)
+        return self._with_opinions(ranking_page(self.ranking, units), units)
+
+    def _with_opinions(self, page: Page, units: Units) -> Page:
+        """Return a page with the second opinion before its foot."""
+        if not self.opinions:
+            return page
+        return [*page[:-1], *opinions_page(self.opinions, units), page[-1]]
+
+    def _document(self, document: dict[str, Any]) -> dict[str, Any]:
+        """Return a document with the second opinion by hammer."""
+        if not self.opinions:
+            return document
+        told = {opinion.hammer: opinion_document(opinion) for opinion in self.opinions}
+        return document | {"formulas": told}
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw the trade-off of the hammers that drive, or how near the others come."""
+        from matchup.report.figures.tradeoff import ranking_figure
+
+        return ranking_figure(self.ranking, _units(self.job, display))
 
     def to_frame(self) -> pd.DataFrame:
         """Return every hammer as a row of a tidy data frame, best first.
@@ -127,11 +185,16 @@ class RankingResult(_Shown):
         """Return the table of all hammers as CSV."""
         everyone = (*self.options, *self.rejected)
         objective = self.job.search.objective
-        return options_table(everyone, _units(self.job, display), objective).to_csv()
+        units = _units(self.job, display)
+        table = options_table(everyone, units, objective)
+        if self.opinions:
+            fields = formula_fields(units)
+            table = table.beside(tabled(self.opinions, fields))
+        return table.to_csv()
 
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
-        return ranking_document(self.ranking, _units(self.job, display))
+        return self._document(ranking_document(self.ranking, _units(self.job, display)))
 
 
 @dataclass(frozen=True)
@@ -150,7 +213,14 @@ class CheckResult(RankingResult):
 
     def page(self, display: str | None = None) -> Page:
         """Return the answer as blocks of prose and tables."""
-        return check_page(self.ranking, _units(self.job, display))
+        units = _units(self.job, display)
+        return self._with_opinions(check_page(self.ranking, units), units)
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw how far the hammer is from what is asked of it."""
+        from matchup.report.figures.margins import margins_figure
+
+        return margins_figure((self.option,), self.ranking, _units(self.job, display))
 
     def to_csv(self, display: str | None = None) -> str:
         """Return what the hammer does at every stage as CSV."""
@@ -158,7 +228,7 @@ class CheckResult(RankingResult):
 
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
-        return check_document(self.ranking, _units(self.job, display))
+        return self._document(check_document(self.ranking, _units(self.job, display)))
 
 
 @dataclass(frozen=True)
@@ -183,6 +253,13 @@ class DriveResult(CheckResult):
         if self.criterion is not None:
             page[-1:-1] = criterion_page(self.criterion, self.job, units)
         return page
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""
+        from matchup.report.figures.drive import drive_figure
+
+        told = chosen_case(self.option, self.case)
+        return drive_figure(self.option, told, self.job, _units(self.job, display))
 
     def to_frame(self) -> pd.DataFrame:
         """Return every station of every case as a row, in the JSON document's fixed units."""
@@ -221,6 +298,12 @@ class WindowResult(_Shown):
         """Return the map as blocks of prose and a grid."""
         return map_page(self.map, _units(self.map.job, display))
 
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw where the hammer works in the plane of stroke and cushion."""
+        from matchup.report.figures.window import window_figure
+
+        return window_figure(self.map, _units(self.map.job, display))
+
     def to_frame(self) -> pd.DataFrame:
         """Return every cell as a row of a tidy data frame, in the JSON document's fixed units."""
         return _frame(map_document(self.map)["cells"])
@@ -251,6 +334,12 @@ class BlowResult(_Shown):
         """Return the blow as blocks of prose and a table."""
         return blow_page(self.blow, self.job, _units(self.job, display))
 
+    def figure(self, display: str | None = None) -> Figure:
+        """Draw the waves of the blow, what the head feels of them, and the stresses."""
+        from matchup.report.figures.blow import blow_figure
+
+        return blow_figure(self.blow, self.job.pile, _units(self.job, display))
+
     def trace_table(self, display: str | None = None) -> Table:
         """Return head and toe against time."""
         return trace_table(self.blow, _units(self.job, display))
@@ -272,6 +361,61 @@ class BlowResult(_Shown):
     def to_dict(self, traces: bool = False) -> dict[str, object]:
         """Return the JSON document as plain data."""
         return blow_document(self.blow, traces)
+
+
+@dataclass(frozen=True)
+class ReportResult(_Shown):
+    """A tender report that can be shown and written.
+
+    Parameters
+    ----------
+    dossier : Dossier
+    """
+
+    dossier: Dossier
+
+    @property
+    def can(self) -> bool:
+        """Whether any hammer can drive the pile."""
+        return bool(self.dossier.ranking.options)
+
+    def page(self, display: str | None = None) -> Page:
+        """Return the report as blocks, each section under its heading."""
+        parts = sections(self.dossier, _units(self.dossier.job, display))
+        return [block for part in parts for block in (Headline(part.heading), *part.blocks)]
+
+    def files(self, display: str | None = None) -> dict[str, bytes]:
+        """Return the report's files by name: web page, PDF, workbook, CSV and JSON.
+
+        The PDF needs the extra ``pdf`` and is left out without it.
+        """
+        return report_files(self.dossier, _units(self.dossier.job, display))
+
+    def write(
+        self, folder: str | os.PathLike[str], display: str | None = None, force: bool = False
+    ) -> tuple[str, ...]:
+        """Write the report's files to a folder, all or none, and return their names.
+
+        Parameters
+        ----------
+        folder : path
+            Made if need be.
+        force : bool
+            Replace the files of a report that is there.
+
+        Raises
+        ------
+        InputError
+            If the folder holds a report already, or can't be written to.
+        """
+        if not force:
+            refuse_taken(Path(folder), NAMES, "output")
+        made = self.files(display)
+        write_folder(Path(folder), made, "output")
+        return tuple(made)
+
+    def _repr_html_(self) -> str:
+        return page_html(self.page())
 
 
 def _units(job: Job, display: str | None) -> Units:
@@ -301,6 +445,8 @@ def rank(
     workers: int | None = None,
     seed: int | None = None,
     tell: Tell | None = None,
+    *,
+    formulas: bool = False,
 ) -> RankingResult:
     """Rank all hammers of a job.
 
@@ -313,6 +459,8 @@ def rank(
         Replaces the job's.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    formulas : bool
+        Add the second opinion of dynamic formulas, which decides nothing.
 
     Raises
     ------
@@ -322,7 +470,8 @@ def rank(
     job = _job(job)
     if seed is not None:
         job = replace(job, search=replace(job.search, seed=seed))
-    return RankingResult(rank_hammers(job, workers, tell))
+    ranking = rank_hammers(job, workers, tell)
+    return RankingResult(ranking, _opinions(ranking) if formulas else ())
 
 
 def check(
@@ -330,6 +479,8 @@ def check(
     hammer: str | None = None,
     workers: int | None = None,
     tell: Tell | None = None,
+    *,
+    formulas: bool = False,
 ) -> CheckResult:
     """Answer whether one hammer can drive the pile, and if not, what stops it.
 
@@ -342,6 +493,8 @@ def check(
         Threads; None takes as many as there are processors.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    formulas : bool
+        Add the second opinion of dynamic formulas, which decides nothing.
 
     Raises
     ------
@@ -350,7 +503,14 @@ def check(
     """
     job = _job(job)
     alone = replace(job, hammers=(select_hammer(job, hammer),))
-    return CheckResult(rank_hammers(alone, workers, tell))
+    ranking = rank_hammers(alone, workers, tell)
+    return CheckResult(ranking, _opinions(ranking) if formulas else ())
+
+
+def _opinions(ranking: Ranking) -> tuple[Opinion, ...]:
+    """Return what dynamic formulas make of every hammer, best first."""
+    everyone = (*ranking.options, *ranking.rejected)
+    return tuple(second_opinion(option, ranking.job) for option in everyone)
 
 
 def drive(
@@ -406,7 +566,7 @@ def drive(
     proof = None
     if criterion and ranking.options:
         proof = find_criterion(alone, ranking.options[0], workers, tell)
-    return DriveResult(ranking, case, proof)
+    return DriveResult(ranking, case=case, criterion=proof)
 
 
 def window(
@@ -490,6 +650,68 @@ def blow(
         job, selected.stage, selected.hammer, selected.stack, selected.wear, stroke
     )
     return BlowResult(computed, job)
+
+
+def tender_report(
+    job: JobLike,
+    detail: str | None = None,
+    workers: int | None = None,
+    seed: int | None = None,
+    tell: Tell | None = None,
+) -> ReportResult:
+    """Compute all that a tender report tells of.
+
+    Parameters
+    ----------
+    job : Job or path
+    detail : str or None
+        Name of the hammer that is told in full; None takes the best, or the nearest miss.
+    workers : int or None
+        Threads; None takes as many as there are processors.
+    seed : int or None
+        Replaces the job's.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+
+    Raises
+    ------
+    InputError
+        If the job has problems, or no hammer of that name.
+    """
+    job = _job(job)
+    name = None if detail is None else select_hammer(job, detail).name
+    ranking = rank(job, workers, seed, tell).ranking
+    job = ranking.job
+    everyone = (*ranking.options, *ranking.rejected)
+    option = next(o for o in everyone if name in (None, o.hammer.name))
+    alone = replace(job, hammers=(option.hammer,))
+    proof = None
+    if job.drive is not None and option.drives:
+        proof = find_criterion(alone, option, workers, tell)
+    plan = option.failing or option.target
+    found = map_strokes(job, option.hammer, plan.stage, workers, tell)
+    blows = _telling_blows(job, option)
+    return ReportResult(Dossier(ranking, option, found, blows, __version__, proof))
+
+
+def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
+    """Return a blow at the target, and one where the stress is highest, where they can be had."""
+    plans = [option.failing or option.target]
+    tightest = option.tightest or max(option.plans, key=lambda plan: plan.stress_use)
+    if tightest.stage != plans[0].stage:
+        plans.append(tightest)
+    wears = job.cushions.wears if job.cushions else (pick_wear(job, None, []),)
+    telling = []
+    for plan in plans:
+        blows = []
+        for wear in (plan.wear,) if plan.wear else wears:
+            with suppress(AnalysisError):
+                blows.append(
+                    compute_blow(job, plan.stage, option.hammer, option.stack, wear, plan.stroke)
+                )
+        # Of the wear states, the one that decides.
+        telling += sorted(blows, key=lambda blow: -blow.stress_use)[:1]
+    return tuple(telling)
 
 
 def _job(job: JobLike) -> Job:

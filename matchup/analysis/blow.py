@@ -14,6 +14,7 @@ import numpy as np
 from matchup.analysis.chain import Chains, head_rows, set_quake
 from matchup.wave.layout import COLUMNS, DIVERGED, ENDED, LANES, Blows, Flags, Floats, Integers
 from matchup.wave.march import march
+from matchup.wave.record import record
 
 LONGEST_BLOW = 2.0
 """A blow that has not come to rest by then is an error. [s]"""
@@ -147,6 +148,22 @@ def strike(
     else:
         list(_pool(workers).map(run, queues))
     return _results(chains, strikes, out, envelope, trace)
+
+
+def record_forces(chains: Chains, strikes: Strikes, steps: int) -> Floats:
+    """Return the force along the pile against time in the first of some blows.
+
+    Returns
+    -------
+    (steps, segments) float64 array
+        In the segments at the end of each step, compression positive. [N]
+    """
+    head, substeps = head_rows(chains, *strikes[1:])
+    ground = np.ascontiguousarray(chains.ground_of[strikes.stage, strikes.hammer])
+    forces = np.zeros((steps, chains.depth.size - 1))
+    first = np.zeros(LANES, np.int64)
+    record(chains.bar, chains.grounds, Blows(ground, substeps, head), first, forces)
+    return forces
 
 
 def _stopping_times(chains: Chains, strikes: Strikes) -> Floats:

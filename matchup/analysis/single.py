@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from matchup.analysis.blow import Strikes, strike
+from matchup.analysis.blow import Strikes, record_forces, strike
 from matchup.analysis.chain import build_chains, enough_segments, pile_contact, set_quake
 from matchup.errors import AnalysisError
 from matchup.model.cushion import Cushion, Stack
@@ -54,6 +54,25 @@ class Trace:
 
 
 @dataclass(frozen=True, slots=True)
+class Waves:
+    """Force all along the pile against time.
+
+    Parameters
+    ----------
+    time : (steps,) float64 array
+        From impact. [s]
+    distance : (segments + 1,) float64 array
+        Ends of the segments, from the head. [m]
+    force : (steps, segments) float64 array
+        In each segment, compression positive. [N]
+    """
+
+    time: Floats
+    distance: Floats
+    force: Floats
+
+
+@dataclass(frozen=True, slots=True)
 class Blow:
     """One blow and all that is needed to judge it.
 
@@ -88,6 +107,7 @@ class Blow:
         [s]
     envelope : Envelope
     trace : Trace
+    waves : Waves
     """
 
     hammer: Hammer
@@ -115,11 +135,17 @@ class Blow:
     duration: float
     envelope: Envelope
     trace: Trace
+    waves: Waves
 
     @property
     def cushion(self) -> Cushion | None:
         """Pile cushion."""
         return self.stack.pile
+
+    @property
+    def stress_use(self) -> float:
+        """The larger use of a stress limit [-]."""
+        return max(self.compression_use, self.tension_use)
 
     @property
     def hammer_cushion(self) -> str:
@@ -149,20 +175,16 @@ def compute_blow(
     spring = stack.pile.spring(wear) if stack.pile else pile_contact(job.pile)
     other = stack.hammer.spring if stack.hammer else None
     first = np.zeros(1, np.int64)
-    struck = strike(
-        chains,
-        Strikes(
-            first,
-            first,
-            np.array([spring.stiffness]),
-            np.array([spring.restitution]),
-            np.array([stroke]),
-            None if other is None else np.array([other.stiffness]),
-            None if other is None else np.array([other.restitution]),
-        ),
-        detail=True,
-        workers=1,
+    strikes = Strikes(
+        first,
+        first,
+        np.array([spring.stiffness]),
+        np.array([spring.restitution]),
+        np.array([stroke]),
+        None if other is None else np.array([other.stiffness]),
+        None if other is None else np.array([other.restitution]),
     )
+    struck = strike(chains, strikes, detail=True, workers=1)
     if not struck.sound[0]:
         raise AnalysisError(f"{what}: {struck.why_unsound(0)}")
     raw = dict(zip(COLUMNS, struck.raw[0], strict=True))
@@ -202,4 +224,5 @@ def compute_blow(
         trace=Trace(
             (steps + 0.5) * step, struck.trace[:, 0], struck.trace[:, 1], struck.trace[:, 2]
         ),
+        waves=Waves((steps + 1) * step, chains.depth, record_forces(chains, strikes, steps.size)),
     )

@@ -8,7 +8,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import Common, screen_width, show_result
+from matchup.cli.show import Common, Plot, screen_width, show_result
 
 
 def blow(
@@ -30,6 +30,7 @@ def blow(
     traces: Annotated[
         bool, Parameter(negative="", help="With stresses along the pile and time histories.")
     ] = False,
+    plot: Plot = None,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
     """Compute one blow in detail."""
@@ -47,7 +48,7 @@ def blow(
         hammer_cushion=hammer_cushion,
         best=best,
     )
-    show_result(result, common, partial(result.to_dict, traces))
+    show_result(result, common, partial(result.to_dict, traces), plot)
     if traces and not common.json:
         for table in (result.envelope_table(common.display), result.trace_table(common.display)):
             print(f"\n{table.to_text(screen_width())}")

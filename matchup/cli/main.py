@@ -35,6 +35,7 @@ app.command("matchup.cli.check:check", help="Can this hammer drive this pile, an
 app.command("matchup.cli.window:window", help="Stroke against cushion: where it works.")
 app.command("matchup.cli.drive:drive", help="The whole drive by depth, in every ground case.")
 app.command("matchup.cli.blow:blow", help="Compute one blow in detail.")
+app.command("matchup.cli.report:report", help="Write the report for a tender.")
 app.command("matchup.cli.new:new", help="Write a starter job with catalogues.")
 app.command("matchup.cli.lint:lint", help="Check job files and catalogues.")
 app.command("matchup.cli.schema:schema", help="JSON Schema of the job file, for editors.")

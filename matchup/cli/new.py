@@ -7,8 +7,8 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import write_file
 from matchup.errors import InputError, Problem
+from matchup.report.files import write_file
 
 
 def new(folder: Annotated[Path, Parameter(help="New or empty folder.")]) -> int:

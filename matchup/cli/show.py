@@ -8,7 +8,6 @@ import shutil
 import sys
 import time
 from collections.abc import Callable, Sequence
-from contextlib import suppress
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Literal, Protocol
@@ -17,6 +16,7 @@ from cyclopts import Parameter
 from cyclopts.validators import Number
 
 from matchup.errors import InputError, Problem
+from matchup.report.files import figure_kind, write_file
 
 if TYPE_CHECKING:
     from rich.status import Status
@@ -37,6 +37,24 @@ def _can_be_written(_: object, path: Path | None) -> None:
         raise ValueError(f"Must be in a folder that exists; {path.parent} does not.")
     if not os.access(path if path.exists() else path.parent, os.W_OK):
         raise ValueError("Must be a file that can be written; permission denied.")
+
+
+def _can_be_drawn(_: object, path: Path | None) -> None:
+    """Refuse a file whose ending names no kind of figure, or that can't be written."""
+    _can_be_written(_, path)
+    if path is not None:
+        try:
+            figure_kind(path)
+        except InputError as error:
+            problem = error.problems[0]
+            raise ValueError(f"{problem.must.capitalize()}, but got {problem.found}.") from None
+
+
+Plot = Annotated[
+    Path | None,
+    Parameter(help="Draw to this file: .svg, .png or .pdf.", validator=_can_be_drawn),
+]
+"""An option of the commands whose answer can be drawn."""
 
 
 @Parameter(name="*")
@@ -93,9 +111,15 @@ class Showable(Protocol):
     def to_dict(self) -> dict[str, object]:
         """Return the JSON document."""
 
+    def plot(self, path: Path, display: str | None) -> None:
+        """Draw the answer to a file."""
+
 
 def show_result(
-    result: Showable, common: Common, document: Callable[[], dict[str, object]] | None = None
+    result: Showable,
+    common: Common,
+    document: Callable[[], dict[str, object]] | None = None,
+    plot: Path | None = None,
 ) -> None:
     """Write and print a result as the user asked for it.
 
@@ -105,9 +129,14 @@ def show_result(
     common : Common
     document : callable or None
         Makes the JSON document; None takes the result's own.
+    plot : path or None
+        File for a figure.
     """
+    if plot:
+        result.plot(plot, common.display)
+        tell(common, f"wrote {plot}")
     if common.csv:
-        write_file(common.csv, result.to_csv(common.display))
+        write_file(common.csv, result.to_csv(common.display), "--csv")
         tell(common, f"wrote {common.csv}")
     if common.json:
         show_document((document or result.to_dict)())
@@ -152,38 +181,3 @@ class Progress:
     def __exit__(self, *_: object) -> None:
         if self._status is not None:
             self._status.stop()
-
-
-def write_file(path: Path, text: str, place: str = "--csv") -> None:
-    """Write a text file whole or not at all; a device or a pipe gets it as it comes.
-
-    Parameters
-    ----------
-    place : str
-        The option that named the file, for the message.
-
-    Raises
-    ------
-    InputError
-        If it can't be written.
-    """
-    try:
-        if path.exists() and not path.is_file():
-            path.write_text(text, encoding="utf-8", newline="")
-        else:
-            _write_whole(path, text)
-    except OSError as error:
-        why = f"the answer: {error.strerror or error}"
-        problem = Problem(str(path), None, place, "must be a file that can be written", why)
-        raise InputError([problem]) from None
-
-
-def _write_whole(path: Path, text: str) -> None:
-    part = path.with_name(path.name + ".part")
-    try:
-        part.write_text(text, encoding="utf-8", newline="")
-        part.replace(path)
-    except BaseException:
-        with suppress(OSError):
-            part.unlink(missing_ok=True)
-        raise

@@ -7,7 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, show_result
 
 
 def window(
@@ -18,6 +18,7 @@ def window(
     every_stage: Annotated[
         bool, Parameter(negative="", help="Strokes that work at every stage and required case.")
     ] = False,
+    plot: Plot = None,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
     """Stroke against cushion: where it works, and what stops it."""
@@ -25,5 +26,5 @@ def window(
 
     with Progress(common) as tell:
         result = api.window(job, hammer, stage, common.workers, tell, every_stage=every_stage)
-    show_result(result, common)
+    show_result(result, common, plot=plot)
     return 0 if result.is_open else THE_ANSWER_IS_NO

@@ -15,11 +15,18 @@ __all__ = ["Findings", "did_you_mean", "shown_fault", "shown_path"]
 
 @dataclass
 class Findings:
-    """What readers found: problems of all files, in the order of reading, and notices."""
+    """What readers found: problems of all files, in the order of reading, notices, and digests.
+
+    Parameters
+    ----------
+    digests : dict
+        SHA-256 of the files that were read, by the name under which they are shown.
+    """
 
     problems: list[Problem] = field(default_factory=list)
     notices: list[str] = field(default_factory=list)
     files: list[str] = field(default_factory=list)
+    digests: dict[str, str] = field(default_factory=dict)
 
     def begin(self, file: str) -> None:
         """Give a file its turn among the problems, whichever of them is found first."""

@@ -74,6 +74,10 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     space = build_cushions.build_cushion_space(text, keys, pile, known)
     others = build_cushions.build_hammer_cushions(text, keys, known)
     hammers = build_cushions.with_helmets(text, keys, hammers)
+    unknown = [hammer.name for hammer in hammers if hammer.blow_rate(hammer.stroke_max) is None]
+    if keys.search.objective == "time" and 0 < len(unknown) < len(hammers):
+        what = f"puts {', '.join(unknown)} last: their rows give no blow rate"
+        text.notice(("search", "objective"), what)
     findings.close()
     assert pile is not None
     assert limits is not None
@@ -94,6 +98,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),
+            digests=tuple(findings.digests.items()),
         )
     except ModelError as error:
         text.wrong_model(error, ())

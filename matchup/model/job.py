@@ -138,6 +138,8 @@ class Job:
         The job file as the user named it.
     notices : tuple of str
         What the readers noticed and did not refuse.
+    digests : tuple of (str, str)
+        Every file that was read, as it is shown, and its SHA-256.
     """
 
     title: str
@@ -153,6 +155,7 @@ class Job:
     display: str = "metric"
     file: str | None = None
     notices: tuple[str, ...] = ()
+    digests: tuple[tuple[str, str], ...] = ()
 
     def __post_init__(self) -> None:
         rules = Rules("job")

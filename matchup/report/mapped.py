@@ -40,13 +40,18 @@ WIDTH_IN_NOTEBOOK = 100
 
 def map_page(found: StrokeMap, units: Units) -> Page:
     """Return the map: the answer, the grid, what it rests on."""
-    where = "at every stage" if found.everywhere else f"at stage {found.stage.name!r}"
-    head = f"{found.hammer.name} {where}: {_answer(found, units)}."
+    head = f"{map_place(found)}: {map_answer(found, units)}."
     grid = _Grid(found, units)
     return [Headline(head), grid, Prose((*basis(found.job, units), CAUTION))]
 
 
-def _answer(found: StrokeMap, units: Units) -> str:
+def map_place(found: StrokeMap) -> str:
+    """Return which hammer the map is of, and where."""
+    where = "at every stage" if found.everywhere else f"at stage {found.stage.name!r}"
+    return f"{found.hammer.name} {where}"
+
+
+def map_answer(found: StrokeMap, units: Units) -> str:
     """Return on how many cushions it works, and between which strokes."""
     if not found.is_open:
         return "no stroke works" + (" on any cushion" if len(found.stacks) > 1 else "")
@@ -126,12 +131,12 @@ def map_table(found: StrokeMap, units: Units) -> Table:
     """Return every cell of the map as a row."""
     columns = (
         Column("cushion", "cushion"),
-        Column(units.key("stroke", "stroke"), "stroke", 3),
+        Column(units.key("stroke", "stroke"), f"stroke\n{units.unit('stroke')}", 3),
         Column("state", "state"),
         Column("closed_at", "closed at"),
-        Column(units.key("set", "set"), "set", 3),
-        Column("compression_percent", "compression", 1),
-        Column("tension_percent", "tension", 1),
+        Column(units.key("set", "set"), f"set\n{units.unit('set')}", 3),
+        Column("compression_percent", "compression\n% limit", 1),
+        Column("tension_percent", "tension\n% limit", 1),
     )
     rows = tuple(
         (

@@ -20,10 +20,11 @@ def blow_page(blow: Blow, job: Job, units: Units) -> Page:
         f"{units.text(blow.stroke, 'stroke')}{on} gives {gives}."
     )
     lines = (*blow_notices(blow, job, units), *basis(job, units), CAUTION)
-    return [Headline(head), _figures(blow, units), Prose(lines)]
+    return [Headline(head), figures_table(blow, units), Prose(lines)]
 
 
-def _figures(blow: Blow, units: Units) -> Table:
+def figures_table(blow: Blow, units: Units) -> Table:
+    """Return what a blow comes to, each figure with a remark."""
     count = units.blow_count(blow.set)
     rows = [
         ("set", units.text(blow.set, "set"), f"largest toe displacement less {blow.set_rule}"),

@@ -35,13 +35,23 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
     if best and len(job.stages) > 1 and job.drive is None:
         which = f" of the best {len(best)}" if len(best) > 1 else ""
         page += [Headline(f"Stroke schedule{which}:"), schedule_table(best, units)]
-    softer = [softer_sentence(option, objective, units) for option in best if option.runner_up]
-    if softer:
-        page.append(Prose(tuple(softer)))
+    page += softer_prose(ranking, units)
     if ranking.rejected:
-        lines = tuple(_answer(option, job, units) for option in ranking.rejected)
-        page.append(Prose(lines, "Hammers that can't, nearest miss first:"))
+        page.append(Prose(failures(ranking, units), "Hammers that can't, nearest miss first:"))
     return [*page, foot(ranking, units)]
+
+
+def softer_prose(ranking: Ranking, units: Units) -> list[Block]:
+    """Return the softer runners-up of the best options; empty where there are none."""
+    objective = ranking.job.search.objective
+    best = ranking.options[:SCHEDULES_SHOWN]
+    softer = [softer_sentence(option, objective, units) for option in best if option.runner_up]
+    return [Prose(tuple(softer))] if softer else []
+
+
+def failures(ranking: Ranking, units: Units) -> tuple[str, ...]:
+    """Return a sentence for every hammer that can't: why, and what would help."""
+    return tuple(_answer(option, ranking.job, units) for option in ranking.rejected)
 
 
 def _answer(option: Option, job: Job, units: Units) -> str:

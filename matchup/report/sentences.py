@@ -7,6 +7,7 @@ from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
 from matchup.model.job import Job
+from matchup.model.limits import Limit
 from matchup.model.stage import Stage
 from matchup.report.shown import Units, share_text
 from matchup.search.cure import BEYOND, HEAVIER
@@ -228,11 +229,23 @@ def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
 
 def basis(job: Job, units: Units) -> list[str]:
     """Return what the answer rests on: limits with their sources, defaults, warnings."""
+    return [*rests_on(job, units), *warned(job)]
+
+
+def warned(job: Job) -> list[str]:
+    """Return warnings, and what the readers noticed."""
+    return [
+        *(f"Warning: {text}." for text in job.limits.warnings),
+        *(f"Notice: {text.rstrip('.')}." for text in job.notices),
+    ]
+
+
+def rests_on(job: Job, units: Units) -> list[str]:
+    """Return limits with their sources, the ground, and what was taken by default."""
     limits = job.limits
     lines = [
-        f"Limits: compression {units.text(limits.compression, 'stress')} "
-        f"({limits.compression_text}); tension {units.text(limits.tension, 'stress')} "
-        f"({limits.tension_text})."
+        f"Limits: compression {_limit(limits.squeeze, units)}; "
+        f"tension {_limit(limits.pull, units)}."
     ]
     keep = job.search.reserve
     if keep:
@@ -241,14 +254,19 @@ def basis(job: Job, units: Units) -> list[str]:
             f"{1 + keep:.4g} times the one needed, stresses at most {100 * (1 - keep):.3g}% of the "
             "limits."
         )
-    lines += [f"Warning: {text}." for text in limits.warnings]
     if job.drive is not None:
         told = dict.fromkeys(note for stage in job.stages for note in stage.notes)
         lines.append(f"Ground: {'; '.join(map(units.retold, told))}.")
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
-    lines += [f"Notice: {text.rstrip('.')}." for text in job.notices]
     return lines
+
+
+def _limit(limit: Limit, units: Units) -> str:
+    """Return a stress limit with its rule, clause, formula and the numbers in it."""
+    values = [f"{name} {units.text(value, 'stress')}" for name, value in limit.values]
+    told = f"{limit.text}; {', '.join(values)}" if values else limit.text
+    return f"{units.text(limit.stress, 'stress')} ({told})"
 
 
 def _notes(job: Job, units: Units) -> list[str]:
@@ -263,8 +281,14 @@ def _notes(job: Job, units: Units) -> list[str]:
     ]
 
 
-def searched(ranking: Ranking) -> str:
-    """Return how the answers were found, hammers of one kind of answer told together."""
+def searched(ranking: Ranking, timed: bool = True) -> str:
+    """Return how the answers were found, hammers of one kind of answer told together.
+
+    Parameters
+    ----------
+    timed : bool
+        Whether to tell the time it took, which is never the same twice.
+    """
     groups: dict[str, list[list[int]]] = {}
     for option in (*ranking.options, *ranking.rejected):
         numbers = [int(number) for number in re.findall(r"\d+", option.certificate)]
@@ -278,7 +302,7 @@ def searched(ranking: Ranking) -> str:
         many = f"{len(found)} hammer{'s' if len(found) > 1 else ''}: " if len(groups) > 1 else ""
         told.append(many + text + (" (exact)" if kind == "exact" else ""))
     spent = (
-        f"{ranking.analyses} blows in {ranking.runtime:.1f} s"
+        f"{ranking.analyses} blows" + (f" in {ranking.runtime:.1f} s" if timed else "")
         if ranking.analyses
         else "no blow was needed, the weight decides"
     )

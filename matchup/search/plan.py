@@ -46,8 +46,9 @@ RUNNER_UP_COST = 1.05
 """A runner-up costs at most so many times what the best plan does. [-]"""
 RUNNER_UP_GAIN = 0.05
 """It raises the use of no stress limit, and lowers that of one by at least so much. [-]"""
-LARGEST_WHOLE_SPACE = 60
-"""Cushion spaces of up to so many members are looked at whole."""
+LARGEST_WHOLE_SPACE = 200
+"""Cushion spaces of up to so many members are looked at whole: up to here that takes about as many
+blows as the optimiser does, since only the target is looked at on every cushion."""
 
 Pair = tuple[int, int]
 """Hammer and stack."""

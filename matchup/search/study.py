@@ -1,8 +1,9 @@
 """Look for the best cushion of every hammer in a space too large to look at whole.
 
 The only home of the optimiser. One trial is one cushion with all its windows; trials of all
-hammers are asked for in batches, answered together by the solver, and told. A study's own proposals
-end in a descent: neighbours of the best cushion are looked at until none is better.
+hammers are asked for in batches, answered together by the solver, and told. A cushion that is
+proposed a second time is replaced by the nearest one not looked at yet. The proposals end in a
+descent: neighbours of the best cushion of every material are looked at until none is better.
 """
 
 from __future__ import annotations
@@ -17,6 +18,8 @@ BATCH = 8
 """Trials asked for at once, one kernel group."""
 TRIALS = 48
 """Trials of a study before its descent."""
+LARGEST_COST = 1e12
+"""Stands for an infinite cost, which the sampler can't model."""
 STARTING = 16
 """Trials drawn at random before the sampler models what it has seen."""
 
@@ -75,22 +78,48 @@ class Study:
         self._asked: list[tuple[optuna.Trial, int]] = []
 
     def ask(self) -> list[int]:
-        """Return the places of the next batch of cushions."""
+        """Return the places of the next batch of cushions.
+
+        A place that is known already is told at once, and the nearest unknown one asked for.
+        """
         self._asked = []
-        for _ in range(BATCH):
-            trial = self._study.ask()
-            kind = trial.suggest_categorical("kind", list(range(self.kinds)))
-            size = trial.suggest_int("size", 0, self.sizes - 1)
-            self._asked.append((trial, int(kind) * self.sizes + size))
+        fresh = set(range(self.kinds * self.sizes)) - set(self.told)
+        while len(self._asked) < BATCH and (fresh or not self._asked):
+            trial, place = self._propose()
+            if place not in fresh and fresh:
+                if place in self.told:
+                    self._tell(trial, self.told[place])
+                else:
+                    self._study.tell(trial, state=optuna.trial.TrialState.FAIL)
+                place = min(fresh, key=lambda other: (self._away(place, other), other))
+                kind, size = divmod(place, self.sizes)
+                self._study.enqueue_trial({"kind": kind, "size": size})
+                trial, place = self._propose()
+            fresh.discard(place)
+            self._asked.append((trial, place))
         return [place for _, place in self._asked]
+
+    def _propose(self) -> tuple[optuna.Trial, int]:
+        trial = self._study.ask()
+        kind = trial.suggest_categorical("kind", list(range(self.kinds)))
+        size = trial.suggest_int("size", 0, self.sizes - 1)
+        return trial, int(kind) * self.sizes + size
+
+    def _away(self, place: int, other: int) -> tuple[bool, int]:
+        """Return how far two cushions are apart: materials first, then sizes."""
+        (kind, size), (other_kind, other_size) = (divmod(p, self.sizes) for p in (place, other))
+        return kind != other_kind, abs(size - other_size)
 
     def tell(self, answer: Callable[[int], Told]) -> None:
         """Tell what came of the batch."""
         for trial, place in self._asked:
             told = answer(place)
-            trial.set_constraint("excess", told.excess)
-            self._study.tell(trial, told.cost)
+            self._tell(trial, told)
             self.note(place, told)
+
+    def _tell(self, trial: optuna.Trial, told: Told) -> None:
+        trial.set_constraint("excess", told.excess)
+        self._study.tell(trial, min(told.cost, LARGEST_COST))
 
     def note(self, place: int, told: Told) -> None:
         """Remember what came of a cushion."""
@@ -106,18 +135,22 @@ class Study:
         return min(self.told, key=lambda place: (self.told[place].merit, place))
 
     def neighbours(self) -> list[int]:
-        """Return the places next to the best one that nothing has been told of yet.
+        """Return the places next to the best ones that nothing has been told of yet.
 
-        Next to: up to two sizes thinner or thicker, and the same sizes of the other materials.
+        Next to the best of every material, and to as thick a cushion of it as the best of all: up
+        to two sizes thinner or thicker.
         """
-        _, size = divmod(self.best, self.sizes)
+        best: dict[int, int] = {}
+        for place in sorted(self.told, key=lambda place: (self.told[place].merit, place)):
+            best.setdefault(place // self.sizes, place % self.sizes)
+        size_of_all = self.best % self.sizes
         near = [
             kind * self.sizes + at
             for kind in range(self.kinds)
-            for at in (size - 2, size - 1, size, size + 1, size + 2)
-            if 0 <= at < self.sizes
+            for middle in (best.get(kind, size_of_all), size_of_all)
+            for at in range(max(0, middle - 2), min(self.sizes, middle + 3))
         ]
-        return [place for place in near if place not in self.told]
+        return [place for place in dict.fromkeys(near) if place not in self.told]
 
 
 def run_studies(

@@ -78,6 +78,73 @@ def test_the_window_found_is_the_one_of_a_scan_over_every_setting(name: str) -> 
             assert tops[row] == pytest.approx(cell.strokes[top], rel=1e-12), where
 
 
+@pytest.mark.parametrize("name", CASES)
+def test_the_stroke_nearest_to_a_wanted_one_works_and_none_scanned_between_does(name: str) -> None:
+    job = CASES[name]
+    rig = Rig(job, 1)
+    finder = WindowFinder(rig, job_demands(rig))
+    keep = 1 - job.search.reserve
+    limits = keep * job.limits.compression, keep * job.limits.tension
+    cells = all_cells(rig)
+    for share in (0.0, 0.4, 1.0):
+        wanted = np.floor(share * finder.last_settings(cells.hammer)).astype(np.int64)
+        found = finder.nearest(cells, wanted)
+        for row, place in enumerate(zip(*cells[:3], strict=True)):
+            stage, hammer, stack = map(int, place)
+            cell = jobs.scan(rig, stage, hammer, stack)
+            needed = (1 + job.search.reserve) * job.stages[stage].set_needed
+
+            def works(i: int, cell: jobs.Scan = cell, needed: float = needed) -> bool:
+                return cell.sets[i] >= needed and cell.holds(i, *limits)
+
+            at = int(found.at[row])
+            if found.state[row] != window.OPEN:
+                expected = jobs.plain_window(cell, needed, *limits)
+                assert expected.state == STATES[int(found.state[row])]
+                assert not works(int(wanted[row]))
+                continue
+            assert works(at)
+            assert found.set[row] == pytest.approx(cell.sets[at], rel=1e-9)
+            if at < wanted[row]:
+                above = [i for i in finder.rungs(hammer, int(wanted[row]), up=False) if i > at]
+                assert not any(works(int(i)) for i in (*above, wanted[row]))
+
+
+def test_the_ends_of_a_window_are_those_of_a_walk_over_every_setting() -> None:
+    job = CASES["concrete, tight limits"]
+    finder, windows = find(job)
+    opened = np.flatnonzero(windows.state == window.OPEN)
+    some = windows.cells.take(opened)
+    tops = finder.tops(some, windows.at[opened])
+    middle = (windows.at[opened] + tops) // 2
+    lows, highs = finder.ends(some, middle)
+    rig = Rig(job, 1)
+    limits = job.limits.compression, job.limits.tension
+    for row, place in enumerate(zip(*some[:3], strict=True)):
+        stage, hammer, stack = map(int, place)
+        cell = jobs.scan(rig, stage, hammer, stack)
+        at = int(middle[row])
+        assert highs[row] == jobs.plain_top(cell, at, *limits)
+        low = at
+        needed = job.stages[stage].set_needed
+        while low and cell.sets[low - 1] >= needed and cell.holds(low - 1, *limits):
+            low -= 1
+        assert lows[row] == low
+
+
+def test_one_wear_state_that_counts_is_the_only_one_struck() -> None:
+    job = CASES["concrete, one stage"]
+    rig = Rig(job, 1)
+    finder = WindowFinder(rig, job_demands(rig))
+    every = all_cells(rig)
+    at = finder.last_settings(every.hammer)
+    both = finder.strike(every, at)
+    alone = [finder.strike(every._replace(wear=np.full(at.size, wear)), at) for wear in (0, 1)]
+    assert np.array_equal(both.set, np.minimum(alone[0].set, alone[1].set))
+    assert np.array_equal(both.tension, np.maximum(alone[0].tension, alone[1].tension))
+    assert not np.array_equal(alone[0].set, alone[1].set)
+
+
 def test_the_cases_hold_every_state_and_a_window_that_opens_above_a_closed_stroke() -> None:
     found = [find(job)[1] for job in CASES.values()]
     assert {STATES[int(s)] for windows in found for s in windows.state} == set(STATES.values())

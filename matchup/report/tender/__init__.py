@@ -1,0 +1,1 @@
+"""The tender report: one set of sections, written as web page, paper, workbook and data."""
