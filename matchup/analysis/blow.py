@@ -161,8 +161,7 @@ def record_forces(chains: Chains, strikes: Strikes, steps: int) -> Floats:
     head, substeps = head_rows(chains, *strikes[1:])
     ground = np.ascontiguousarray(chains.ground_of[strikes.stage, strikes.hammer])
     forces = np.zeros((steps, chains.depth.size - 1))
-    first = np.zeros(LANES, np.int64)
-    record(chains.bar, chains.grounds, Blows(ground, substeps, head), first, forces)
+    record(chains.bar, chains.grounds, Blows(ground, substeps, head), 0, forces)
     return forces
 
 

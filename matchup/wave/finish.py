@@ -73,13 +73,13 @@ def check(bar: Bar, state: Floats) -> None:
 
     Checks lie one pile length of wave travel apart. Modifies `state` in place.
     """
-    _catch_rebound(state)
+    catch_rebound(state)
     _survey(bar, state)
     _judge(bar, state)
 
 
 @compiled
-def _catch_rebound(state: Floats) -> None:
+def catch_rebound(state: Floats) -> None:
     """Take the weight off a ram, and then a helmet, that has bounced off upwards.
 
     Their second, weaker impact is not part of the blow: hammers catch the ram and hold the

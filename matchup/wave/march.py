@@ -134,8 +134,7 @@ def march(
     if queue.size == 0:
         return
     nodes = bar.weight.size
-    rounds = (blows.substeps[queue[0]] + SUBSTEPS - 1) // SUBSTEPS
-    substep = bar.step / (rounds * SUBSTEPS)
+    rounds, substep = head_rounds(bar, blows.substeps[queue[0]])
     state = np.zeros(HEAD_BLOCK + nodes * BLOCK + TOE_BLOCK)
     rows = np.full(LANES, -1)
     began = np.zeros(LANES, np.int64)
@@ -156,9 +155,7 @@ def march(
             if rows[lane] >= 0:
                 until = min(until, began[lane] + steps[1])
         while step < until:
-            _step_toe(bar, state)
-            _step_head(bar, state, substep, rounds)
-            _step_shaft(bar, state)
+            advance(bar, state, rounds, substep)
             if step < trace.shape[0]:
                 _write_trace(state, nodes, trace[step])
             step += 1
@@ -178,6 +175,21 @@ def march(
 
 
 @compiled
+def head_rounds(bar: Bar, substeps: int) -> tuple[int, float]:
+    """Return the rounds of `SUBSTEPS` in which the head marches a step, and its sub-step [s]."""
+    rounds = (substeps + SUBSTEPS - 1) // SUBSTEPS
+    return rounds, bar.step / (rounds * SUBSTEPS)
+
+
+@compiled
+def advance(bar: Bar, state: Floats, rounds: int, substep: float) -> None:
+    """March all lanes through one step, modifying `state` in place."""
+    _step_toe(bar, state)
+    _step_head(bar, state, rounds, substep)
+    _step_shaft(bar, state)
+
+
+@compiled
 def _write_trace(state: Floats, nodes: int, trace: Floats) -> None:
     tip = HEAD_BLOCK + nodes * BLOCK
     trace[0] = state[MEAN]
@@ -187,7 +199,7 @@ def _write_trace(state: Floats, nodes: int, trace: Floats) -> None:
 
 
 @compiled
-def _step_head(bar: Bar, state: Floats, substep: float, rounds: int) -> None:
+def _step_head(bar: Bar, state: Floats, rounds: int, substep: float) -> None:
     """March ram, helmet, cushions and pile head through one step; leave the mean head force."""
     weight = bar.weight[0]
     per_impedance = 1.0 / bar.impedance[0]
