@@ -13,6 +13,7 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from matchup import __version__
 from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
 from matchup.errors import AnalysisError, InputError, Problem
@@ -27,20 +28,14 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
-from matchup.report.driven import (
-    chosen_case,
-    criterion_document,
-    criterion_page,
-    drive_document,
-    drive_page,
-    stations_table,
-)
+from matchup.report.driven import chosen_case, drive_document, drive_page, stations_table
 from matchup.report.files import figure_kind, refuse_taken, write_file, write_folder
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.opinions import formula_fields, opinion_document, opinions_page
 from matchup.report.options import options_table, schedule_table
 from matchup.report.page import Headline, Page, page_html, page_text
+from matchup.report.proven import criterion_document
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table, tabled
@@ -109,7 +104,8 @@ class _Shown:
         from matchup.report.figures.drawing import rendered
         from matchup.report.picture import picture_html
 
-        drawn = picture_html(rendered(self.figure(), "svg"), "")
+        figure = self.figure()
+        drawn = picture_html(rendered(figure, "svg"), figure.get_suptitle())
         return f"{page_html(self.page())}{drawn}"
 
     def __str__(self) -> str:
@@ -251,11 +247,7 @@ class DriveResult(CheckResult):
 
     def page(self, display: str | None = None) -> Page:
         """Return the drive as blocks of prose and tables."""
-        units = _units(self.job, display)
-        page = list(drive_page(self.ranking, units, self.case))
-        if self.criterion is not None:
-            page[-1:-1] = criterion_page(self.criterion, self.job, units)
-        return page
+        return drive_page(self.ranking, _units(self.job, display), self.case, self.criterion)
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""
@@ -625,6 +617,7 @@ def blow(
     hammer: str | None = None,
     stroke: float | str | None = None,
     *,
+    energy: float | str | None = None,
     stage: str | None = None,
     cushion: str | None = None,
     sheets: int | None = None,
@@ -643,6 +636,9 @@ def blow(
         the target, the wear state the first of the job's.
     stroke, thickness : float, str or None
         [m], or a text with its unit.
+    energy : float, str or None
+        In place of a stroke: the blow energy, ram weight times stroke, or the setting of a hammer
+        that is set by energy. [J], or a text with its unit.
     sheets : int or None
     best : bool
         Take stroke and cushions of the hammer's best plan, so none of them may be given.
@@ -657,6 +653,7 @@ def blow(
     job = _job(job)
     problems: list[Problem] = []
     stroke = _quantity(stroke, "stroke", "stroke", problems)
+    stroke = _stroke_of(job, hammer, stroke, energy, problems)
     thickness = _quantity(thickness, "thickness", "thickness", problems)
     selection = Selection(hammer, stage, cushion, sheets, thickness, wear, hammer_cushion)
     pick = _best_plan if best else _select
@@ -711,8 +708,10 @@ def tender_report(
     proof = None
     if job.drive is not None and option.drives:
         proof = find_criterion(alone, option, workers, tell)
-    found = map_strokes(job, option.hammer, option.target.stage, workers, tell)
-    return ReportResult(Dossier(ranking, option, found, _telling_blows(job, option), proof))
+    plan = option.failing or option.target
+    found = map_strokes(job, option.hammer, plan.stage, workers, tell)
+    blows = _telling_blows(job, option)
+    return ReportResult(Dossier(ranking, option, found, blows, __version__, proof))
 
 
 def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
@@ -797,11 +796,34 @@ def _quantity(
         return None
 
 
+def _stroke_of(
+    job: Job,
+    hammer: str | None,
+    stroke: float | None,
+    energy: float | str | None,
+    problems: list[Problem],
+) -> float | None:
+    """Return the stroke, or the one that an energy is equivalent to."""
+    if energy is None:
+        return stroke
+    if stroke is not None:
+        must = "must be left out together with a stroke"
+        problems.append(Problem(None, None, "energy", must, str(energy)))
+        return stroke
+    joules = _quantity(energy, "energy", "energy", problems)
+    if joules is None:
+        return None
+    try:
+        return select_hammer(job, hammer).stroke_of(joules)
+    except InputError as error:
+        raise InputError([*problems, *error.problems]) from None
+
+
 def _select(
     job: Job, selection: Selection, stroke: float | None, problems: list[Problem]
 ) -> tuple[Selected, float]:
     if stroke is None and not problems:
-        do = 'For example "0.6 m", or --best for the best plan of the hammer.'
+        do = 'For example "0.6 m", an energy, or --best for the best plan of the hammer.'
         problems.append(Problem(None, None, "stroke", "must be given", "nothing", do))
     if stroke is not None and not 0 < stroke < float("inf"):
         problems.append(Problem(None, None, "stroke", "must be > 0", f"{stroke:g} m"))

@@ -26,6 +26,8 @@ LATER = {
     "repeat_blows": "Repeated blows can't be computed yet; leave the key out.",
 }
 """Keys of jobs that this version can't do, with what to do instead."""
+HOLDERS: tuple[KeyPath, ...] = (("stages",), ("pile", "parts"), ("pile",))
+"""Tables of whose contents one key alone is replaced: lists of them, and what is in a table."""
 WORDS = {
     "string_type": "must be a text",
     "int_type": "must be a whole number",
@@ -51,6 +53,8 @@ def read_keys(text: JobText) -> JobKeys:
         if detail["type"] == "extra_forbidden":
             misspelt |= _tell_unknown(text, path)
             del _holder(data, path)[path[-1]]
+    # Nothing follows from a key that is misspelt: it is told once.
+    text.unread |= {key for key in misspelt if key[-1] not in _holder(data, key)}
     for path, detail in zip(paths, details, strict=True):
         if detail["type"] != "extra_forbidden":
             if path not in misspelt:
@@ -129,14 +133,13 @@ def _holder(data: Any, path: KeyPath) -> Any:
 
 
 def _stand_in(data: dict[str, Any], unread: set[KeyPath], path: KeyPath) -> None:
-    """Replace what holds a wrong value: a whole key, or an element of a list of tables."""
+    """Replace what holds a wrong value: a whole key, or one of a stage or a part."""
     unread.add(path)
-    depth = 1 if len(path) == 1 else 2
-    if path[0] == "stages":
-        depth = min(len(path), 3)
-    elif len(path) > 2 and isinstance(path[2], int):
+    holders = [prefix for prefix in HOLDERS if path[: len(prefix)] == prefix]
+    depth = max(map(len, holders), default=0) + 2 if holders else 2
+    if path[0] == "doubt" and len(path) > 2 and isinstance(path[2], int):
         depth = 3
-    key = path[:depth]
+    key = path[: min(len(path), depth)]
     unread.add(key)
     holder = _holder(data, key)
     if isinstance(key[-1], int):
@@ -179,8 +182,8 @@ def _field(path: KeyPath) -> FieldInfo:
     model: type[Keys] | None = JobKeys
     field = None
     for part in path:
-        if isinstance(part, str):
-            assert model is not None
+        # Keys of a table that the user names, like those of ground cases, have no fields.
+        if isinstance(part, str) and model is not None:
             fields = model.model_fields
             field = next(f for name, f in fields.items() if part in (name, f.alias))
             model = _model(field.annotation)

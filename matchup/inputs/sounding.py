@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from pathlib import Path
 
-from matchup.inputs.findings import Findings
+from matchup.inputs.findings import Findings, shown_path
 from matchup.inputs.readings import condensed
 from matchup.inputs.sounding_ags import read_ags
 from matchup.inputs.sounding_bro import read_bro
@@ -23,6 +23,14 @@ FORMATS = (
 _AGS_3 = re.compile(r'\s*"\*\*')
 _END_OF_FILE = b"\x1a"
 """With which some old programs end a text file."""
+
+
+def is_sounding(path: Path) -> bool:
+    """Return whether a file is in a format of cone tests other than a table."""
+    findings = Findings()
+    data = read_bytes(path, findings)
+    text = None if data is None or data[:2] == b"PK" else decode(str(path), data, findings)
+    return text is not None and any(begins.match(text) for begins, _ in FORMATS)
 
 
 def read_sounding(path: Path, findings: Findings, location: str | None = None) -> Sounding | None:
@@ -48,7 +56,7 @@ def read_sounding(path: Path, findings: Findings, location: str | None = None) -
 
 
 def _read(path: Path, findings: Findings, location: str | None) -> Sounding | None:
-    file = str(path)
+    file = shown_path(path)
     data = read_bytes(path, findings)
     if data is None:
         return None

@@ -106,11 +106,14 @@ class Drive:
         Resistance long after driving that the last set must prove. [N]
     capacity_text : str
         How it follows from what the job gives.
+    basis : tuple of str
+        What the resistances rest on, line by line: method, its validity, assumptions.
     """
 
     required: tuple[str, ...] = ()
     capacity: float | None = None
     capacity_text: str = ""
+    basis: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -183,7 +186,7 @@ class Job:
         )
         for stage in self.stages:
             rules.must(
-                not stage.penetration > self.pile.length,
+                not stage.penetration > self.pile.length * (1 + 1e-9),
                 f"stages.{stage.name}.penetration",
                 "must be at most the pile's length",
                 stage.penetration,

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import html
+from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
@@ -10,15 +11,17 @@ from typing import Any
 import numpy as np
 
 from matchup.model.cushion import Stack
+from matchup.report.closing import closing
 from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
     cushion_document,
+    energy_set,
     limits_document,
     number,
 )
 from matchup.report.page import Headline, Page, Prose
-from matchup.report.sentences import CAUTION, basis
+from matchup.report.sentences import where
 from matchup.report.shown import Units, percent
 from matchup.report.table import Column, Table, wrapped
 from matchup.search.stroke_map import (
@@ -35,32 +38,66 @@ SIGNS = {OPEN_CELL: "#", SHORT: ".", SQUEEZED: "c", PULLED: "t", RUNNING: "r", U
 WIDEST_STEP = 3
 """Characters from one stroke to the next, where there is room."""
 LABEL_WIDTH = 6
+CLOSING_STAGES = 4
+"""Of more stages that close cells, those that close the fewest are not told."""
 WIDTH_IN_NOTEBOOK = 100
 
 
 def map_page(found: StrokeMap, units: Units) -> Page:
     """Return the map: the answer, the grid, what it rests on."""
-    head = f"{map_place(found)}: {map_answer(found, units)}."
-    grid = _Grid(found, units)
-    return [Headline(head), grid, Prose((*basis(found.job, units), CAUTION))]
+    head = f"{map_place(found, units)}: {map_answer(found, units)}."
+    closed = [Prose(_closing_stages(found, units))] if found.everywhere else []
+    return [Headline(head), _Grid(found, units), *closed, *closing(found.job, units)]
 
 
-def map_place(found: StrokeMap) -> str:
+def _closing_stages(found: StrokeMap, units: Units) -> tuple[str, ...]:
+    """Return which stages close how many cells, the most first, and what a map can't tell."""
+    job = found.job
+    stages = {stage.name: stage for stage in job.stages}
+    counts = Counter(
+        (name, state)
+        for names, states in zip(found.closed_at, found.states, strict=True)
+        for name, state in zip(names, states, strict=True)
+        if name
+    )
+    told = [
+        f"{count} {where(stages[name], job, units)} ({state})"
+        for (name, state), count in counts.most_common(CLOSING_STAGES)
+    ]
+    if not told:
+        return ()
+    cells = found.strokes.size * len(found.stacks)
+    lines = [
+        f"Closed, of {cells} cells, each told once and the targets first: {', '.join(told)}"
+        + (" and others" if len(counts) > CLOSING_STAGES else "")
+        + "."
+    ]
+    targets = {job.stages[course.target].name for course in job.courses}
+    if job.drive is not None and not found.is_open and any(n not in targets for n, _ in counts):
+        lines.append("With a stroke of its own for every station it may work: see `matchup drive`.")
+    return tuple(lines)
+
+
+def map_place(found: StrokeMap, units: Units) -> str:
     """Return which hammer the map is of, and where."""
-    where = "at every stage" if found.everywhere else f"at stage {found.stage.name!r}"
-    return f"{found.hammer.name} {where}"
+    at = where(found.stage, found.job, units)
+    if found.everywhere:
+        at = "at every stage" if found.job.drive is None else "with one stroke for all stations"
+    return f"{found.hammer.name} {at}"
 
 
 def map_answer(found: StrokeMap, units: Units) -> str:
     """Return on how many cushions it works, and between which strokes."""
     if not found.is_open:
-        return "no stroke works" + (" on any cushion" if len(found.stacks) > 1 else "")
+        word = "setting" if found.hammer.set_by_energy else "stroke"
+        return f"no {word} works" + (" on any cushion" if len(found.stacks) > 1 else "")
     working = [row for row in found.states if OPEN_CELL in row]
     strokes = [
         float(found.strokes[i]) for row in working for i, s in enumerate(row) if s == OPEN_CELL
     ]
-    low, high = (units.text(stroke, "stroke") for stroke in (min(strokes), max(strokes)))
-    between = f"at {low}" if low == high else f"at strokes of {low} to {high}"
+    low, high = (units.setting(found.hammer, s) for s in (min(strokes), max(strokes)))
+    word = "settings" if found.hammer.set_by_energy else "strokes"
+    between = f"at {low}" if low == high else f"at {word} of {low} to {high}"
     if len(found.stacks) == 1:
         return f"it works {between}"
     return f"it works on {len(working)} of {len(found.stacks)} cushions, {between}"
@@ -96,19 +133,26 @@ class _Grid:
     def _ruler(self, shown: Sequence[int], step: int, room: int) -> str:
         """Return stroke labels over every so many columns that they stand apart."""
         every = -(-LABEL_WIDTH // step)
-        labels = [
-            f"{self.units.value(float(self.found.strokes[i]), 'stroke'):.2f}"
-            for i in shown[::every]
-        ]
+        labels = [self._at(float(self.found.strokes[i])) for i in shown[::every]]
         ruler = "".join(f"{label:<{every * step}}" for label in labels).rstrip()
         return ruler if len(ruler) <= room else ruler[: -len(labels[-1])]
+
+    def _at(self, stroke: float) -> str:
+        """Return a stroke as a label, or the energy that is set for it."""
+        hammer = self.found.hammer
+        if hammer.set_by_energy:
+            return f"{self.units.value(hammer.blow_energy(stroke), 'energy'):.0f}"
+        return f"{self.units.value(stroke, 'stroke'):.2f}"
 
     def _legend(self, shown: int) -> str:
         seen = {state for row in self.found.states for state in row}
         signs = ", ".join(f"{sign} {state}" for state, sign in SIGNS.items() if state in seen)
         strokes = self.found.strokes.size
         some = "" if shown == strokes else f", {shown} of {strokes} for want of width"
-        return f"Across: stroke in {self.units.unit('stroke')}{some}. {signs}."
+        across = f"stroke in {self.units.unit('stroke')}"
+        if self.found.hammer.set_by_energy:
+            across = f"energy set in {self.units.unit('energy')}"
+        return f"Across: {across}{some}. {signs}."
 
 
 def _columns(found: StrokeMap, room: int) -> list[int]:
@@ -161,6 +205,7 @@ def map_document(found: StrokeMap) -> dict[str, Any]:
             "cushion": cushion_document(stack.pile),
             "hammer_cushion": stack.hammer.text if stack.hammer else found.hammer.cushion_text,
             "stroke_m": float(stroke),
+            "energy_set_kJ": energy_set(found.hammer, float(stroke)),
             "state": found.states[row][column],
             "closed_at": found.closed_at[row][column] or None,
             "set_mm": number(float(found.sets[row, column]), 1e3),

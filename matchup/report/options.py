@@ -6,10 +6,10 @@ import math
 from collections.abc import Callable, Sequence
 
 from matchup.report.doubted import works_column
-from matchup.report.sentences import needed_set
-from matchup.report.shown import Units, percent
+from matchup.report.sentences import needed_set, where
+from matchup.report.shown import OfLimit, Units, percent, share_text
 from matchup.report.table import AtLeast, Column, Field, Row, Table, tabled
-from matchup.search.option import REDUCED, Option, Ranking, StagePlan
+from matchup.search.option import GOES_DOWN, REDUCED, Option, Ranking, StagePlan
 
 VERDICT = Column(
     "verdict",
@@ -42,7 +42,7 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
         speed = Column(units.speed_key, f"speed\n{units.speed_unit}", 2)
         fields.append((speed, lambda o: units.speed(o.target.speed)))
     fields += [
-        measured("stroke", "stroke", "stroke", units, lambda o: o.target.stroke),
+        *setting_columns(_target_of, [option.target for option in options], units),
         (Column("cushion", "pile\ncushion", wrap=12), lambda o: units.cushion(o.stack.pile)),
     ]
     if any(option.stack.hammer for option in options):
@@ -84,7 +84,7 @@ def _where(options: Sequence[Option], units: Units) -> list[Field[Option]]:
         plan = option.tightest
         if plan is None:
             return None
-        return f"{units.text(plan.stage.penetration, 'length')}, {plan.stage.case}"
+        return f"{units.depth(plan.stage.penetration)}, {plan.stage.case}"
 
     return [(text, shown)]
 
@@ -102,7 +102,7 @@ def schedule_table(options: Sequence[Option], units: Units) -> Table:
             lambda row: row[1].stage.penetration,
             keep=1,
         ),
-        measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
+        *setting_columns(_plan_of, [plan for option in options for plan in option.plans], units),
         (_window(units), lambda row: _range(row[1], units)),
         measured("set", "set", "set", units, lambda row: row[1].set),
         measured("set_needed", "needed", "set", units, lambda row: row[1].stage.set_needed),
@@ -110,6 +110,10 @@ def schedule_table(options: Sequence[Option], units: Units) -> Table:
         *stress_shares(_plan_of),
     ]
     return tabled([(option, plan) for option in options for plan in option.plans], fields)
+
+
+def _target_of(option: Option) -> StagePlan:
+    return option.target
 
 
 def _plan_of(row: tuple[Option, StagePlan]) -> StagePlan:
@@ -134,18 +138,39 @@ def measured(
     return column, lambda row: units.value(of(row), quantity)
 
 
+def setting_columns(
+    of: Callable[[Row], StagePlan], plans: Sequence[StagePlan], units: Units
+) -> list[Field[Row]]:
+    """Return the column of strokes, and of settings where some are energies."""
+
+    def stroke(row: Row) -> float:
+        return of(row).stroke
+
+    def energy(row: Row) -> float | None:
+        return of(row).energy_set
+
+    strokes = measured("stroke", "stroke", "stroke", units, stroke)
+    if all(plan.energy_set is None for plan in plans):
+        return [strokes]
+    return [measured("energy_set", "set at", "energy", units, energy), strokes]
+
+
 def stress_shares(of: Callable[[Row], StagePlan]) -> tuple[Field[Row], Field[Row]]:
     """Return the columns of both stresses as shares of their limits."""
     return (
         (
             Column("compression_percent", "compr.\n% limit", 0),
-            lambda row: percent(of(row).compression_use),
+            lambda row: _percent(of(row), of(row).compression_use),
         ),
         (
             Column("tension_percent", "tension\n% limit", 0),
-            lambda row: percent(of(row).tension_use),
+            lambda row: _percent(of(row), of(row).tension_use),
         ),
     )
+
+
+def _percent(plan: StagePlan, use: float) -> OfLimit | None:
+    return None if plan.verdict == GOES_DOWN else percent(use)
 
 
 def blow_count(units: Units) -> Column:
@@ -183,7 +208,7 @@ def margins_table(option: Option, ranking: Ranking, units: Units) -> Table:
     plan = option.failing or option.target
     needed = needed_set(plan.stage, job)
     reached, asked = units.together(plan.set, needed, "set")
-    what = "set" if len(job.stages) == 1 else f"set at {plan.stage.name!r}"
+    what = "set" if len(job.stages) == 1 else f"set {where(plan.stage, job, units)}"
     rows: list[tuple[object, ...]] = [
         (what, reached, f"at least {asked}", 100 * (plan.set / needed - 1))
     ]
@@ -194,6 +219,9 @@ def margins_table(option: Option, ranking: Ranking, units: Units) -> Table:
     ):
         if math.isfinite(found):
             peak, most = units.together(found, limit, "stress")
+            if job.limits.differ:
+                # Stresses of parts with limits of their own compare by their use alone.
+                peak, most = f"{share_text(keep * found / limit)} of its limit", share_text(keep)
             rows.append((f"peak {name}", peak, f"at most {most}", 100 * (1 - found / limit)))
     if option.reach is not None:
         reach = f"{option.reach:.2f}{'+' if option.reach_is_open else ''}"

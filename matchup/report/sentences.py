@@ -7,7 +7,7 @@ from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
 from matchup.model.job import Job
-from matchup.model.limits import Limit
+from matchup.model.limits import NOT_LIMITED, Limit, StressLimits
 from matchup.model.stage import Stage
 from matchup.report.shown import Units, share_text
 from matchup.search.cure import BEYOND, HEAVIER
@@ -51,7 +51,7 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
         figure += "" if taken.seconds is None else f" in {taken.seconds / 60:.0f} min"
     return (
         f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
-        f"{units.text(plan.stroke, 'stroke')}{on_stack(best.stack, units)}, {figure}."
+        f"{units.setting(best.hammer, plan.stroke)}{on_stack(best.stack, units)}, {figure}."
     )
 
 
@@ -83,6 +83,15 @@ def on_stack(stack: Stack, units: Units) -> str:
     return f" on {words}" if stack.pile else (f" under {words}" if words else "")
 
 
+def where(stage: Stage, job: Job, units: Units) -> str:
+    """Return a stage in words: by name, in a drive by depth, case and rest."""
+    if job.drive is None:
+        return f"at stage {stage.name!r}"
+    case = f" in case {stage.case}" if len(job.courses) > 1 else ""
+    rest = f", after {units.rest(stage.after_pause)} of rest" if stage.after_pause else ""
+    return f"at {units.depth(stage.penetration)}{case}{rest}"
+
+
 def needed_set(stage: Stage, job: Job) -> float:
     """Return the least set of a stage with the job's reserve on top [m]."""
     return (1 + job.search.reserve) * stage.set_needed
@@ -91,7 +100,7 @@ def needed_set(stage: Stage, job: Job) -> float:
 def reason(option: Option, job: Job, units: Units) -> str:
     """Return in one sentence what an option does, or why the hammer fails and what would help."""
     plan = option.failing or option.target
-    at = f"at stage {plan.stage.name!r}, " if len(job.stages) > 1 else ""
+    at = f"{where(plan.stage, job, units)}, " if len(job.stages) > 1 else ""
     if option.verdict == PILE_RUNS:
         resistance = units.text(plan.stage.resistance, "force")
         return (
@@ -103,30 +112,31 @@ def reason(option: Option, job: Job, units: Units) -> str:
         return f"{at}{plan.why}{on}"
     if option.drives:
         uses = _uses(option.compression_use, option.tension_use, job)
-        stroke = units.text(plan.stroke, "stroke")
+        stroke = units.setting(option.hammer, plan.stroke)
         does = f"{stroke}{on} gives {set_text(plan.set, plan.stage, job, units)}"
     else:
         uses = _uses(plan.compression_use, plan.tension_use, job)
         does = _failing_stroke(option, plan, job, units)
-    helps = _held_back(option, units) + _cured(option.cure, option, units)
+    helps = _held_back(option, job, units) + _cured(option.cure, option, units)
     return f"{at}{does}; {uses}{helps}"
 
 
 def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> str:
     """Return the stroke that explains a failure, and the set that it gives."""
     hammer = option.hammer
-    stroke = f"{units.text(plan.stroke, 'stroke')}{on_stack(option.stack, units)}"
+    stroke = f"{units.setting(hammer, plan.stroke)}{on_stack(option.stack, units)}"
+    word = "setting" if hammer.set_by_energy else "stroke"
     gives = f"gives {set_text(plan.set, plan.stage, job, units)}"
     if hammer.stroke_min == hammer.stroke_max:
-        return f"its only stroke of {stroke} {gives}"
+        return f"its only {word} of {stroke} {gives}"
     if option.verdict in SHORT_OF_SET:
-        return f"full stroke of {stroke} {gives}"
+        return f"full {word} of {stroke} {gives}"
     if plan.stroke <= hammer.stroke_min:
-        return f"already its lowest stroke of {stroke} {gives}"
+        return f"already its lowest {word} of {stroke} {gives}"
     if hammer.stroke_step:
         return f"the lowest step that reaches the set, {stroke}, {gives}"
     needed = units.text(needed_set(plan.stage, job), "set")
-    return f"a set of {needed} needs a stroke of {stroke}"
+    return f"a set of {needed} needs a {word} of {stroke}"
 
 
 def set_text(set_: float, stage: Stage, job: Job, units: Units) -> str:
@@ -149,15 +159,21 @@ def _uses(compression: float, tension: float, job: Job) -> str:
     )
 
 
-def _held_back(option: Option, units: Units) -> str:
+def _held_back(option: Option, job: Job, units: Units) -> str:
     """Return the stages whose stroke must stay below the target's, in words."""
     if option.verdict != REDUCED:
         return ""
     held = [plan for plan in option.plans if plan.stroke < option.target.stroke]
     if len(held) > STAGES_NAMED:
-        low, high = (units.text(f(p.stroke for p in held), "stroke") for f in (min, max))
-        return f"; stroke kept to {low} to {high} at {len(held)} of {len(option.plans)} stages"
-    named = [f"{units.text(plan.stroke, 'stroke')} at {plan.stage.name!r}" for plan in held]
+        low, high = (units.setting(option.hammer, f(p.stroke for p in held)) for f in (min, max))
+        between = low if low == high else f"{low} to {high}"
+        what = "stages" if job.drive is None else "stations"
+        return f"; stroke kept to {between} at {len(held)} of {len(option.plans)} {what}"
+    named = [
+        f"{units.setting(option.hammer, plan.stroke)} "
+        + (f"at {plan.stage.name!r}" if job.drive is None else where(plan.stage, job, units))
+        for plan in held
+    ]
     return f"; stroke kept to {', '.join(named)}"
 
 
@@ -169,7 +185,7 @@ def _cured(cure: Cure | None, option: Option, units: Units) -> str:
     if cure.set_within is not None and cure.stroke_within is not None:
         words.append(
             f"within the limits it reaches a set of {units.text(cure.set_within, 'set')}, at "
-            f"{units.text(cure.stroke_within, 'stroke')}"
+            f"{units.setting(option.hammer, cure.stroke_within)}"
         )
     if cure.stack is not None:
         words.append(f"{cushions(cure.stack, units)}, more than allowed, would do")
@@ -209,7 +225,7 @@ def softer_sentence(option: Option, objective: str, units: Units) -> str:
     ]
     return (
         f"Softer for {option.hammer.name}: {cushions(softer.stack, units)} at "
-        f"{units.text(softer.target.stroke, 'stroke')}; {', '.join(changes)} of the limit, "
+        f"{units.setting(option.hammer, softer.target.stroke)}; {', '.join(changes)} of the limit, "
         f"{_at_what_cost(option.target, softer.target, objective)}."
     )
 
@@ -228,7 +244,10 @@ def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
 
 
 def basis(job: Job, units: Units) -> list[str]:
-    """Return what the answer rests on: limits with their sources, defaults, warnings."""
+    """Return what the answer rests on: limits with their sources, defaults, warnings.
+
+    The ground of a whole drive is told apart, since there is so much of it.
+    """
     return [*rests_on(job, units), *warned(job)]
 
 
@@ -241,12 +260,9 @@ def warned(job: Job) -> list[str]:
 
 
 def rests_on(job: Job, units: Units) -> list[str]:
-    """Return limits with their sources, the ground, and what was taken by default."""
+    """Return limits with their sources, and what was taken by default."""
     limits = job.limits
-    lines = [
-        f"Limits: compression {_limit(limits.squeeze, units)}; "
-        f"tension {_limit(limits.pull, units)}."
-    ]
+    lines = _limits(limits, units)
     keep = job.search.reserve
     if keep:
         lines.append(
@@ -254,16 +270,29 @@ def rests_on(job: Job, units: Units) -> list[str]:
             f"{1 + keep:.4g} times the one needed, stresses at most {100 * (1 - keep):.3g}% of the "
             "limits."
         )
-    if job.drive is not None:
-        told = dict.fromkeys(note for stage in job.stages for note in stage.notes)
-        lines.append(f"Ground: {'; '.join(map(units.retold, told))}.")
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
     return lines
 
 
+def _limits(limits: StressLimits, units: Units) -> list[str]:
+    """Return the stress limits, parts with the same ones told together."""
+    told: dict[str, list[str]] = {}
+    for part in limits.parts:
+        both = (_limit(part.squeeze, units), _limit(part.pull, units))
+        text = f"compression {both[0]}; tension {both[1]}"
+        if part.squeeze == part.pull:
+            text = f"compression and tension {both[0]}"
+        told.setdefault(text, []).append(part.part)
+    if len(told) == 1:
+        return [f"Limits: {text}." for text in told]
+    return [f"Limits of {' and '.join(names)}: {text}." for text, names in told.items()]
+
+
 def _limit(limit: Limit, units: Units) -> str:
     """Return a stress limit with its rule, clause, formula and the numbers in it."""
+    if limit == NOT_LIMITED:
+        return limit.text
     values = [f"{name} {units.text(value, 'stress')}" for name, value in limit.values]
     told = f"{limit.text}; {', '.join(values)}" if values else limit.text
     return f"{units.text(limit.stress, 'stress')} ({told})"

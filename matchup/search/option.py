@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field
 
 from matchup.model.cushion import Stack
@@ -33,6 +34,8 @@ VERDICTS = (
 )
 """Worst news first."""
 CAN_DRIVE = (DRIVES, REDUCED)
+HOPELESS = 10.0
+"""Shortfall from which it says no more how far a stage is from working. [-]"""
 FINE = (DRIVES, GOES_DOWN)
 """Of one stage."""
 
@@ -99,6 +102,8 @@ class StagePlan:
         The one wear state planned for; empty for every one asked for.
     taken : Taken or None
         In a drive, what it took to get here from the first station.
+    energy_set : float or None
+        The hammer's setting where that is an energy, and the stroke its equivalent. [J]
     """
 
     stage: Stage
@@ -120,11 +125,17 @@ class StagePlan:
     why: str = ""
     wear: str = ""
     taken: Taken | None = None
+    energy_set: float | None = None
 
     @property
     def set_share(self) -> float:
         """Set over needed set [-]."""
         return self.set / self.stage.set_needed
+
+    @property
+    def distance(self) -> float:
+        """The shortfall, but the same for all that are hopeless; infinite where no blow tells."""
+        return min(self.shortfall, HOPELESS) if math.isfinite(self.shortfall) else math.inf
 
     @property
     def stress_use(self) -> float:
@@ -147,7 +158,7 @@ class CaseDrive:
     required : bool
         Whether an option must manage it.
     plans : tuple of StagePlan
-        Station by station.
+        Station by station; empty where a hammer was ruled out before.
     failing : StagePlan or None
         The station that stops it.
     settled : float or None
@@ -162,10 +173,20 @@ class CaseDrive:
     settled: float | None
 
     @property
+    def reaches(self) -> bool:
+        """Whether the target is reached."""
+        return bool(self.plans) and self.failing is None
+
+    @property
     def taken(self) -> Taken:
         """Blows and time down to the last station that was reached."""
         takings = [plan.taken for plan in self.plans if plan.taken is not None]
         return takings[-1] if takings else Taken()
+
+    @property
+    def most_on_cushion(self) -> float:
+        """The most blows that one pile cushion takes [-]."""
+        return max((plan.taken.on_cushion for plan in self.plans if plan.taken), default=0.0)
 
     @property
     def hardest(self) -> StagePlan | None:
@@ -222,7 +243,8 @@ class Option:
     verdict : str
         One of `VERDICTS`.
     governs : str
-        ``set``, ``compression``, ``tension``, ``stroke range``, ``refusal`` or ``weight``.
+        ``set``, ``compression``, ``tension``, ``stroke range``, ``blow rate``, ``refusal`` or
+        ``weight``.
     stack : Stack
         Cushions.
     plans : tuple of StagePlan

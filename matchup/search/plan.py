@@ -32,12 +32,8 @@ from matchup.search.option import (
     Option,
     StagePlan,
 )
-from matchup.search.way import (
-    Walk,
-    case_drives,
-    stage_plan,
-    walk,
-)
+from matchup.search.way import Walk, case_drives, stage_plan, walk
+from matchup.wave.layout import Integers
 
 GOVERNS = {
     PILE_RUNS: "weight",
@@ -89,12 +85,14 @@ class Planner:
         else:
             certificates = self._study()
         best = self._best()
+        misses = {h: self._nearest(h) for h, c in best.items() if c is None}
+        self._walk_misses(misses)
         softer = self._softer(best)
         shown = [pair for pair in (*best.items(), *softer.items()) if pair[1] is not None]
         self._find_ends([(h, c) for h, c in shown if c is not None])
         return [
             replace(
-                self._miss(h) if c is None else self._option(h, c, softer.get(h)),
+                self._miss(h, misses[h]) if c is None else self._option(h, c, softer.get(h)),
                 certificate=certificates[h],
                 analyses=int(self.rig.spent_on[h]),
             )
@@ -104,6 +102,8 @@ class Planner:
     def _whole(self) -> str:
         if self.rig.job.cushions is None and len(self.rig.stacks) == 1:
             return "exact: no pile cushion to choose"
+        if len(self.rig.stacks) == 1:
+            return "exact: the one cushion given"
         return f"exact: all {len(self.rig.stacks)} cushions"
 
     def _study(self) -> dict[int, str]:
@@ -159,18 +159,37 @@ class Planner:
         cells = Cells(*np.array(keys).T)
         found = self.finder.find(cells)
         if self._objective == "time":
-            # The pile goes in fastest at the highest stroke: the set grows at least in proportion
-            # to it, and the blow rate falls at most in inverse proportion.
             works = np.flatnonzero(found.state == OPEN)
             if works.size:
                 some = cells.take(works)
                 tops = self.finder.tops(some, found.at[works])
-                found.put(works, self.finder.strike(some, tops))
+                fastest = self._fastest(some, found.at[works], tops)
+                found.put(works, self.finder.strike(some, fastest))
         row = 0
         for pair, keys_of_pair in zip(fresh, per_pair, strict=True):
             rows = range(row, row + len(keys_of_pair))
             self._targets[pair] = tuple(stage_plan(self.finder, found, r) for r in rows)
             row += len(keys_of_pair)
+
+    def _fastest(self, cells: Cells, low: Integers, top: Integers) -> Integers:
+        """Return the settings between two at which the pile goes in fastest.
+
+        That is the highest: the set grows at least in proportion to the stroke, and the blow rate
+        falls at most in inverse proportion. A rate that falls in a straight line between two given
+        ones may fall faster; then every setting in between is looked at.
+        """
+        best = top.copy()
+        for row, place in enumerate(cells.hammer.tolist()):
+            hammer = self.rig.job.hammers[place]
+            if hammer.blow_rate_full is None:
+                continue
+            at = np.arange(low[row], top[row] + 1)
+            same = cells.take(np.full(at.size, row))
+            sets, _, _ = self.finder.sets(same, at)
+            strokes = self.finder.stroke(same.hammer, at).tolist()
+            rates = np.array([hammer.blow_rate(stroke) for stroke in strokes], float)
+            best[row] = at[np.argmax(rates * sets)]
+        return best
 
     def _look_on_the_way(self, pairs: list[Pair]) -> None:
         """Plan the stages before the targets of pairs not yet planned."""
@@ -184,9 +203,11 @@ class Planner:
 
     def _walks(self, hammer: int, stack: int) -> list[Walk]:
         last = int(self.finder.last_settings(np.array([hammer]))[0])
+        falls = self.rig.job.hammers[hammer].blow_rate_full is not None
+        high = self._objective == "time" and not falls
         made = []
         for course, target in zip(self.courses, self._targets[hammer, stack], strict=True):
-            wanted = last if self._objective == "time" else target.at
+            wanted = last if high else target.at
             made.append(Walk(course, hammer, stack, target, [wanted] * len(course.stages)))
         return made
 
@@ -228,10 +249,18 @@ class Planner:
         return min(max(failing.shortfall, 1e-6), 1e9)
 
     def _failing(self, hammer: int, stack: int) -> StagePlan | None:
-        """Return the failing stage with the worst news, or None where all stages work."""
-        plans = self._required(self.stage_plans(hammer, stack))
-        failing = [plan for plan in plans if plan.verdict not in FINE]
-        return min(failing, key=lambda p: VERDICTS.index(p.verdict), default=None)
+        """Return the stage that is farthest from working, or None where all stages work.
+
+        Over several ground cases a hammer may fail at several stages: what helps at this one is
+        the most likely to help at the others. Of hopeless ones it is that with the most resistance.
+        """
+        plans = (*self._targets[hammer, stack], *self._ways.get((hammer, stack), ()))
+        failing = [plan for plan in self._required(plans) if plan.verdict not in FINE]
+        return max(
+            failing,
+            key=lambda p: (p.distance, p.stage.resistance, -VERDICTS.index(p.verdict)),
+            default=None,
+        )
 
     def _merit(self, hammer: int, stack: int) -> tuple[float, ...]:
         """Ties of cost go to the thinner cushion, then lower compression, then catalogue order.
@@ -369,24 +398,34 @@ class Planner:
         if self._objective == "time":
             if target.at == strokes.size - 1:
                 return "stroke range"
+            if target.top is not None and target.stroke < target.top:
+                return "blow rate"
             return "compression" if target.compression_use > target.tension_use else "tension"
         if target.lifted:
             return "tension"
         return "stroke range" if target.at == 0 else "set"
 
-    def _miss(self, hammer: int) -> Option:
+    def _nearest(self, hammer: int) -> int:
         """Return the nearest miss: the stack whose failing stage falls short by the least."""
         stacks = [c for h, c in self._targets if h == hammer]
-        nearest = min(stacks, key=lambda c: (self._excess(hammer, c), c))
+        return min(stacks, key=lambda c: (self._excess(hammer, c), c))
+
+    def _walk_misses(self, misses: dict[int, int]) -> None:
+        """Find how far nearest misses get in every ground case of a drive."""
+        if self.rig.job.drive is not None:
+            self._look_on_the_way([(h, c) for h, c in misses.items() if not self._runs(h)])
+
+    def _miss(self, hammer: int, nearest: int) -> Option:
         failing = self._failing(hammer, nearest)
         assert failing is not None
         plans = self.stage_plans(hammer, nearest)
+        told = {plan.stage.name for plan in plans}
         return Option(
             hammer=self.rig.job.hammers[hammer],
             verdict=failing.verdict,
             governs=GOVERNS[failing.verdict],
             stack=self.rig.stacks[nearest],
-            plans=plans,
+            plans=plans if failing.stage.name in told else (*plans, failing),
             target=self.target_plan(hammer, nearest),
             cases=case_drives(self.rig.job, plans, float(self.rig.chains.weights[hammer])),
             cost=math.inf,

@@ -39,7 +39,7 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
     return Ranking(
         job=job,
         options=tuple(sorted(driving, key=lambda option: option.cost)),
-        rejected=tuple(sorted(failing, key=_shortfall)),
+        rejected=tuple(sorted(failing, key=_distance)),
         analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
         runtime=time.perf_counter() - started,
     )
@@ -89,6 +89,7 @@ def with_odds(
     )
 
 
-def _shortfall(option: Option) -> float:
+def _distance(option: Option) -> tuple[float, float]:
+    """Return how far an option is from working; the hopeless are told apart by their reach."""
     assert option.failing is not None
-    return option.failing.shortfall
+    return option.failing.distance, -(option.reach or 0.0)

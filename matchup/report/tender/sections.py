@@ -7,19 +7,14 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-import matchup
+from matchup.report.closing import ground
 from matchup.report.doubted import doubt_blocks
-from matchup.report.driven import (
-    answer,
-    cases_table,
-    chosen_case,
-    criterion_page,
-    stations_table,
-)
+from matchup.report.driven import answer, cases_table, chosen_case, stations_table
 from matchup.report.one_blow import figures_table
 from matchup.report.options import margins_table, options_table, schedule_table
 from matchup.report.page import Block, Headline, Prose
 from matchup.report.picture import Picture
+from matchup.report.proven import criterion_page
 from matchup.report.ranked import REACH, failures, softer_prose
 from matchup.report.sentences import (
     CAUTION,
@@ -29,6 +24,7 @@ from matchup.report.sentences import (
     searched,
     verdict_sentence,
     warned,
+    where,
 )
 from matchup.report.shown import Units
 from matchup.report.table import Column, Table
@@ -54,6 +50,10 @@ METHOD = (
     "within both stress limits, in every wear state and at 2 % more and less stroke.",
     "Not modelled: diesel and vibratory hammers, repeated blows with residual stresses, splices, "
     "followers, bending, fatigue.",
+)
+AS_PLANNED = (
+    "At the planned stroke, in the wear state that decides. The plan's own figures are the worst "
+    "over the wear states and over 2 % more and less stroke, so they are a little higher."
 )
 FEW_STAGES = 12
 """Up to so many stages are echoed in the report itself; more stand in the workbook."""
@@ -203,10 +203,10 @@ def _window(dossier: Dossier, units: Units) -> Section:
     picture = _picture(
         "window",
         window_figure(found, units, chosen),
-        f"Where {option.hammer.name} works at stage {found.stage.name!r}, by stroke and cushion, "
-        "and what closes each edge.",
+        f"Where {option.hammer.name} works {where(found.stage, dossier.job, units)}, by stroke and "
+        "cushion, and what closes each edge.",
     )
-    return Section(f"Strokes and cushions that work for {option.hammer.name}", (picture,))
+    return Section(f"Strokes and cushions for {option.hammer.name}", (picture,))
 
 
 def _blows(dossier: Dossier, units: Units) -> Section | None:
@@ -214,17 +214,20 @@ def _blows(dossier: Dossier, units: Units) -> Section | None:
         return None
     from matchup.report.figures.blow import blow_figure
 
-    blocks: list[Block] = []
+    blocks: list[Block] = [Prose((AS_PLANNED,))]
     for number, blow in enumerate(dossier.blows, 1):
-        why = "at the target" if number == 1 else "where the stress is highest"
+        why = "where the stress is highest"
+        if number == 1:
+            why = "at the target" if dossier.detail.drives else "where it fails"
+        at = where(blow.stage, dossier.job, units)
         blocks += [
-            Headline(f"Stage {blow.stage.name!r}, {why}:"),
+            Headline(f"{at[0].upper()}{at[1:]}, {why}:"),
             _picture(
                 f"blow_{number}",
                 blow_figure(blow, dossier.job.pile, units),
-                f"One blow of {blow.hammer.name} at stage {blow.stage.name!r}: force in the pile "
-                "over time and position, the record at the head, and the largest stresses along "
-                "the pile against their limits.",
+                f"One blow of {blow.hammer.name} {at}: force in the pile over time and position, "
+                "the record at the head, and the largest stresses along the pile against their "
+                "limits.",
             ),
             figures_table(blow, units),
         ]
@@ -247,7 +250,8 @@ def _inputs(dossier: Dossier, units: Units) -> Section:
 
 def _methods(dossier: Dossier, units: Units) -> Section:
     lines = (*METHOD, *rests_on(dossier.job, units), searched(dossier.ranking, timed=False))
-    return Section("Methods, sources and what was taken by default", (Prose(lines),))
+    blocks = (*ground(dossier.job, units), Prose(lines))
+    return Section("Methods, sources and what was taken by default", blocks)
 
 
 def _cautions(dossier: Dossier, units: Units) -> Section:
@@ -258,7 +262,7 @@ def _about(dossier: Dossier, units: Units) -> Section:
     """Return what it takes to get the same report again."""
     python = ".".join(map(str, sys.version_info[:3]))
     line = (
-        f"Made by matchup {matchup.__version__} with Python {python}, seed "
+        f"Made by matchup {dossier.version} with Python {python}, seed "
         f"{dossier.job.search.seed}. The same files and seed give the same report, byte by byte."
     )
     return Section("How to get this report again", (Prose((line,)), files_table(dossier)))
