@@ -34,6 +34,9 @@ COLUMNS = (
     Spec("hammer_mass", "mass", instead="hammer_weight"),
     Spec("rides_on_pile", "yes_no"),
     Spec("available", "yes_no"),
+    Spec("day_rate", "amount", example="EUR"),
+    Spec("mobilisation", "amount", example="EUR"),
+    Spec("fuel_use", "amount", example="l/h"),
     Spec("source", "text"),
 )
 
@@ -115,6 +118,9 @@ def _hammer(record: Record, catalogue: CushionCatalogue | None) -> Hammer | None
             hammer_mass=number("hammer_mass"),
             rides_on_pile=record.values.get("rides_on_pile") is True,
             available=record.values.get("available") is not False,
+            day_rate=record.amount("day_rate"),
+            mobilisation=record.amount("mobilisation"),
+            fuel_use=record.amount("fuel_use"),
             source=record.text("source"),
             extra=record.extra,
         )

@@ -18,6 +18,7 @@ from pydantic import (
 )
 
 from matchup.errors import did_you_mean
+from matchup.inputs.amounts import read_amount
 from matchup.model.limits import RULES
 from matchup.units import QUANTITIES, UnitError, example_of, parse_quantity
 
@@ -78,7 +79,23 @@ Density = Annotated[float, *_key("density")]
 Damping = Annotated[float, *_key("damping", may_be_zero=True)]
 UnitWeight = Annotated[float, *_key("unit weight")]
 Time = Annotated[float, *_key("time")]
+Duration = Annotated[float, *_key("time", may_be_zero=True)]
 Angle = Annotated[float, *_key("angle")]
+
+
+def _amount(what: str, example: str) -> tuple[Any, ...]:
+    """Return what makes an amount a text with its unit."""
+    text = f"{what}, at least 0: {example}"
+    return (
+        BeforeValidator(lambda value: read_amount(value, example)),
+        WithJsonSchema({"type": "string", "description": text}),
+    )
+
+
+Money = Annotated[Any, *_amount("money in the currency", "2400 EUR")]
+FuelUse = Annotated[Any, *_amount("fuel by hour of driving or MJ of blow energy", "25 l/h")]
+FuelPrice = Annotated[Any, *_amount("money for a unit of fuel", "1.6 EUR/l")]
+FuelCarbon = Annotated[Any, *_amount("carbon dioxide of a unit of fuel", "2.7 kg/l")]
 
 SHAPE_OF_SHAFT = 'must be "uniform", "triangular" or rows of depth and intensity'
 SHAPE_EXAMPLE = 'For example [["0 m", 0.2], ["12 m", 1.0]].'
@@ -321,7 +338,7 @@ class LimitsKeys(Keys):
 class SearchKeys(Keys):
     """How the best option is chosen."""
 
-    objective: Literal["energy", "time"] = "energy"
+    objective: Literal["energy", "time", "cost"] = "energy"
     reserve: float = 0.0
     seed: int = 7
 
@@ -331,6 +348,26 @@ class AnalysisKeys(Keys):
 
     gravity: bool = True
     damping: Literal["smith", "viscous"] = "smith"
+
+
+class CostKeys(Keys):
+    """What the contract pays for; money is a text with the currency behind the number."""
+
+    currency: str
+    piles: int
+    rigs: int = 1
+    shift: Time
+    move: Duration
+    rig_day: Money | None = None
+    crew_day: Money | None = None
+    mobilisation: Money | None = None
+    splices: int = 0
+    splice_time: Duration | None = None
+    splice_price: Money | None = None
+    cushion_time: Duration | None = None
+    fuel_use: FuelUse | None = None
+    fuel_price: FuelPrice | None = None
+    fuel_co2: FuelCarbon | None = None
 
 
 class JobKeys(Keys):
@@ -349,6 +386,7 @@ class JobKeys(Keys):
     limits: LimitsKeys
     search: SearchKeys = SearchKeys()
     analysis: AnalysisKeys = AnalysisKeys()
+    cost: CostKeys | None = None
 
 
 def job_schema() -> dict[str, Any]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass, field
 
+from matchup.model.cost import Amount
 from matchup.model.cushion import Spring
 from matchup.model.rules import Rules
 
@@ -50,6 +51,10 @@ class Hammer:
         Whether the hammer's frame stands on the helmet.
     available : bool
         A hammer that is not available is left out of a ranking, with a notice.
+    day_rate, mobilisation : Amount or None
+        Money for a day with the hammer, and for bringing it to the site and back.
+    fuel_use : Amount or None
+        Fuel by hour of driving or MJ of blow energy.
     source : str
         Where the numbers come from.
     extra : dict
@@ -72,6 +77,9 @@ class Hammer:
     hammer_mass: float | None = None
     rides_on_pile: bool = False
     available: bool = True
+    day_rate: Amount | None = None
+    mobilisation: Amount | None = None
+    fuel_use: Amount | None = None
     source: str = ""
     extra: dict[str, str] = field(default_factory=dict, compare=False)
 
@@ -96,6 +104,9 @@ class Hammer:
         rules.positive("rated_energy", self.rated_energy, "energy")
         rules.positive("helmet_mass", self.helmet_mass, "mass")
         rules.positive("hammer_mass", self.hammer_mass, "mass")
+        for name in ("day_rate", "mobilisation", "fuel_use"):
+            amount = getattr(self, name)
+            rules.not_negative(name, None if amount is None else amount.value)
         if self.hammer_mass is not None:
             rules.must(
                 not 0 < self.hammer_mass < self.ram_mass,

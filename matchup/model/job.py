@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from matchup.model.cost import Cost
 from matchup.model.cushion import CushionSpace, HammerCushion
 from matchup.model.hammer import Hammer
 from matchup.model.limits import StressLimits
@@ -11,7 +12,7 @@ from matchup.model.pile import Pile
 from matchup.model.rules import Rules
 from matchup.model.stage import Stage
 
-OBJECTIVES = ("energy", "time")
+OBJECTIVES = ("energy", "time", "cost")
 DAMPINGS = ("smith", "viscous")
 LARGEST_SEED = 2**31
 """Random number generators take less than 2**32, and a seed is counted up by the hammers."""
@@ -24,7 +25,8 @@ class Search:
     Parameters
     ----------
     objective : str
-        ``energy``: least blow energy at the target stage; ``time``: fastest penetration there.
+        ``energy``: least blow energy at the target stage; ``time``: fastest penetration there, in
+        a whole drive least time of it; ``cost``: least cost of the contract.
     reserve : float
         Share kept back from set and limits, in [0, 1). [-]
     seed : int
@@ -132,6 +134,8 @@ class Job:
     analysis : Analysis
     drive : Drive or None
         None for stages given by hand.
+    cost : Cost or None
+        What the contract pays for.
     display : str
         ``metric`` or ``us``: units of tables.
     file : str or None
@@ -152,6 +156,7 @@ class Job:
     search: Search = Search()
     analysis: Analysis = Analysis()
     drive: Drive | None = None
+    cost: Cost | None = None
     display: str = "metric"
     file: str | None = None
     notices: tuple[str, ...] = ()
@@ -170,12 +175,7 @@ class Job:
         for case in self.drive.required if self.drive else ():
             known = ", ".join(sorted(cases))
             rules.must(case in cases, "ground.required", f"must be cases: {known}", case)
-        rules.must(
-            self.search.objective != "time" or any(h.blow_rate(h.stroke_max) for h in self.hammers),
-            "search.objective",
-            "must be energy where no hammer's catalogue row gives `blow_rate_max` or `lift_speed`",
-            self.search.objective,
-        )
+        self._check_objective(rules)
         for stage in self.stages:
             rules.must(
                 not stage.penetration > self.pile.length,
@@ -192,6 +192,28 @@ class Job:
                 f"none for {hammer.name}",
             )
         rules.close()
+
+    def _check_objective(self, rules: Rules) -> None:
+        """Hold the objective against what can be known."""
+        objective = self.search.objective
+        rules.must(
+            objective == "energy" or any(h.blow_rate(h.stroke_max) for h in self.hammers),
+            "search.objective",
+            "must be energy where no hammer's catalogue row gives `blow_rate_max` or `lift_speed`",
+            objective,
+        )
+        rules.must(
+            objective != "cost" or self.cost is not None,
+            "search.objective",
+            "must be energy or time in a job that gives no cost",
+            objective,
+        )
+        rules.must(
+            objective != "cost" or any(h.day_rate and h.mobilisation for h in self.hammers),
+            "search.objective",
+            "must be energy or time where no hammer's row gives `day_rate` and `mobilisation`",
+            objective,
+        )
 
     @property
     def courses(self) -> tuple[Course, ...]:

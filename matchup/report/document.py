@@ -8,9 +8,11 @@ from typing import Any
 from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
 from matchup.model.job import Job
+from matchup.report.bills import bill_document
 from matchup.report.sentences import reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, Ranking, StagePlan
+from matchup.search.tradeoff import is_beaten
 
 SCHEMA_VERSION = 1
 
@@ -91,6 +93,10 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "blow_rate_per_min": number(plan.blow_rate, 60),
         "blows_total": None if option.slowest is None else option.slowest.taken.blows,
         "drive_minutes": None if option.slowest is None else number(_seconds(option), 1 / 60),
+        "drive_blow_energy_MJ": (
+            None if option.slowest is None else number(option.slowest.taken.energy, 1e-6)
+        ),
+        "cost": bill_document(option.bill, job.cost),
         "runner_up": (
             None
             if option.runner_up is None
@@ -134,6 +140,7 @@ def ranking_document(ranking: Ranking, units: Units) -> dict[str, Any]:
         "limits": limits_document(job),
         "options": [
             option_document(option, job, units, place)
+            | {"unbeaten": not is_beaten(option, ranking.options)}
             for place, option in enumerate(ranking.options, 1)
         ],
         "rejected": [option_document(option, job, units, None) for option in ranking.rejected],

@@ -7,6 +7,7 @@ from functools import partial
 from typing import Any
 
 from matchup.model.job import Job
+from matchup.report.bills import bill_document, bills_blocks
 from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
@@ -44,6 +45,7 @@ def drive_page(ranking: Ranking, units: Units, case: str | None = None) -> Page:
     others = [drive.case for drive in option.cases if drive is not chosen]
     if others and case is None:
         page.append(Prose((f"Other cases: {', '.join(others)}.",)))
+    page += bills_blocks((option,), job, units)
     return [*page, foot(ranking, units)]
 
 
@@ -288,12 +290,12 @@ def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
     return {
         "schema_version": SCHEMA_VERSION,
         **checked,
-        "cases": [_case_document(drive) for drive in option.cases],
+        "cases": [_case_document(drive, ranking.job) for drive in option.cases],
         "stations": [_station_document(plan) for drive in option.cases for plan in drive.plans],
     }
 
 
-def _case_document(drive: CaseDrive) -> dict[str, Any]:
+def _case_document(drive: CaseDrive, job: Job) -> dict[str, Any]:
     taken = drive.taken
     return {
         "case": drive.case,
@@ -304,7 +306,9 @@ def _case_document(drive: CaseDrive) -> dict[str, Any]:
         "goes_down_to_m": number(drive.settled),
         "blows": number(taken.blows),
         "minutes": number(taken.seconds, 1 / 60),
+        "blow_energy_MJ": number(taken.energy, 1e-6),
         "pile_cushions": taken.cushions,
+        "cost": bill_document(drive.bill, job.cost),
     }
 
 

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
 from matchup.model.job import Job
 from matchup.model.stage import Stage
+from matchup.report.bills import per_pile_text
 from matchup.report.shown import Units, share_text
 from matchup.search.cure import BEYOND, HEAVIER
 from matchup.search.option import (
@@ -41,13 +43,17 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
     plan = best.target
     who = "the hammer" if count == 1 else f"{len(options)} of {count} hammers"
     objective, figure = "least energy", f"{units.text(plan.blow_energy, 'energy')} a blow"
-    if ranking.job.search.objective == "time":
+    asked = ranking.job.search.objective
+    if asked == "time":
         objective, speed = "fastest", units.speed(plan.speed)
         figure = "its blow rate not known" if speed is None else f"{speed:.2f} {units.speed_unit}"
     if best.slowest is not None:
         taken = best.slowest.taken
         figure += f", {taken.blows:.0f} blows"
         figure += "" if taken.seconds is None else f" in {taken.seconds / 60:.0f} min"
+    if ranking.job.cost is not None and best.bill is not None:
+        objective = "least cost" if asked == "cost" else objective
+        figure += f", {per_pile_text(best.bill, ranking.job.cost)}"
     return (
         f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
         f"{units.text(plan.stroke, 'stroke')}{on_stack(best.stack, units)}, {figure}."
@@ -209,17 +215,22 @@ def softer_sentence(option: Option, objective: str, units: Units) -> str:
     return (
         f"Softer for {option.hammer.name}: {cushions(softer.stack, units)} at "
         f"{units.text(softer.target.stroke, 'stroke')}; {', '.join(changes)} of the limit, "
-        f"{_at_what_cost(option.target, softer.target, objective)}."
+        f"{_at_what_cost(option, softer, objective)}."
     )
 
 
-def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
+def _at_what_cost(option: Option, runner_up: Option, objective: str) -> str:
     """Return what the runner-up takes more of than the best plan, in words."""
+    best, softer = option.target, runner_up.target
     what, ratio = "energy", softer.blow_energy / best.blow_energy
     if objective == "time":
         if not best.speed or not softer.speed:
             return "at a speed not known"
         what, ratio = "speed", softer.speed / best.speed
+    if objective == "cost":
+        if math.isinf(option.cost) or math.isinf(runner_up.cost):
+            return "at a cost not known"
+        what, ratio = "cost", runner_up.cost / option.cost
     change = f"{100 * abs(ratio - 1):.0f}%"
     if change == "0%":
         return f"at the same {what}"

@@ -8,6 +8,7 @@ from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
+from matchup.search.bill import Bill
 
 DRIVES = "drives"
 REDUCED = "drives with reduced stroke"
@@ -50,12 +51,15 @@ class Taken:
         Blows that the pile cushion has taken. [-]
     cushions : int
         Pile cushions used so far, this one included.
+    energy : float
+        Of the blows, ram weight times stroke. [J]
     """
 
     blows: float = 0.0
     seconds: float | None = 0.0
     on_cushion: float = 0.0
     cushions: int = 1
+    energy: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -152,6 +156,8 @@ class CaseDrive:
     settled : float or None
         Penetration down to which the pile goes under its weight; None where the first station
         takes blows already. [m]
+    bill : Bill or None
+        Of the contract; None where the job gives no cost, or the target is not reached.
     """
 
     case: str
@@ -159,6 +165,7 @@ class CaseDrive:
     plans: tuple[StagePlan, ...]
     failing: StagePlan | None
     settled: float | None
+    bill: Bill | None = None
 
     @property
     def taken(self) -> Taken:
@@ -281,6 +288,15 @@ class Option:
         """The required case that takes the most blows; None for stages given by hand."""
         required = [case for case in self.cases if case.required]
         return max(required, key=lambda case: case.taken.blows, default=None)
+
+    @property
+    def bill(self) -> Bill | None:
+        """Bill of the required case that costs the most, or takes the longest where none is known.
+
+        None where the job gives no cost.
+        """
+        bills = [case.bill for case in self.cases if case.required and case.bill]
+        return max(bills, key=lambda b: (b.total or 0.0, b.pile_time or 0.0), default=None)
 
     @property
     def drives(self) -> bool:

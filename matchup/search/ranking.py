@@ -5,6 +5,7 @@ from __future__ import annotations
 import time
 
 from matchup.analysis.rig import Rig, Tell
+from matchup.errors import InputError, Problem
 from matchup.model.job import Job
 from matchup.search.cure import find_cures
 from matchup.search.option import Option, Ranking
@@ -22,7 +23,13 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
         Threads; None takes as many as there are processors. The answer does not depend on it.
     tell : callable or None
         Called with the number of blows of every batch.
+
+    Raises
+    ------
+    InputError
+        If cost is asked for where it can't be known.
     """
+    _check_objective(job)
     started = time.perf_counter()
     planner = Planner(Rig(job, workers, tell))
     options = planner.options()
@@ -37,6 +44,13 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
         analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
         runtime=time.perf_counter() - started,
     )
+
+
+def _check_objective(job: Job) -> None:
+    if job.search.objective == "cost" and job.drive is None:
+        must = "must be energy or time where stages are given by hand"
+        do = "Blows and minutes of a whole drive follow from a [ground]."
+        raise InputError([Problem(job.file, None, "search.objective", must, "cost", do)])
 
 
 def _shortfall(option: Option) -> float:

@@ -284,6 +284,7 @@ CUSHION_NUMBERS = {
     "new_for": "number",
     "life": "number",
 }
+AMOUNTS = {"day_rate", "mobilisation", "fuel_use", "price"}
 TRUTHS = {"rides_on_pile", "available"}
 TEXTS = {"name", "kind", "use", "source"}
 CUSHION_OF_HAMMER = {
@@ -321,6 +322,9 @@ def shows(item: Hammer | CushionMaterial, name: str, cell: str, unit: str, separ
     numbers = HAMMER_NUMBERS if isinstance(item, Hammer) else CUSHION_NUMBERS
     if name in numbers:
         return same(getattr(item, name), number(cell, unit, numbers[name], separator))
+    if name in AMOUNTS and hasattr(item, name):
+        plain = cell.replace(",", ".") if separator != "," else cell
+        return getattr(item, name) == (float(plain), unit.replace(" ", ""))
     if name in TRUTHS and isinstance(item, Hammer):
         return getattr(item, name) is (cell.casefold() in {"yes", "y", "true", "1"})
     if name in TEXTS and hasattr(item, name):

@@ -14,6 +14,7 @@ from matchup.inputs.cushions import COLUMNS as CUSHION_COLUMNS
 from matchup.inputs.cushions import read_cushions
 from matchup.inputs.findings import Findings
 from matchup.inputs.hammers import COLUMNS, read_hammers
+from matchup.model.cost import Amount
 from tests import pint_units
 from tests.inputs.written import CUSHIONS, HAMMERS, JOB, replaced
 
@@ -137,11 +138,11 @@ def test_a_workbook_is_a_catalogue(hammers, tmp_path):
 
 
 def test_other_columns_are_kept_aside_with_one_notice(hammers):
-    head = [*HEAD, "plant no.", "day_rate [EUR]", "hammer_id"]
+    head = [*HEAD, "plant no.", "colour [RAL]", "hammer_id"]
     found, problems, notices = hammers(write(",", head, [*GOOD, "17", "900", "x"]))
     assert not problems
-    assert notices == ["h.csv, line 1: kept aside, not used: plant no., day_rate [EUR], hammer_id"]
-    assert found[0].extra == {"plant no.": "17", "day_rate [EUR]": "900", "hammer_id": "x"}
+    assert notices == ["h.csv, line 1: kept aside, not used: plant no., colour [RAL], hammer_id"]
+    assert found[0].extra == {"plant no.": "17", "colour [RAL]": "900", "hammer_id": "x"}
 
 
 def test_cells_without_a_header_are_kept_aside(hammers):
@@ -171,6 +172,9 @@ def test_every_column_of_a_hammer_is_seen(hammers):
         "hammer_mass": ("hammer_mass [t]", "12"),
         "rides_on_pile": ("rides_on_pile", "Yes"),
         "available": ("available", "true"),
+        "day_rate": ("day_rate [EUR]", "900"),
+        "mobilisation": ("mobilisation [EUR]", "4000"),
+        "fuel_use": ("fuel_use [l / h]", "30"),
         "source": ("source", "invented"),
     }
     rest = {"hammer_cushion_stiffness", "hammer_cushion_restitution"}
@@ -183,6 +187,9 @@ def test_every_column_of_a_hammer_is_seen(hammers):
     more = (hammer.stroke_step, hammer.blow_rate_max, hammer.lift_speed, hammer.rated_energy)
     assert more == (0.1, 0.5, 0.7, 88e3)
     assert (hammer.helmet_mass, hammer.hammer_mass, hammer.rides_on_pile) == (950, 12000, True)
+    money = (hammer.day_rate, hammer.mobilisation)
+    assert money == (Amount(900, "EUR"), Amount(4000, "EUR"))
+    assert hammer.fuel_use == Amount(30, "l/h")
     assert hammer.cushion.stiffness == pytest.approx(1300e6 * 0.2 / 0.13)
     assert hammer.cushion.restitution == 0.92
     assert hammer.cushion_text == "130 mm of nylon on 2000 cm2"
@@ -205,6 +212,7 @@ def test_every_column_of_a_cushion_is_seen(cushions):
         "worn_restitution": ("worn_restitution", "0.4"),
         "new_for": ("new_for [blows]", "300"),
         "life": ("life", "1500"),
+        "price": ("price [EUR]", "24"),
         "source": ("source", "invented"),
     }
     assert set(head) == {spec.name for spec in CUSHION_COLUMNS}
@@ -217,6 +225,7 @@ def test_every_column_of_a_cushion_is_seen(cushions):
     worn = (oak.worn_modulus, oak.worn_thickness, oak.worn_restitution)
     assert worn == pytest.approx((700e6, 0.8, 0.4))
     assert (oak.new_for, oak.life) == (300, 1500)
+    assert oak.price == Amount(24, "EUR")
 
 
 # --- what is refused -----------------------------------------------------------------------------
