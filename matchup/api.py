@@ -38,15 +38,17 @@ from matchup.report.driven import (
 from matchup.report.files import figure_kind, refuse_taken, write_file, write_folder
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
+from matchup.report.opinions import formula_fields, opinion_document, opinions_page
 from matchup.report.options import options_table, schedule_table
 from matchup.report.page import Headline, Page, page_html, page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
-from matchup.report.table import Table
+from matchup.report.table import Table, tabled
 from matchup.report.tender.bundle import NAMES, report_files
 from matchup.report.tender.dossier import Dossier
 from matchup.report.tender.sections import sections
 from matchup.search.criterion import Criterion, find_criterion
+from matchup.search.opinion import Opinion, second_opinion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers
 from matchup.search.stroke_map import StrokeMap, map_strokes
@@ -121,9 +123,12 @@ class RankingResult(_Shown):
     Parameters
     ----------
     ranking : Ranking
+    opinions : tuple of Opinion
+        What dynamic formulas make of the options, best first; empty where not asked for.
     """
 
     ranking: Ranking
+    opinions: tuple[Opinion, ...] = ()
 
     @property
     def job(self) -> Job:
@@ -142,7 +147,21 @@ class RankingResult(_Shown):
 
     def page(self, display: str | None = None) -> Page:
         """Return the ranking as blocks of prose and tables."""
-        return ranking_page(self.ranking, _units(self.job, display))
+        units = _units(self.job, display)
+        return self._with_opinions(ranking_page(self.ranking, units), units)
+
+    def _with_opinions(self, page: Page, units: Units) -> Page:
+        """Return a page with the second opinion before its foot."""
+        if not self.opinions:
+            return page
+        return [*page[:-1], *opinions_page(self.opinions, units), page[-1]]
+
+    def _document(self, document: dict[str, Any]) -> dict[str, Any]:
+        """Return a document with the second opinion by hammer."""
+        if not self.opinions:
+            return document
+        told = {opinion.hammer: opinion_document(opinion) for opinion in self.opinions}
+        return document | {"formulas": told}
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw the trade-off of the hammers that drive, or how near the others come."""
@@ -164,11 +183,16 @@ class RankingResult(_Shown):
         """Return the table of all hammers as CSV."""
         everyone = (*self.options, *self.rejected)
         objective = self.job.search.objective
-        return options_table(everyone, _units(self.job, display), objective).to_csv()
+        units = _units(self.job, display)
+        table = options_table(everyone, units, objective)
+        if self.opinions:
+            fields = formula_fields(units)
+            table = table.beside(tabled(self.opinions, fields))
+        return table.to_csv()
 
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
-        return ranking_document(self.ranking, _units(self.job, display))
+        return self._document(ranking_document(self.ranking, _units(self.job, display)))
 
 
 @dataclass(frozen=True)
@@ -187,7 +211,8 @@ class CheckResult(RankingResult):
 
     def page(self, display: str | None = None) -> Page:
         """Return the answer as blocks of prose and tables."""
-        return check_page(self.ranking, _units(self.job, display))
+        units = _units(self.job, display)
+        return self._with_opinions(check_page(self.ranking, units), units)
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw how far the hammer is from what is asked of it."""
@@ -201,7 +226,7 @@ class CheckResult(RankingResult):
 
     def to_dict(self, display: str | None = None) -> dict[str, object]:
         """Return the JSON document as plain data; `display` changes its sentences alone."""
-        return check_document(self.ranking, _units(self.job, display))
+        return self._document(check_document(self.ranking, _units(self.job, display)))
 
 
 @dataclass(frozen=True)
@@ -418,6 +443,8 @@ def rank(
     workers: int | None = None,
     seed: int | None = None,
     tell: Tell | None = None,
+    *,
+    formulas: bool = False,
 ) -> RankingResult:
     """Rank all hammers of a job.
 
@@ -430,6 +457,8 @@ def rank(
         Replaces the job's.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    formulas : bool
+        Add the second opinion of dynamic formulas, which decides nothing.
 
     Raises
     ------
@@ -439,7 +468,8 @@ def rank(
     job = _job(job)
     if seed is not None:
         job = replace(job, search=replace(job.search, seed=seed))
-    return RankingResult(rank_hammers(job, workers, tell))
+    ranking = rank_hammers(job, workers, tell)
+    return RankingResult(ranking, _opinions(ranking) if formulas else ())
 
 
 def check(
@@ -447,6 +477,8 @@ def check(
     hammer: str | None = None,
     workers: int | None = None,
     tell: Tell | None = None,
+    *,
+    formulas: bool = False,
 ) -> CheckResult:
     """Answer whether one hammer can drive the pile, and if not, what stops it.
 
@@ -459,6 +491,8 @@ def check(
         Threads; None takes as many as there are processors.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    formulas : bool
+        Add the second opinion of dynamic formulas, which decides nothing.
 
     Raises
     ------
@@ -467,7 +501,14 @@ def check(
     """
     job = _job(job)
     alone = replace(job, hammers=(select_hammer(job, hammer),))
-    return CheckResult(rank_hammers(alone, workers, tell))
+    ranking = rank_hammers(alone, workers, tell)
+    return CheckResult(ranking, _opinions(ranking) if formulas else ())
+
+
+def _opinions(ranking: Ranking) -> tuple[Opinion, ...]:
+    """Return what dynamic formulas make of every hammer, best first."""
+    everyone = (*ranking.options, *ranking.rejected)
+    return tuple(second_opinion(option, ranking.job) for option in everyone)
 
 
 def drive(
@@ -523,7 +564,7 @@ def drive(
     proof = None
     if criterion and ranking.options:
         proof = find_criterion(alone, ranking.options[0], workers, tell)
-    return DriveResult(ranking, case, proof)
+    return DriveResult(ranking, case=case, criterion=proof)
 
 
 def window(

@@ -249,8 +249,8 @@ def unit_factor(unit: str, quantity: str) -> float:
         return units[spelling]
     use = f"Use for example {kind.examples}."
     if spelling in _AMBIGUOUS:
-        meanings = _AMBIGUOUS[spelling]
-        raise UnitError(f"must have a unit without doubt: {spelling!r} may be {meanings}")
+        must = f"must have a unit without doubt, and {spelling!r} may be several"
+        raise UnitError(must, f"Write {_AMBIGUOUS[spelling]}.")
     if _dimension_of(spelling) is not None:
         article = "an" if quantity[0] in "aeiou" else "a"
         must = f"must be {article} {quantity}, and {spelling!r} is not a unit of {quantity}"

@@ -14,12 +14,15 @@ def check(
     job: Annotated[Path, Parameter(help="Job file.")],
     *,
     hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
+    formulas: Annotated[
+        bool, Parameter(negative="", help="Add dynamic formulas as a second opinion.")
+    ] = False,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
     """Answer whether a hammer can drive the pile, and if not, why."""
     from matchup import api
 
     with Progress(common) as tell:
-        result = api.check(job, hammer, workers=common.workers, tell=tell)
+        result = api.check(job, hammer, workers=common.workers, tell=tell, formulas=formulas)
     show_result(result, common)
     return 0 if result.can else THE_ANSWER_IS_NO

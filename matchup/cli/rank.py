@@ -18,12 +18,15 @@ def rank(
         int | None, Parameter(help="Replaces the job's seed.", validator=Number(gte=0))
     ] = None,
     plot: Plot = None,
+    formulas: Annotated[
+        bool, Parameter(negative="", help="Add dynamic formulas as a second opinion.")
+    ] = False,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
     """Rank every hammer of the job's catalogue."""
     from matchup import api
 
     with Progress(common) as tell:
-        result = api.rank(job, workers=common.workers, seed=seed, tell=tell)
+        result = api.rank(job, workers=common.workers, seed=seed, tell=tell, formulas=formulas)
     show_result(result, common, plot=plot)
     return 0 if result.options else THE_ANSWER_IS_NO

@@ -333,6 +333,7 @@ class LimitsKeys(Keys):
     tension: Share | None = None
     compression_stress: Stress | None = None
     tension_stress: Stress | None = None
+    bending: float = 0.0
 
 
 class SearchKeys(Keys):

@@ -168,7 +168,8 @@ def _neighbours(path: Path) -> str:
     names = sorted(p.name for p in path.parent.iterdir() if p.suffix == path.suffix)
     if not names:
         return ""
-    return did_you_mean(path.name, names) or f"There: {', '.join(names[:8])}."
+    near = did_you_mean(path.stem, [Path(name).stem for name in names])
+    return near.replace("`?", f"{path.suffix}`?") or f"There: {', '.join(names[:8])}."
 
 
 _SIGNATURES = {
@@ -247,7 +248,7 @@ def _text_rows(file: str, text: str, findings: Findings) -> tuple[str, _Rows | N
     before = 0
     try:
         for cells in reader:
-            rows.append((skipped + before + 1, tuple(cell.strip() for cell in cells)))
+            rows.append((skipped + before + 1, tuple(map(_tidy, cells))))
             before = reader.line_num
     except csv.Error as error:
         line = skipped + before + 1
@@ -278,7 +279,7 @@ def _workbook_rows(file: str, data: bytes, findings: Findings) -> _Rows | None:
         # What a workbook says of its size may be a million empty rows.
         sheet.reset_dimensions()
         return [
-            (line, tuple(_workbook_cell(value).strip() for value in values))
+            (line, tuple(_tidy(_workbook_cell(value)) for value in values))
             for line, values in enumerate(sheet.iter_rows(values_only=True), 1)
         ]
     except Exception:
@@ -286,6 +287,11 @@ def _workbook_rows(file: str, data: bytes, findings: Findings) -> _Rows | None:
         do = "Save it as .xlsx or as CSV again."
         findings.add(file, None, "", "must be an XLSX workbook", "another or a damaged file", do)
         return None
+
+
+def _tidy(cell: str) -> str:
+    """Return a cell on one line; people break the lines of headers."""
+    return " ".join(cell.split())
 
 
 def _workbook_cell(value: object) -> str:

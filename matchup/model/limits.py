@@ -22,10 +22,21 @@ printed in FHWA-NHI-16-009 Eq. 8-63, as quoted second-hand."""
 
 
 class Limit(NamedTuple):
-    """One limit and where it comes from."""
+    """One limit and where it comes from.
+
+    Parameters
+    ----------
+    stress : float
+        [Pa]
+    text : str
+        Rule, clause and formula, for the output.
+    values : tuple of (symbol, stress)
+        What stood in for the symbols of the formula. [Pa]
+    """
 
     stress: float
     text: str
+    values: tuple[tuple[str, float], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -34,18 +45,14 @@ class StressLimits:
 
     Parameters
     ----------
-    compression, tension : float
-        Largest driving stresses, both positive. [Pa]
-    compression_text, tension_text : str
-        Rule, clause and formula, for the output.
+    squeeze, pull : Limit
+        Largest driving stresses in compression and in tension, both positive.
     warnings : tuple of str
         What the engineer should know about these limits.
     """
 
-    compression: float
-    tension: float
-    compression_text: str
-    tension_text: str
+    squeeze: Limit
+    pull: Limit
     warnings: tuple[str, ...] = ()
 
     def __post_init__(self) -> None:
@@ -54,44 +61,67 @@ class StressLimits:
         rules.positive("tension", self.tension, "stress")
         rules.close()
 
+    @property
+    def compression(self) -> float:
+        """Largest driving stress in compression [Pa]."""
+        return self.squeeze.stress
+
+    @property
+    def tension(self) -> float:
+        """Largest driving stress in tension, positive [Pa]."""
+        return self.pull.stress
+
+
+def _fy(pile: Pile) -> tuple[tuple[str, float], ...]:
+    return (("fy", pile.strength),)
+
+
+def _concrete(pile: Pile, strength: str) -> tuple[tuple[str, float], ...]:
+    return ((strength, pile.strength), ("fpe", pile.prestress))
+
 
 def _aashto_steel(pile: Pile) -> Limit:
-    return Limit(0.9 * pile.strength, "AASHTO LRFD 10.7.8: 0.9 fy")
+    return Limit(0.9 * pile.strength, "AASHTO LRFD 10.7.8: 0.9 fy", _fy(pile))
 
 
 def _aashto_compression(pile: Pile) -> Limit:
-    return Limit(0.85 * pile.strength - pile.prestress, "AASHTO LRFD 10.7.8: 0.85 f'c - fpe")
+    stress = 0.85 * pile.strength - pile.prestress
+    return Limit(stress, "AASHTO LRFD 10.7.8: 0.85 f'c - fpe", _concrete(pile, "f'c"))
 
 
 def _aashto_tension(pile: Pile) -> Limit:
     allowance = TENSION_ALLOWANCE * math.sqrt(pile.strength / KSI) * KSI
     text = "AASHTO LRFD 10.7.8: 0.095 sqrt(f'c in ksi) + fpe"
-    return Limit(allowance + pile.prestress, text)
+    return Limit(allowance + pile.prestress, text, _concrete(pile, "f'c"))
 
 
 def _aashto_corrosion(pile: Pile) -> Limit:
-    return Limit(pile.prestress, "AASHTO LRFD 10.7.8, severe corrosion: fpe")
+    text = "AASHTO LRFD 10.7.8, severe corrosion: fpe"
+    return Limit(pile.prestress, text, (("fpe", pile.prestress),))
 
 
 def _aashto_timber(pile: Pile) -> Limit:
-    return Limit(1.15 * 2.6 * pile.strength, "AASHTO LRFD 10.7.8: 1.15 x 2.6 Fco")
+    text = "AASHTO LRFD 10.7.8: 1.15 x 2.6 Fco"
+    return Limit(1.15 * 2.6 * pile.strength, text, (("Fco", pile.strength),))
 
 
 def _en_concrete(pile: Pile) -> Limit:
-    return Limit(0.8 * pile.strength - pile.prestress, "EN 12699: 0.8 fck - fpe")
+    stress = 0.8 * pile.strength - pile.prestress
+    return Limit(stress, "EN 12699: 0.8 fck - fpe", _concrete(pile, "fck"))
 
 
 def _en_concrete_monitored(pile: Pile) -> Limit:
     text = "EN 12699, monitored: 1.1 x 0.8 fck - fpe"
-    return Limit(1.1 * 0.8 * pile.strength - pile.prestress, text)
+    return Limit(1.1 * 0.8 * pile.strength - pile.prestress, text, _concrete(pile, "fck"))
 
 
 def _en_steel(pile: Pile) -> Limit:
-    return Limit(0.9 * pile.strength, "EN 12699: 0.9 fy")
+    return Limit(0.9 * pile.strength, "EN 12699: 0.9 fy", _fy(pile))
 
 
 def _en_steel_monitored(pile: Pile) -> Limit:
-    return Limit(1.2 * 0.9 * pile.strength, "EN 12699, monitored: 1.2 x 0.9 fy")
+    text = "EN 12699, monitored: 1.2 x 0.9 fy"
+    return Limit(1.2 * 0.9 * pile.strength, text, _fy(pile))
 
 
 _Side = Callable[[Pile], Limit]
@@ -129,6 +159,9 @@ class GivenLimits(NamedTuple):
         Fractions of strength. [-]
     compression_stress, tension_stress : float or None
         Driving stresses. [Pa]
+    bending : float
+        Share of every limit kept back for the bending of eccentric blows, which the stress
+        wave of a straight bar does not show; in [0, 1). [-]
     """
 
     rule: str | None = None
@@ -136,6 +169,7 @@ class GivenLimits(NamedTuple):
     tension: float | None = None
     compression_stress: float | None = None
     tension_stress: float | None = None
+    bending: float = 0.0
 
     def side(self, side: str) -> tuple[float | None, float | None]:
         """Return fraction and stress of ``compression`` or ``tension``."""
@@ -163,6 +197,8 @@ class GivenLimits(NamedTuple):
         fits = not known or material in known
         must = f"must be a rule for piles of {material}; {self.rule} is for {' and '.join(known)}"
         rules.must(fits, "rule", must, self.rule)
+        do = f"Write {self.bending / 100:g}." if 1 < self.bending < 100 else ""
+        rules.must(0 <= self.bending < 1, "bending", "must be >= 0 and < 1", self.bending, do=do)
         for side in SIDES:
             fraction, stress = self.side(side)
             rules.fraction(side, fraction)
@@ -192,13 +228,14 @@ def stress_limits(
     tension: float | None = None,
     compression_stress: float | None = None,
     tension_stress: float | None = None,
+    bending: float = 0.0,
 ) -> StressLimits:
     """Return the limits of a pile from a named rule, fractions of strength or stresses.
 
     Parameters
     ----------
     pile : Pile
-    rule, compression, tension, compression_stress, tension_stress
+    rule, compression, tension, compression_stress, tension_stress, bending
         See `GivenLimits`.
 
     Raises
@@ -206,7 +243,7 @@ def stress_limits(
     ModelError
         Naming the side for which nothing, or more than one thing, is given.
     """
-    given = GivenLimits(rule, compression, tension, compression_stress, tension_stress)
+    given = GivenLimits(rule, compression, tension, compression_stress, tension_stress, bending)
     given.check(pile.material)
     squeeze, pull = _limit(pile, given, "compression"), _limit(pile, given, "tension")
     rules = Rules("limits")
@@ -214,9 +251,15 @@ def stress_limits(
         must = f"must leave a driving stress > 0 ({limit.text})"
         rules.must(limit.stress > 0, side, must, limit.stress, "stress")
     rules.close()
-    return StressLimits(
-        squeeze.stress, pull.stress, squeeze.text, pull.text, _warnings(pile, squeeze, pull)
-    )
+    warnings = _warnings(pile, squeeze, pull)
+    return StressLimits(_less_bending(squeeze, bending), _less_bending(pull, bending), warnings)
+
+
+def _less_bending(limit: Limit, share: float) -> Limit:
+    if not share:
+        return limit
+    text = f"{limit.text}, less {100 * share:g}% for bending"
+    return limit._replace(stress=(1 - share) * limit.stress, text=text)
 
 
 def _limit(pile: Pile, given: GivenLimits, side: str) -> Limit:
@@ -226,8 +269,11 @@ def _limit(pile: Pile, given: GivenLimits, side: str) -> Limit:
     if fraction is not None:
         sign, word = (-1, "less") if side == "compression" else (1, "plus")
         text = f"{fraction:g} of the strength"
-        text += f" {word} effective prestress" if pile.prestress else ""
-        return Limit(fraction * pile.strength + sign * pile.prestress, text)
+        values = [("strength", pile.strength)]
+        if pile.prestress:
+            text += f" {word} effective prestress"
+            values.append(("prestress", pile.prestress))
+        return Limit(fraction * pile.strength + sign * pile.prestress, text, tuple(values))
     ruled = given.ruled(side, pile.material)
     assert ruled is not None
     return ruled(pile)

@@ -23,8 +23,10 @@ def limits_document(job: Job) -> dict[str, object]:
     return {
         "compression_MPa": limits.compression / 1e6,
         "tension_MPa": limits.tension / 1e6,
-        "compression_rule": limits.compression_text,
-        "tension_rule": limits.tension_text,
+        "compression_rule": limits.squeeze.text,
+        "compression_values_MPa": {name: value / 1e6 for name, value in limits.squeeze.values},
+        "tension_rule": limits.pull.text,
+        "tension_values_MPa": {name: value / 1e6 for name, value in limits.pull.values},
         "warnings": list(limits.warnings),
     }
 

@@ -131,12 +131,12 @@ def map_table(found: StrokeMap, units: Units) -> Table:
     """Return every cell of the map as a row."""
     columns = (
         Column("cushion", "cushion"),
-        Column(units.key("stroke", "stroke"), "stroke", 3),
+        Column(units.key("stroke", "stroke"), f"stroke\n{units.unit('stroke')}", 3),
         Column("state", "state"),
         Column("closed_at", "closed at"),
-        Column(units.key("set", "set"), "set", 3),
-        Column("compression_percent", "compression", 1),
-        Column("tension_percent", "tension", 1),
+        Column(units.key("set", "set"), f"set\n{units.unit('set')}", 3),
+        Column("compression_percent", "compression\n% limit", 1),
+        Column("tension_percent", "tension\n% limit", 1),
     )
     rows = tuple(
         (

@@ -8,6 +8,7 @@ from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
 from matchup.model.job import Job
+from matchup.model.limits import Limit
 from matchup.model.stage import Stage
 from matchup.report.bills import per_pile_text
 from matchup.report.shown import Units, share_text
@@ -254,9 +255,8 @@ def rests_on(job: Job, units: Units) -> list[str]:
     """Return limits with their sources, the ground, and what was taken by default."""
     limits = job.limits
     lines = [
-        f"Limits: compression {units.text(limits.compression, 'stress')} "
-        f"({limits.compression_text}); tension {units.text(limits.tension, 'stress')} "
-        f"({limits.tension_text})."
+        f"Limits: compression {_limit(limits.squeeze, units)}; "
+        f"tension {_limit(limits.pull, units)}."
     ]
     keep = job.search.reserve
     if keep:
@@ -271,6 +271,13 @@ def rests_on(job: Job, units: Units) -> list[str]:
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
     return lines
+
+
+def _limit(limit: Limit, units: Units) -> str:
+    """Return a stress limit with its rule, clause, formula and the numbers in it."""
+    values = [f"{name} {units.text(value, 'stress')}" for name, value in limit.values]
+    told = f"{limit.text}; {', '.join(values)}" if values else limit.text
+    return f"{units.text(limit.stress, 'stress')} ({told})"
 
 
 def _notes(job: Job, units: Units) -> list[str]:

@@ -120,10 +120,12 @@ class Table:
         lines.insert(len(header), "-" * max(map(len, lines)))
         return "\n".join(lines)
 
-    def shown(self) -> tuple[list[str], list[list[str]], list[str], list[str]]:
-        """Return headings, rows, alignments and notes as people see them on a wide page.
+    def shown(
+        self, breaks: bool = False
+    ) -> tuple[list[str], list[list[str]], list[str], list[str]]:
+        """Return headings, rows, alignments and notes as people see them on a page.
 
-        Headings may hold line breaks.
+        Headings may hold line breaks; texts only where `breaks` is asked for.
         A text that repeats what stands above it is left out where its column says so.
         """
         rows = []
@@ -132,22 +134,26 @@ class Table:
                 c.once and above is not None and above[i] == row[i]
                 for i, c in enumerate(self.columns)
             ]
-            texts = [_cell(v, c).replace("\n", " ") for v, c in zip(row, self.columns, strict=True)]
+            texts = [_cell(v, c) for v, c in zip(row, self.columns, strict=True)]
+            texts = texts if breaks else [text.replace("\n", " ") for text in texts]
             rows.append(["" if same else t for same, t in zip(repeats, texts, strict=True)])
         headings = [column.header for column in self.columns]
         notes = self._notes(range(len(self.columns)))
         return headings, rows, self._alignment(self.columns), notes
 
     def to_html(self) -> str:
-        """Return the table for a notebook; every text is escaped."""
-        table = tabulate(
-            [[_cell(v, c) for v, c in zip(row, self.columns, strict=True)] for row in self.rows],
-            [" ".join(column.header.split()) for column in self.columns],
-            tablefmt="html",
-            disable_numparse=True,
-            colalign=self._alignment(self.columns) if self.rows else None,
-        )
-        notes = self._notes(range(len(self.columns)))
+        """Return the table for a web page or a notebook; every text is escaped."""
+        headings, rows, align, notes = self.shown(breaks=True)
+
+        def cells(tag: str, texts: Sequence[str]) -> str:
+            return "".join(
+                f'<{tag} style="text-align: {side};">{html.escape(text)}</{tag.split()[0]}>'
+                for text, side in zip(texts, align, strict=True)
+            )
+
+        head = cells('th scope="col"', headings)
+        body = "".join(f"<tr>{cells('td', row)}</tr>" for row in rows)
+        table = f"<table><thead><tr>{head}</tr></thead><tbody>{body}</tbody></table>"
         return "".join([table, *(f"<p>{html.escape(note)}</p>" for note in notes)])
 
     @staticmethod
@@ -162,6 +168,11 @@ class Table:
             for text, note in self.columns[i].notes.items()
             if any(row[i] == text for row in self.rows)
         ]
+
+    def beside(self, other: Table) -> Table:
+        """Return the columns of both tables, row by row."""
+        rows = tuple((*mine, *others) for mine, others in zip(self.rows, other.rows, strict=True))
+        return Table((*self.columns, *other.columns), rows)
 
     def to_csv(self) -> str:
         """Return the table as CSV with plain numbers; absent values are empty."""

@@ -296,7 +296,7 @@ def test_ctrl_c_ends_with_130_and_leaves_nothing(tmp_path):
 
 @pytest.mark.parametrize("columns", [80, 100])
 def test_a_terminal_gets_lines_that_fit(columns):
-    shown = on_terminal(["check", TUBE, *GOSHAWK], COLUMNS=str(columns))
+    shown = on_terminal(["check", TUBE, *GOSHAWK, "--quiet"], COLUMNS=str(columns))
     lines = shown.splitlines()
     assert lines[0].startswith("Yes: Goshawk drives")
     assert columns - 30 < max(map(len, lines)) <= columns

@@ -299,7 +299,8 @@ CUSHION_OF_HAMMER = {
 def rows_of(text: str, separator: str) -> list[dict[str, tuple[str, str]]]:
     """The rows of a table: the cell and the unit of its column, by the column's plain name."""
     rows = [
-        [cell.strip() for cell in row] for row in csv.reader(io.StringIO(text), delimiter=separator)
+        [" ".join(cell.split()) for cell in row]
+        for row in csv.reader(io.StringIO(text), delimiter=separator)
     ]
     rows = [row for row in rows if any(row)]
     heads = []

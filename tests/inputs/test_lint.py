@@ -1,16 +1,17 @@
-"""Checking files of all kinds at once, the schema of the job file, and the starter job."""
+"""Checking files of all kinds at once, the schema of the job file, and the starter job.
+
+That the starter job ranks is tested beside the command that writes it.
+"""
 
 from __future__ import annotations
 
 import math
 import re
 import tomllib
-from dataclasses import replace
 from pathlib import Path
 
 import pytest
 
-import matchup
 from matchup.errors import InputError
 from matchup.inputs import load_job
 from matchup.inputs.lint import check_files
@@ -219,11 +220,3 @@ def test_the_starter_names_every_key():
     for model in SCHEMA["$defs"].values():
         for key in model["properties"]:
             assert re.search(rf"\b{key}\b", text), key
-
-
-def test_the_starter_ranks(tmp_path):
-    job = load_job(put_starter(tmp_path))
-    two = tuple(hammer for hammer in job.hammers if hammer.name in ("Curlew", "Raven"))
-    ranking = matchup.rank(replace(job, hammers=two))
-    assert len(ranking.options) + len(ranking.rejected) == 2
-    assert ranking.options

@@ -104,6 +104,14 @@ def test_short_rows_are_filled_and_widths_are_kept(tmp_path):
     assert [row.width for row in found.rows] == [3, 4]
 
 
+def test_empty_columns_at_the_end_of_a_spreadsheet_are_no_surplus(tmp_path):
+    path = tmp_path / "t.csv"
+    path.write_text("a,b,,\n1,2,,\n3,4,,\n")
+    found, problems = read(path)
+    assert not problems
+    assert [row.width for row in found.rows] == [found.width, found.width]
+
+
 @pytest.mark.parametrize(
     ("data", "must", "found", "do"),
     [

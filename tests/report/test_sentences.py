@@ -6,7 +6,7 @@ from dataclasses import replace
 
 import pytest
 
-from matchup.model.limits import StressLimits
+from matchup.model.limits import Limit, StressLimits
 from matchup.report.page import page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.sentences import basis, reason, searched, softer_sentence, verdict_sentence
@@ -25,7 +25,7 @@ from tests import jobs
 from tests.report.plans import STAGE, option, plan, ranking, running, sheets
 
 METRIC, US = Units("metric"), Units("us")
-LIMITS = StressLimits(1e8, 1e8, "a rule", "a rule")
+LIMITS = StressLimits(Limit(1e8, "a rule"), Limit(1e8, "a rule"))
 JOB = jobs.small_job(limits=LIMITS)
 EARLY = replace(jobs.SOFT, name="soft clay")
 STAGED = replace(JOB, stages=(EARLY, STAGE))

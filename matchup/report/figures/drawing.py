@@ -7,7 +7,6 @@ by lightness, hatching or line style, and labels stand beside what they name.
 from __future__ import annotations
 
 import io
-import textwrap
 import warnings
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -21,7 +20,7 @@ from matchup.report.table import wrapped
 
 WIDTH = 6.7
 """Of every figure: the text width of a page. [inch]"""
-TITLE_LINE = 90
+TITLE_LINE = 93
 """Characters in a line of the title."""
 LONGEST_NAME = 28
 """Characters of a name from a file; a longer one is cut."""
@@ -58,6 +57,7 @@ STYLE: dict[str, Any] = {
     "legend.frameon": False,
     "legend.fontsize": 7.5,
     "figure.constrained_layout.use": True,
+    "figure.constrained_layout.w_pad": 0.07,
     "svg.fonttype": "path",
     # Names of parts within an SVG; any fixed text makes files of the same figure the same.
     "svg.hashsalt": "matchup",
@@ -104,9 +104,8 @@ def rendered(figure: Figure, kind: str) -> bytes:
 
 def short_name(name: str) -> str:
     """Return a name from a file in one line that leaves room for the figure."""
-    return textwrap.shorten(" ".join(name.split()), LONGEST_NAME, placeholder="...") or (
-        name[: LONGEST_NAME - 3] + "..."
-    )
+    line = " ".join(name.split())
+    return line if len(line) <= LONGEST_NAME else f"{line[: LONGEST_NAME - 3].rstrip()}..."
 
 
 def plain_grid(axes: Axes, which: str = "both") -> None:

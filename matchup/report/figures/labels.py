@@ -8,6 +8,8 @@ from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.transforms import Bbox
 
+from matchup.report.figures.drawing import GREY
+
 PLACES = (
     (5, 0, "left", "center"),
     (0, 5, "center", "bottom"),
@@ -17,10 +19,15 @@ PLACES = (
     (4, -4, "left", "top"),
     (-4, 4, "right", "bottom"),
     (-4, -4, "right", "top"),
-    (0, 13, "center", "bottom"),
-    (0, -13, "center", "top"),
 )
 """Where a label may stand: points to the right of and above its own, and its alignment."""
+FAR_PLACES = (
+    *((22, up, "left", "center") for up in (22, -22, 36, -36, 50, 64)),
+    *((-22, up, "right", "center") for up in (22, -22, 36, -36, 50, 64)),
+    *((48, up, "left", "center") for up in (30, -30, 44, 58, 72, 86)),
+)
+"""Where one that must not be left out may stand as well, joined to its point by a line."""
+LINE = {"arrowstyle": "-", "linewidth": 0.6, "color": GREY, "shrinkA": 0, "shrinkB": 3}
 MARK = 3.5
 """Half the size of a marker, which no label may cover. [point]"""
 
@@ -30,7 +37,7 @@ def label_points(
     axes: Axes,
     points: Sequence[tuple[float, float]],
     texts: Sequence[str],
-    weights: Sequence[str],
+    weighty: Sequence[bool],
 ) -> None:
     """Write a text beside every point where there is room, the first ones first.
 
@@ -40,8 +47,8 @@ def label_points(
         In the units of the axes.
     texts : sequence of str
         An empty one is left out.
-    weights : sequence of str
-        Font weights.
+    weighty : sequence of bool
+        Whose text is bold, and stands further away rather than nowhere.
     """
     figure.draw_without_rendering()
     inch = figure.dpi / 72
@@ -51,8 +58,10 @@ def label_points(
         for x, y in shown
     ]
     inside = axes.get_window_extent()
-    for point, text, weight in zip(points, texts, weights, strict=True):
-        for right, up, across, along in PLACES if text else ():
+    for point, text, is_bold in zip(points, texts, weighty, strict=True):
+        places = (*PLACES, *FAR_PLACES) if is_bold else PLACES
+        for place in places if text else ():
+            right, up, across, along = place
             label = axes.annotate(
                 text,
                 point,
@@ -61,7 +70,10 @@ def label_points(
                 ha=across,
                 va=along,
                 fontsize=7.5,
-                fontweight=weight,
+                fontweight="bold" if is_bold else "normal",
+                # Over lines and grid, under the points.
+                zorder=2.5,
+                bbox={"facecolor": "white", "edgecolor": "none", "pad": 0.3, "alpha": 0.8},
             )
             label.set_in_layout(False)
             box = label.get_window_extent().padded(2)
@@ -69,5 +81,12 @@ def label_points(
             fits = fits and inside.y0 <= box.y0 and box.y1 <= inside.y1
             if fits and not any(box.overlaps(other) for other in taken):
                 taken.append(box)
+                if place in FAR_PLACES:
+                    _join(axes, point, (right, up))
                 break
             label.remove()
+
+
+def _join(axes: Axes, point: tuple[float, float], offset: tuple[float, float]) -> None:
+    line = axes.annotate("", point, offset, textcoords="offset points", arrowprops=LINE)
+    line.set_in_layout(False)

@@ -80,7 +80,7 @@ def _times(options: Sequence[Option], units: Units) -> tuple[list[float | None],
         seconds = [None if drive is None else drive.taken.seconds for drive in drives]
         label = "time of driving, min (less is better)"
         return [None if s is None else s / 60 for s in seconds], label, "time"
-    label = f"penetration speed at the target, {units.speed_unit} (more is better)"
+    label = f"speed at the target, {units.speed_unit} (more is better)"
     return [units.speed(option.target.speed) for option in options], label, "speed"
 
 
@@ -94,7 +94,7 @@ def _finding(options: Sequence[Option], leading: Sequence[bool], what: str) -> s
     if len(ahead) <= MOST_IN_TITLE:
         named = f"{', '.join(ahead[:-1])} and {ahead[-1]}"
     beaten = len(options) - len(ahead)
-    rest = f"; {beaten} more (rings) {'is' if beaten == 1 else 'are'} beaten in all of them"
+    rest = f"; {beaten} more (rings) {'is' if beaten == 1 else 'are'} beaten"
     return f"Between {named} it is a choice of {what}{rest if beaten else ''}"
 
 
@@ -109,7 +109,13 @@ def _draw(
         if x is not None:
             face = WORKS if leads else "white"
             axes.plot(
-                [x], [y], "o", color=face, markeredgecolor=WORKS if leads else GREY, markersize=5.5
+                [x],
+                [y],
+                "o",
+                color=face,
+                markeredgecolor=WORKS if leads else GREY,
+                markersize=5.5,
+                zorder=3,
             )
     # Room at the edges for names.
     axes.margins(0.14, 0.12)
@@ -131,5 +137,5 @@ def _name(
         axes,
         [(values[i] or 0.0, use[i]) for i in order],
         [short_name(options[i].hammer.name) if n < MOST_NAMED else "" for n, i in enumerate(order)],
-        ["bold" if leading[i] else "normal" for i in order],
+        [leading[i] for i in order],
     )

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import json
 
-from matchup.report.document import ranking_document
+from matchup.analysis.single import Blow
+from matchup.report.document import blow_document, ranking_document
 from matchup.report.driven import stations_table
 from matchup.report.mapped import map_table
-from matchup.report.one_blow import figures_table
 from matchup.report.options import options_table, schedule_table
 from matchup.report.sentences import reason, rests_on, warned
 from matchup.report.shown import Units
@@ -76,8 +76,7 @@ def _sheets(dossier: Dossier, units: Units) -> list[Sheet]:
         Sheet("Window", map_table(dossier.map, units)),
     ]
     sheets += [
-        Sheet(f"Blow {number}", figures_table(blow, units))
-        for number, blow in enumerate(dossier.blows, 1)
+        Sheet(f"Blow {number}", _blow_table(blow)) for number, blow in enumerate(dossier.blows, 1)
     ]
     cushions = cushions_table(job, units)
     sheets += [
@@ -89,6 +88,13 @@ def _sheets(dossier: Dossier, units: Units) -> list[Sheet]:
         Sheet("Files", files_table(dossier)),
     ]
     return sheets
+
+
+def _blow_table(blow: Blow) -> Table:
+    """Return the figures of a blow as numbers, units in their names as in the JSON document."""
+    document = blow_document(blow)
+    rows = tuple((k, v) for k, v in document.items() if isinstance(v, (int, float, str)))
+    return Table((Column("figure", "figure"), Column("value", "value")), rows)
 
 
 def _rejected_table(dossier: Dossier, units: Units) -> Table:
