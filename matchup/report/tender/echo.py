@@ -66,8 +66,8 @@ def _pile(job: Job, units: Units) -> list[_Line]:
 def _limits(job: Job, units: Units) -> list[_Line]:
     limits = job.limits
     return [
-        _of("compression limit", limits.compression, "stress", units, limits.compression_text),
-        _of("tension limit", limits.tension, "stress", units, limits.tension_text),
+        _of("compression limit", limits.compression, "stress", units, limits.squeeze.text),
+        _of("tension limit", limits.tension, "stress", units, limits.pull.text),
     ]
 
 
