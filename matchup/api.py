@@ -254,6 +254,8 @@ class DriveResult(CheckResult):
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""
+        if self.option.misfits:
+            return super().figure(display)
         from matchup.report.figures.drive import drive_figure
 
         told = chosen_case(self.option, self.case)
@@ -508,7 +510,7 @@ def check(
 def _opinions(ranking: Ranking) -> tuple[Opinion, ...]:
     """Return what dynamic formulas make of every hammer, best first."""
     everyone = (*ranking.options, *ranking.rejected)
-    return tuple(second_opinion(option, ranking.job) for option in everyone)
+    return tuple(second_opinion(o, ranking.job) for o in everyone if not o.misfits)
 
 
 def drive(
@@ -692,6 +694,8 @@ def tender_report(
 
 def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
     """Return a blow at the target, and one where the stress is highest, where they can be had."""
+    if option.misfits:
+        return ()
     plans = [option.failing or option.target]
     tightest = option.tightest or max(option.plans, key=lambda plan: plan.stress_use)
     if tightest.stage != plans[0].stage:
@@ -796,5 +800,10 @@ def _best_plan(
         raise InputError(problems)
     found = rank_hammers(replace(job, hammers=(hammer,)))
     option = (*found.options, *found.rejected)[0]
+    if option.misfits:
+        must = "must fit the pile and the site, to have a best plan"
+        raise InputError(
+            [Problem(None, None, "hammer", must, hammer.name, "`matchup check` says why.")]
+        )
     planned = next((plan for plan in option.plans if plan.stage == stage), option.target)
     return Selected(hammer, stage, option.stack, wear), planned.stroke

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from matchup.errors import ModelError
+from matchup.inputs.findings import some
 from matchup.inputs.job_text import JobText
 from matchup.inputs.schema import CostKeys, JobKeys
 from matchup.model.cost import Amount, Cost, Fuel
@@ -83,7 +84,7 @@ def _fuel(text: JobText, given: CostKeys, hammers: Sequence[Hammer]) -> Fuel | N
         return None
     wrong = [h.name for h in hammers if h.fuel_use and h.fuel_use.unit not in fuel.units_of_use]
     if wrong:
-        must = f"must be for the unit that the catalogue's `fuel_use` of {_some(wrong)} is in"
+        must = f"must be for the unit that the catalogue's `fuel_use` of {some(wrong)} is in"
         text.wrong(("cost", first), must)
     return fuel
 
@@ -161,12 +162,7 @@ def _note_unknown(
         if names:
             without.setdefault(" and ".join(names), []).append(hammer.name)
     for columns, named in without.items():
-        text.notice(("cost",), f"can't be told of {_some(named)}: no {columns}")
+        text.notice(("cost",), f"can't be told of {some(named)}: no {columns}")
     for material in cushions.materials if cushions else ():
         if material.price is None:
             text.notice(("cost",), f"can't be told on {material.name}: no `price`")
-
-
-def _some(names: Sequence[str]) -> str:
-    more = f" and {len(names) - 8} more" if len(names) > 8 else ""
-    return ", ".join(names[:8]) + more

@@ -20,6 +20,7 @@ from pydantic import (
 from matchup.errors import did_you_mean
 from matchup.inputs.amounts import read_amount
 from matchup.model.limits import RULES
+from matchup.model.vibration import RELATIONS
 from matchup.units import QUANTITIES, UnitError, example_of, parse_quantity
 
 UNREAD = object()
@@ -66,6 +67,7 @@ def _key(
 
 
 Length = Annotated[float, *_key("length")]
+LengthOrZero = Annotated[float, *_key("length", may_be_zero=True)]
 Size = Annotated[float, *_key("size")]
 SignedLength = Annotated[float, *_key("length", may_be_negative=True)]
 Thickness = Annotated[float, *_key("thickness")]
@@ -79,6 +81,9 @@ Density = Annotated[float, *_key("density")]
 Damping = Annotated[float, *_key("damping", may_be_zero=True)]
 UnitWeight = Annotated[float, *_key("unit weight")]
 Time = Annotated[float, *_key("time")]
+Rate = Annotated[float, *_key("rate")]
+PeakVelocity = Annotated[float, *_key("vibration")]
+Inertia = Annotated[float, *_key("inertia")]
 Duration = Annotated[float, *_key("time", may_be_zero=True)]
 Angle = Annotated[float, *_key("angle")]
 
@@ -334,6 +339,7 @@ class LimitsKeys(Keys):
     compression_stress: Stress | None = None
     tension_stress: Stress | None = None
     bending: float = 0.0
+    wall_buckling: Share | None = None
 
 
 class SearchKeys(Keys):
@@ -371,6 +377,30 @@ class CostKeys(Keys):
     fuel_co2: FuelCarbon | None = None
 
 
+class VibrationKeys(Keys):
+    """What the ground may do at a place that is to be spared."""
+
+    relation: Annotated[str, WithJsonSchema({"enum": [*RELATIONS]})]
+    distance: Length
+    limit: PeakVelocity
+    soil: str | None = None
+    factor: float | None = None
+
+
+class SiteKeys(Keys):
+    """What rig and surroundings allow."""
+
+    capacity: Mass | None = None
+    capacity_with_pile: Mass | None = None
+    headroom: Length | None = None
+    above_ground: Length | None = None
+    blow_rate_max: Rate | None = None
+    buckling_safety: float | None = None
+    fixity: LengthOrZero | None = None
+    inertia: Inertia | None = None
+    vibration: VibrationKeys | None = None
+
+
 class JobKeys(Keys):
     """A job file."""
 
@@ -388,6 +418,7 @@ class JobKeys(Keys):
     search: SearchKeys = SearchKeys()
     analysis: AnalysisKeys = AnalysisKeys()
     cost: CostKeys | None = None
+    site: SiteKeys | None = None
 
 
 def job_schema() -> dict[str, Any]:

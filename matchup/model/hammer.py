@@ -50,7 +50,11 @@ class Hammer:
     rides_on_pile : bool
         Whether the hammer's frame stands on the helmet.
     available : bool
-        A hammer that is not available is left out of a ranking, with a notice.
+        A hammer that is not available fits no job.
+    hammer_length : float or None
+        With its helmet, from the pile's head to the top. [m]
+    head_min, head_max : float or None
+        Least and largest width of a pile that the helmet takes. [m]
     day_rate, mobilisation : Amount or None
         Money for a day with the hammer, and for bringing it to the site and back.
     fuel_use : Amount or None
@@ -77,6 +81,9 @@ class Hammer:
     hammer_mass: float | None = None
     rides_on_pile: bool = False
     available: bool = True
+    hammer_length: float | None = None
+    head_min: float | None = None
+    head_max: float | None = None
     day_rate: Amount | None = None
     mobilisation: Amount | None = None
     fuel_use: Amount | None = None
@@ -104,6 +111,12 @@ class Hammer:
         rules.positive("rated_energy", self.rated_energy, "energy")
         rules.positive("helmet_mass", self.helmet_mass, "mass")
         rules.positive("hammer_mass", self.hammer_mass, "mass")
+        rules.positive("hammer_length", self.hammer_length, "length")
+        rules.positive("head_min", self.head_min, "size")
+        rules.positive("head_max", self.head_max, "size")
+        if self.head_min is not None and self.head_max is not None:
+            must = "must be >= `head_min`"
+            rules.must(not self.head_max < self.head_min, "head_max", must, self.head_max, "size")
         for name in ("day_rate", "mobilisation", "fuel_use"):
             amount = getattr(self, name)
             rules.not_negative(name, None if amount is None else amount.value)

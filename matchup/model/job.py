@@ -10,6 +10,7 @@ from matchup.model.hammer import Hammer
 from matchup.model.limits import StressLimits
 from matchup.model.pile import Pile
 from matchup.model.rules import Rules
+from matchup.model.site import Site
 from matchup.model.stage import Stage
 
 OBJECTIVES = ("energy", "time", "cost")
@@ -136,6 +137,8 @@ class Job:
         None for stages given by hand.
     cost : Cost or None
         What the contract pays for.
+    site : Site or None
+        What rig and surroundings allow.
     display : str
         ``metric`` or ``us``: units of tables.
     file : str or None
@@ -157,6 +160,7 @@ class Job:
     analysis: Analysis = Analysis()
     drive: Drive | None = None
     cost: Cost | None = None
+    site: Site | None = None
     display: str = "metric"
     file: str | None = None
     notices: tuple[str, ...] = ()
@@ -176,6 +180,7 @@ class Job:
             known = ", ".join(sorted(cases))
             rules.must(case in cases, "ground.required", f"must be cases: {known}", case)
         self._check_objective(rules)
+        self._check_site(rules)
         for stage in self.stages:
             rules.must(
                 not stage.penetration > self.pile.length,
@@ -214,6 +219,37 @@ class Job:
             "must be energy or time where no hammer's row gives `day_rate` and `mobilisation`",
             objective,
         )
+
+    def _check_site(self, rules: Rules) -> None:
+        """Hold the site against pile and stages."""
+        site = self.site
+        if site is None:
+            return
+        rules.must(
+            site.above_ground is None or not site.above_ground > self.pile.length,
+            "site.above_ground",
+            "must be at most the pile's length",
+            site.above_ground,
+            "length",
+        )
+        if site.standing is not None:
+            rules.must(
+                bool(site.standing.inertia or self.pile.section.inertia),
+                "site.inertia",
+                "must be given: the shape of the pile does not tell it",
+                "",
+            )
+        if site.vibration is not None:
+            low, high = site.vibration.published.depth
+            outside = [s.penetration for s in self.stages if not low <= s.penetration <= high]
+            rules.must(
+                not outside,
+                "site.vibration.relation",
+                f"must be one for toes as deep as here; {site.vibration.relation} is for {low:g} "
+                f"to {high:g} m",
+                outside[0] if outside else 0.0,
+                "length",
+            )
 
     @property
     def courses(self) -> tuple[Course, ...]:

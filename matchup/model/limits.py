@@ -145,6 +145,8 @@ EN 12699 as tabulated in Tomlinson and Woodward, *Pile Design and Construction P
 (prestress taken off: from memory). All as quoted second-hand."""
 
 
+STOCKY_WALL = 60.0
+"""D/t up to which the wall of a tube yields before it buckles; API RP 2A-WSD, from memory. [-]"""
 SIDES = ("compression", "tension")
 
 
@@ -162,6 +164,9 @@ class GivenLimits(NamedTuple):
     bending : float
         Share of every limit kept back for the bending of eccentric blows, which the stress
         wave of a straight bar does not show; in [0, 1). [-]
+    wall_buckling : float or None
+        Share of the stress at which a tube's wall buckles that compression may take; None does
+        not look at it. [-]
     """
 
     rule: str | None = None
@@ -170,6 +175,7 @@ class GivenLimits(NamedTuple):
     compression_stress: float | None = None
     tension_stress: float | None = None
     bending: float = 0.0
+    wall_buckling: float | None = None
 
     def side(self, side: str) -> tuple[float | None, float | None]:
         """Return fraction and stress of ``compression`` or ``tension``."""
@@ -199,6 +205,7 @@ class GivenLimits(NamedTuple):
         rules.must(fits, "rule", must, self.rule)
         do = f"Write {self.bending / 100:g}." if 1 < self.bending < 100 else ""
         rules.must(0 <= self.bending < 1, "bending", "must be >= 0 and < 1", self.bending, do=do)
+        rules.fraction("wall_buckling", self.wall_buckling)
         for side in SIDES:
             fraction, stress = self.side(side)
             rules.fraction(side, fraction)
@@ -229,13 +236,14 @@ def stress_limits(
     compression_stress: float | None = None,
     tension_stress: float | None = None,
     bending: float = 0.0,
+    wall_buckling: float | None = None,
 ) -> StressLimits:
     """Return the limits of a pile from a named rule, fractions of strength or stresses.
 
     Parameters
     ----------
     pile : Pile
-    rule, compression, tension, compression_stress, tension_stress, bending
+    rule, compression, tension, compression_stress, tension_stress, bending, wall_buckling
         See `GivenLimits`.
 
     Raises
@@ -243,16 +251,56 @@ def stress_limits(
     ModelError
         Naming the side for which nothing, or more than one thing, is given.
     """
-    given = GivenLimits(rule, compression, tension, compression_stress, tension_stress, bending)
+    given = GivenLimits(
+        rule, compression, tension, compression_stress, tension_stress, bending, wall_buckling
+    )
     given.check(pile.material)
     squeeze, pull = _limit(pile, given, "compression"), _limit(pile, given, "tension")
     rules = Rules("limits")
+    if wall_buckling is not None:
+        must = "must be left out for a pile that is not a steel tube"
+        is_tube = pile.material == "steel" and pile.section.wall is not None
+        rules.must(is_tube, "wall_buckling", must, wall_buckling)
+    if wall_buckling is not None and not rules.faults:
+        squeeze = min(squeeze, wall_limit(pile, wall_buckling))
     for side, limit in zip(SIDES, (squeeze, pull), strict=True):
         must = f"must leave a driving stress > 0 ({limit.text})"
         rules.must(limit.stress > 0, side, must, limit.stress, "stress")
     rules.close()
     warnings = _warnings(pile, squeeze, pull)
     return StressLimits(_less_bending(squeeze, bending), _less_bending(pull, bending), warnings)
+
+
+def wall_buckling_stress(pile: Pile) -> float:
+    """Return the stress [Pa] at which the wall of a steel tube buckles under axial compression.
+
+    Notes
+    -----
+    Yield up to D/t 60; beyond, ``fy (1.64 - 0.23 (D/t)**0.25)``, at most ``0.6 E t/D``, which is
+    half of what a perfect thin cylinder bears.
+
+    References
+    ----------
+    .. [1] API RP 2A-WSD 3.2.2b, from memory.
+    """
+    assert pile.section.wall is not None
+    slenderness = pile.section.width / pile.section.wall
+    elastic = 0.6 * pile.modulus / slenderness
+    if slenderness <= STOCKY_WALL:
+        return min(pile.strength, elastic)
+    return float(min(pile.strength * (1.64 - 0.23 * slenderness**0.25), elastic))
+
+
+def wall_limit(pile: Pile, share: float) -> Limit:
+    """Return the limit that the wall of a steel tube sets to compression."""
+    assert pile.section.wall is not None
+    stress = wall_buckling_stress(pile)
+    slenderness = pile.section.width / pile.section.wall
+    text = (
+        f"{share:g} of the stress at which the wall buckles, D/t {slenderness:.0f}; API RP 2A-WSD "
+        "3.2.2b, from memory"
+    )
+    return Limit(share * stress, text, (("wall buckling", stress),))
 
 
 def _less_bending(limit: Limit, share: float) -> Limit:
@@ -289,7 +337,22 @@ def _warnings(pile: Pile, compression: Limit, tension: Limit) -> tuple[str, ...]
                 f"allowance ({allowance.text})"
             )
     if pile.material == "steel":
+        warnings += _warnings_of_wall(pile, compression)
         for name, limit in (("compression", compression), ("tension", tension)):
             if limit.stress > pile.strength:
                 warnings.append(f"the {name} limit is above the yield stress ({limit.text})")
     return tuple(warnings)
+
+
+def _warnings_of_wall(pile: Pile, compression: Limit) -> list[str]:
+    """Return that the wall of a thin tube may buckle before compression reaches its limit."""
+    wall = pile.section.wall
+    if wall is None or pile.section.width <= STOCKY_WALL * wall:
+        return []
+    if wall_buckling_stress(pile) >= compression.stress:
+        return []
+    limit = wall_limit(pile, 1.0)
+    return [
+        f"the wall buckles at {limit.stress / 1e6:.0f} MPa, below the compression limit ("
+        f"{limit.text.partition(', ')[2]}); `wall_buckling` keeps below that"
+    ]

@@ -88,6 +88,10 @@ class Section:
         True for a full-displacement pile (solid or closed), False for a coring one.
     core : Core or None
         Soil taken in by an open tube, or by an H whose perimeter and toe area are not given.
+    inertia : float or None
+        Least second moment of area; None where the shape does not tell it. [m4]
+    wall : float or None
+        Of a tube. [m]
     """
 
     text: str
@@ -97,6 +101,8 @@ class Section:
     width: float
     displaces: bool = True
     core: Core | None = None
+    inertia: float | None = None
+    wall: float | None = None
 
     def __post_init__(self) -> None:
         rules = Rules("pile section")
@@ -107,13 +113,14 @@ class Section:
     @classmethod
     def square(cls, width: float) -> Section:
         """Return a solid square section."""
-        return cls("square", width**2, 4 * width, width**2, width)
+        return cls("square", width**2, 4 * width, width**2, width, inertia=width**4 / 12)
 
     @classmethod
     def round(cls, diameter: float) -> Section:
         """Return a solid round section."""
         area = math.pi * diameter**2 / 4
-        return cls("round", area, math.pi * diameter, area, diameter)
+        inertia = math.pi * diameter**4 / 64
+        return cls("round", area, math.pi * diameter, area, diameter, inertia=inertia)
 
     @classmethod
     def pipe(cls, diameter: float, wall: float, toe: str) -> Section:
@@ -138,6 +145,8 @@ class Section:
             diameter,
             closed,
             None if closed else core,
+            math.pi * (diameter**4 - inside**4) / 64,
+            wall,
         )
 
     @classmethod

@@ -9,7 +9,7 @@ from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
 from matchup.model.job import Job
 from matchup.report.bills import bill_document
-from matchup.report.sentences import reason
+from matchup.report.sentences import misfit_text, reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, Ranking, StagePlan
 from matchup.search.tradeoff import is_beaten
@@ -79,11 +79,16 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "verdict": option.verdict,
         "governs": option.governs,
         "reason": reason(option, job, units),
+        "misfits": [
+            {"what": misfit.what, "reason": misfit_text(misfit, units)} for misfit in option.misfits
+        ],
         "cushion": cushion_document(option.stack.pile),
         "hammer_cushion": hammer_cushion(option),
         "stroke_m": number(plan.stroke),
         "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
-        "schedule": [_stage_document(stage_plan) for stage_plan in option.plans],
+        "schedule": (
+            [] if option.misfits else [_stage_document(stage_plan) for stage_plan in option.plans]
+        ),
         "set_mm": number(plan.set, 1e3),
         "blows_per_25cm": blows_per_25cm(plan.set),
         "blow_energy_kJ": number(plan.blow_energy, 1e-3),

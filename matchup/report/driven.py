@@ -36,9 +36,12 @@ def drive_page(ranking: Ranking, units: Units, case: str | None = None) -> Page:
     """
     job = ranking.job
     option = (*ranking.options, *ranking.rejected)[0]
+    page: list[Block] = [Headline(answer(option, job, units))]
+    if option.misfits:
+        return [*page, foot(ranking, units)]
     chosen = chosen_case(option, case)
-    page: list[Block] = [Headline(answer(option, job, units)), cases_table(option, units)]
     page += [
+        cases_table(option, units),
         Headline(f"Case {chosen.case}, station by station:"),
         stations_table((chosen,), units),
     ]

@@ -73,8 +73,9 @@ def check_page(ranking: Ranking, units: Units) -> Page:
     can = "Yes" if option.drives else "No"
     page: list[Block] = [
         Headline(f"{can}: {option.hammer.name} {option.verdict}; {reason(option, job, units)}."),
-        margins_table(option, ranking, units),
     ]
+    if not option.misfits:
+        page.append(margins_table(option, ranking, units))
     if len(job.stages) > 1 and option.drives and job.drive is None:
         page.append(schedule_table((option,), units))
     page += bills_blocks((option,), job, units)

@@ -7,19 +7,23 @@ import re
 from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
+from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.limits import Limit
 from matchup.model.stage import Stage
 from matchup.report.bills import per_pile_text
 from matchup.report.shown import Units, share_text
+from matchup.report.siting import site_lines
 from matchup.search.cure import BEYOND, HEAVIER
 from matchup.search.option import (
+    DOES_NOT_FIT,
     NOT_ANALYSED,
     NOT_REACHED,
     PILE_RUNS,
     REDUCED,
     REFUSES,
     Cure,
+    Misfit,
     Option,
     Ranking,
     StagePlan,
@@ -65,6 +69,8 @@ def _nobody(rejected: Sequence[Option]) -> str:
     """Return that no hammer can, and why the nearest can't."""
     nearest = rejected[0]
     name, count = nearest.hammer.name, len(rejected)
+    if nearest.verdict == DOES_NOT_FIT:
+        return f"{name} {DOES_NOT_FIT}." if count == 1 else f"none of the {count} hammers fits."
     if nearest.verdict == NOT_ANALYSED:
         return f"{name} {NOT_ANALYSED}." if count == 1 else f"none of {count} could be analysed."
     why = nearest.verdict if nearest.verdict == PILE_RUNS else f"it {nearest.verdict}"
@@ -96,6 +102,8 @@ def needed_set(stage: Stage, job: Job) -> float:
 
 def reason(option: Option, job: Job, units: Units) -> str:
     """Return in one sentence what an option does, or why the hammer fails and what would help."""
+    if option.misfits:
+        return "; ".join(misfit_text(misfit, units) for misfit in option.misfits)
     plan = option.failing or option.target
     at = f"at stage {plan.stage.name!r}, " if len(job.stages) > 1 else ""
     if option.verdict == PILE_RUNS:
@@ -118,11 +126,22 @@ def reason(option: Option, job: Job, units: Units) -> str:
     return f"{at}{does}; {uses}{helps}"
 
 
+def misfit_text(misfit: Misfit, units: Units) -> str:
+    """Return what is in the way of a hammer, with its figures."""
+    shown = [
+        share_text(value) if quantity == "share" else units.text(value, quantity)
+        for value, quantity in misfit.values
+    ]
+    return misfit.words.format(*shown)
+
+
 def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> str:
     """Return the stroke that explains a failure, and the set that it gives."""
     hammer = option.hammer
     stroke = f"{units.text(plan.stroke, 'stroke')}{on_stack(option.stack, units)}"
     gives = f"gives {set_text(plan.set, plan.stage, job, units)}"
+    if option.verdict in SHORT_OF_SET and _is_held(hammer, job):
+        return f"the largest stroke allowed here, {stroke}, {gives}"
     if hammer.stroke_min == hammer.stroke_max:
         return f"its only stroke of {stroke} {gives}"
     if option.verdict in SHORT_OF_SET:
@@ -133,6 +152,11 @@ def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> 
         return f"the lowest step that reaches the set, {stroke}, {gives}"
     needed = units.text(needed_set(plan.stage, job), "set")
     return f"a set of {needed} needs a stroke of {stroke}"
+
+
+def _is_held(hammer: Hammer, job: Job) -> bool:
+    """Return whether the site allows less than the hammer's own longest stroke."""
+    return any(h.name == hammer.name and h.stroke_max > hammer.stroke_max for h in job.hammers)
 
 
 def set_text(set_: float, stage: Stage, job: Job, units: Units) -> str:
@@ -265,6 +289,7 @@ def rests_on(job: Job, units: Units) -> list[str]:
             f"{1 + keep:.4g} times the one needed, stresses at most {100 * (1 - keep):.3g}% of the "
             "limits."
         )
+    lines += site_lines(job, units)
     if job.drive is not None:
         told = dict.fromkeys(note for stage in job.stages for note in stage.notes)
         lines.append(f"Ground: {'; '.join(map(units.retold, told))}.")
@@ -301,7 +326,10 @@ def searched(ranking: Ranking, timed: bool = True) -> str:
         Whether to tell the time it took, which is never the same twice.
     """
     groups: dict[str, list[list[int]]] = {}
-    for option in (*ranking.options, *ranking.rejected):
+    everyone = [o for o in (*ranking.options, *ranking.rejected) if not o.misfits]
+    if not everyone:
+        return "Searched: nothing; no blow was computed for hammers that do not fit."
+    for option in everyone:
         numbers = [int(number) for number in re.findall(r"\d+", option.certificate)]
         groups.setdefault(re.sub(r"\d+", "#", option.certificate), []).append(numbers)
     told = []

@@ -20,9 +20,11 @@ PILE_RUNS = "pile runs"
 GOES_DOWN = "goes down under its weight"
 """Of a station on the way of a drive; not a failure."""
 NOT_ANALYSED = "could not be analysed"
+DOES_NOT_FIT = "does not fit"
 
 VERDICTS = (
     NOT_ANALYSED,
+    DOES_NOT_FIT,
     PILE_RUNS,
     OVER_COMPRESSION,
     OVER_TENSION,
@@ -187,6 +189,26 @@ class CaseDrive:
 
 
 @dataclass(frozen=True, slots=True)
+class Misfit:
+    """What keeps a hammer from being used on this pile and site.
+
+    Parameters
+    ----------
+    what : str
+        ``availability``, ``helmet``, ``capacity``, ``headroom``, ``blow rate``, ``stability`` or
+        ``vibration``.
+    words : str
+        A sentence with a place, ``{}``, for each value.
+    values : tuple of (value, quantity)
+        In SI; the quantity is one of the units table, or ``share``.
+    """
+
+    what: str
+    words: str
+    values: tuple[tuple[float, str], ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
 class Cure:
     """What would let a failing hammer drive the pile, each found by the solver.
 
@@ -228,7 +250,7 @@ class Option:
     verdict : str
         One of `VERDICTS`.
     governs : str
-        ``set``, ``compression``, ``tension``, ``stroke range``, ``refusal`` or ``weight``.
+        ``set``, ``compression``, ``tension``, ``stroke range``, ``refusal``, ``weight`` or ``fit``.
     stack : Stack
         Cushions.
     plans : tuple of StagePlan
@@ -255,6 +277,8 @@ class Option:
         What would let a failing hammer drive the pile.
     cases : tuple of CaseDrive
         The whole drive by ground case; empty for stages given by hand.
+    misfits : tuple of Misfit
+        What is in the way of a hammer that does not fit, for which no blow was computed.
     """
 
     hammer: Hammer
@@ -272,6 +296,7 @@ class Option:
     reach_is_open: bool = False
     cure: Cure | None = None
     cases: tuple[CaseDrive, ...] = ()
+    misfits: tuple[Misfit, ...] = ()
 
     @property
     def tightest(self) -> StagePlan | None:

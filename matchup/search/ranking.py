@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import time
+from dataclasses import replace
 
 from matchup.analysis.rig import Rig, Tell
 from matchup.errors import InputError, Problem
 from matchup.model.job import Job
 from matchup.search.cure import find_cures
+from matchup.search.fit import sort_hammers
 from matchup.search.option import Option, Ranking
 from matchup.search.plan import Planner
 from matchup.search.reach import find_reach
@@ -31,19 +33,29 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
     """
     _check_objective(job)
     started = time.perf_counter()
+    fitting = sort_hammers(job)
+    options: list[Option] = []
+    spent = 0
+    if fitting.hammers:
+        options, spent = _plan(replace(job, hammers=fitting.hammers), workers, tell)
+    driving = [option for option in options if option.drives]
+    failing = [option for option in options if not option.drives]
+    return Ranking(
+        job=replace(job, notices=(*job.notices, *fitting.notes)),
+        options=tuple(sorted(driving, key=lambda option: option.cost)),
+        rejected=(*sorted(failing, key=_shortfall), *fitting.unfit),
+        analyses=spent,
+        runtime=time.perf_counter() - started,
+    )
+
+
+def _plan(job: Job, workers: int | None, tell: Tell | None) -> tuple[list[Option], int]:
+    """Return the option of every hammer, and the blows that were computed for them."""
     planner = Planner(Rig(job, workers, tell))
     options = planner.options()
     options, blows_for_reach = find_reach(job, options, workers, tell)
     options, blows_for_cures = find_cures(planner, options)
-    driving = [option for option in options if option.drives]
-    failing = [option for option in options if not option.drives]
-    return Ranking(
-        job=job,
-        options=tuple(sorted(driving, key=lambda option: option.cost)),
-        rejected=tuple(sorted(failing, key=_shortfall)),
-        analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
-        runtime=time.perf_counter() - started,
-    )
+    return options, planner.rig.spent + blows_for_reach + blows_for_cures
 
 
 def _check_objective(job: Job) -> None:

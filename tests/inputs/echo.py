@@ -273,6 +273,9 @@ HAMMER_NUMBERS = {
     "rated_energy": "energy",
     "helmet_mass": "mass",
     "hammer_mass": "mass",
+    "hammer_length": "length",
+    "head_min": "length",
+    "head_max": "length",
 }
 CUSHION_NUMBERS = {
     "modulus": "stress",

@@ -179,6 +179,9 @@ def test_every_column_of_a_hammer_is_seen(hammers):
         "hammer_mass": ("hammer_mass [t]", "12"),
         "rides_on_pile": ("rides_on_pile", "Yes"),
         "available": ("available", "true"),
+        "hammer_length": ("hammer_length [m]", "5.5"),
+        "head_min": ("head_min [mm]", "200"),
+        "head_max": ("head_max [in]", "24"),
         "day_rate": ("day_rate [EUR]", "900"),
         "mobilisation": ("mobilisation [EUR]", "4000"),
         "fuel_use": ("fuel_use [l / h]", "30"),
@@ -194,6 +197,8 @@ def test_every_column_of_a_hammer_is_seen(hammers):
     more = (hammer.stroke_step, hammer.blow_rate_max, hammer.lift_speed, hammer.rated_energy)
     assert more == (0.1, 0.5, 0.7, 88e3)
     assert (hammer.helmet_mass, hammer.hammer_mass, hammer.rides_on_pile) == (950, 12000, True)
+    assert (hammer.hammer_length, hammer.head_min) == (5.5, 0.2)
+    assert hammer.head_max == pytest.approx(0.6096)
     money = (hammer.day_rate, hammer.mobilisation)
     assert money == (Amount(900, "EUR"), Amount(4000, "EUR"))
     assert hammer.fuel_use == Amount(30, "l/h")
@@ -544,7 +549,9 @@ def test_yes_and_no(hammers):
     rows = [[name, *GOOD[1:], said] for name, said in zip("ABCD", "yN1?", strict=True)]
     _, [problem], notices = hammers(write(",", head, *rows))
     assert told(problem)[1:5] == (5, "`available` of D", "must be yes or no", "?")
-    assert notices == ["h.csv, line 3: B left out; it is not available"]
+    assert not notices
+    found, _, _ = hammers(write(",", head, *rows[:3]))
+    assert [hammer.available for hammer in found] == [True, False, True]
 
 
 def test_kinds_that_are_not_modelled_are_left_out_with_a_notice(hammers):
@@ -559,13 +566,12 @@ def test_kinds_that_are_not_modelled_are_left_out_with_a_notice(hammers):
 
 
 def test_a_catalogue_of_nothing_but_such_kinds_says_which_were_left_out_and_why(hammers):
-    head = [*HEAD, "available"]
-    rows = [["D", "diesel", *[""] * 6], [*GOOD, "no"], ["V", "double acting", *[""] * 6]]
-    found, [problem], _ = hammers(write(",", head, *rows))
+    rows = [["D", "diesel", *[""] * 5], ["V", "double acting", *[""] * 5]]
+    found, [problem], _ = hammers(write(",", HEAD, *rows))
     assert not found
     assert problem.must == "must hold a hammer that can be used"
     assert problem.found == (
-        "none: D (diesel hammers can't be computed yet); A (it is not available); "
+        "none: D (diesel hammers can't be computed yet); "
         "V (double-acting hammers can't be computed yet)"
     )
 
