@@ -13,6 +13,7 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from matchup import __version__
 from matchup.analysis.rig import Tell
 from matchup.analysis.single import Blow, compute_blow
 from matchup.errors import AnalysisError, InputError, Problem
@@ -109,7 +110,8 @@ class _Shown:
         from matchup.report.figures.drawing import rendered
         from matchup.report.picture import picture_html
 
-        drawn = picture_html(rendered(self.figure(), "svg"), "")
+        figure = self.figure()
+        drawn = picture_html(rendered(figure, "svg"), figure.get_suptitle())
         return f"{page_html(self.page())}{drawn}"
 
     def __str__(self) -> str:
@@ -688,8 +690,10 @@ def tender_report(
     proof = None
     if job.drive is not None and option.drives:
         proof = find_criterion(alone, option, workers, tell)
-    found = map_strokes(job, option.hammer, option.target.stage, workers, tell)
-    return ReportResult(Dossier(ranking, option, found, _telling_blows(job, option), proof))
+    plan = option.failing or option.target
+    found = map_strokes(job, option.hammer, plan.stage, workers, tell)
+    blows = _telling_blows(job, option)
+    return ReportResult(Dossier(ranking, option, found, blows, __version__, proof))
 
 
 def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:

@@ -108,6 +108,8 @@ class Section:
         rules = Rules("pile section")
         for name in ("area", "perimeter", "toe_area", "width"):
             rules.positive(name, getattr(self, name), "area" if "area" in name else "length")
+        rules.positive("inertia", self.inertia, "inertia")
+        rules.positive("wall", self.wall, "thickness")
         rules.close()
 
     @classmethod

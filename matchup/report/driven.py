@@ -152,8 +152,8 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
         measured("transferred", "to pile", "energy", units, _passed, keep=3),
         (Column("blows_per_minute", "blows\n/min", 0, keep=4), lambda row: _rate(row[1])),
         (Column("wear", "cushion", keep=1), lambda row: _cushion(row[1])),
-        (Column("blows", "blows\nso far", 0), lambda row: _taken(row[1]).blows),
-        (Column("minutes", "min", 0), lambda row: minutes(_taken(row[1]).seconds)),
+        (Column("blows", "blows\nso far", 0), lambda row: _blows_taken(row[1])),
+        (Column("minutes", "min", 0), lambda row: _minutes_taken(row[1])),
     ]
     if not any(plan.stage.after_pause for _, plan in rows):
         fields = [field for field in fields if field[0].key != "rest_h"]
@@ -208,9 +208,13 @@ def _cushion(plan: StagePlan) -> str | None:
     return plan.wear or None
 
 
-def _taken(plan: StagePlan) -> Any:
-    assert plan.taken is not None
-    return plan.taken
+def _blows_taken(plan: StagePlan) -> float | None:
+    """Return the blows so far; None at a station that was looked at and not driven to."""
+    return None if plan.taken is None else plan.taken.blows
+
+
+def _minutes_taken(plan: StagePlan) -> float | None:
+    return None if plan.taken is None else minutes(plan.taken.seconds)
 
 
 def criterion_page(found: Criterion, job: Job, units: Units) -> Page:

@@ -44,4 +44,4 @@ def picture_html(svg: bytes, words: str) -> str:
     As data of an image its inner names can't meet those of another, and nothing in it can act.
     """
     data = base64.b64encode(svg).decode("ascii")
-    return f'<img alt="{html.escape(words)}" src="data:image/svg+xml;base64,{data}">'
+    return f'<img alt="{html.escape(words)}" src="data:image/svg+xml;base64,{data}" />'

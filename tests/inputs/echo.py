@@ -122,7 +122,7 @@ def hammer_cushion_area(job: Job, table: dict[str, Any], typed: str) -> bool:
 def rule(job: Job, table: dict[str, Any], typed: str) -> bool:
     published = {"aashto": "AASHTO", "en 12699": "EN 12699"}
     name = published["aashto" if typed.startswith("aashto") else "en 12699"]
-    texts = job.limits.compression_text + job.limits.tension_text
+    texts = job.limits.squeeze.text + job.limits.pull.text
     detail = "monitored" not in typed or "monitored" in texts
     return (name in texts and detail) or noticed(job, "limits.rule")
 
@@ -184,6 +184,12 @@ JOB_KEYS: dict[str, Check] = {
     ),
     "limits.compression_stress": size(lambda job: job.limits.compression, "stress"),
     "limits.tension_stress": size(lambda job: job.limits.tension, "stress"),
+    "limits.bending": lambda job, table, typed: (
+        f"less {100 * typed:g}% for bending" in (job.limits.squeeze.text)
+    ),
+    "limits.wall_buckling": lambda job, table, typed: (
+        f"{typed:g} of the stress at which the wall buckles" in job.limits.squeeze.text
+    ),
     "search.objective": lambda job, table, typed: job.search.objective == typed,
     "search.reserve": lambda job, table, typed: job.search.reserve == typed,
     "search.seed": lambda job, table, typed: job.search.seed == typed,

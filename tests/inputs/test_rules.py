@@ -15,7 +15,7 @@ from matchup.errors import Fault, InputError, ModelError, Problem, did_you_mean
 from matchup.model.cushion import Cushion, CushionMaterial, CushionSpace, Spring
 from matchup.model.hammer import Hammer
 from matchup.model.job import Search
-from matchup.model.limits import StressLimits
+from matchup.model.limits import Limit, StressLimits
 from matchup.model.pile import Pile, Section
 from matchup.model.stage import Stage
 
@@ -44,7 +44,7 @@ SOUND = [
     Section.square(0.4),
     Pile("concrete", Section.square(0.4), 24.0, 35e9, 2400.0, 50e6, 6e6),
     Stage("x", 21.0, 1e6, 1e6, 4e-3, shaft_shape=((0.0, 0.0), (21.0, 1.0))),
-    StressLimits(30e6, 7e6, "", ""),
+    StressLimits(Limit(30e6, ""), Limit(7e6, "")),
     Search(reserve=0.1),
 ]
 CASES = [

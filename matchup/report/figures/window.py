@@ -190,13 +190,16 @@ def _draw_panel(axes: Axes, found: StrokeMap, panel: _Panel, units: Units) -> No
             axes.plot(xs, ys, color=look.colour if state != SHORT else INK, linewidth=1.8)
     axes.set_xlim(panel.strokes[0], panel.strokes[-1])
     axes.set_ylim(panel.sizes[0], panel.sizes[-1])
-    axes.set_ylabel(panel.label)
+    if found.stacks[panel.rows[0]].pile is None:
+        # One row has no height for a label at its side.
+        axes.set_title(panel.label)
+        axes.set_yticks([])
+    else:
+        axes.set_ylabel(panel.label)
     axes.set_xlabel(f"stroke, {units.unit('stroke')}")
     axes.tick_params(labelbottom=True)
     if panel.counted:
         axes.yaxis.set_major_locator(MaxNLocator(integer=True))
-    if found.stacks[panel.rows[0]].pile is None:
-        axes.set_yticks([])
 
 
 def _runs(mask: Flags, panel: _Panel) -> list[tuple[float, float, float, float]]:

@@ -25,7 +25,7 @@ from matchup.report.tender.workbook import Sheet, workbook
 PAGE, PAPER, BOOK = "report.html", "report.pdf", "report.xlsx"
 DATA = "ranking.json"
 TABLES = ("options.csv", "drive.csv", "window.csv")
-NAMES = (PAGE, PAPER, BOOK, DATA, *TABLES)
+NAMES = (PAGE, PAPER, BOOK, *TABLES, DATA)
 """Every file that a report may have."""
 
 

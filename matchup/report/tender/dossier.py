@@ -21,10 +21,12 @@ class Dossier:
     detail : Option
         The one told in full: of the ranking's options or of the rejected.
     map : StrokeMap
-        Of its hammer, at the target.
+        Of its hammer, at the target, or where it fails.
     blows : tuple of Blow
-        At its target, and at its station with the highest stress where that is another one; empty
-        where there is no blow to compute.
+        At its target, or where it fails, and at its station with the highest stress where that is
+        another one; empty where there is no blow to compute.
+    version : str
+        Of the program that made them.
     criterion : Criterion or None
         Of a whole drive that reaches its target.
     """
@@ -33,6 +35,7 @@ class Dossier:
     detail: Option
     map: StrokeMap
     blows: tuple[Blow, ...]
+    version: str
     criterion: Criterion | None = None
 
     @property

@@ -7,7 +7,6 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-import matchup
 from matchup.report.bills import bills_blocks
 from matchup.report.driven import (
     answer,
@@ -54,6 +53,10 @@ METHOD = (
     "within both stress limits, in every wear state and at 2 % more and less stroke.",
     "Not modelled: diesel and vibratory hammers, repeated blows with residual stresses, splices, "
     "followers, bending, fatigue.",
+)
+AS_PLANNED = (
+    "At the planned stroke, in the wear state that decides. The plan's own figures are the worst "
+    "over the wear states and over 2 % more and less stroke, so they are a little higher."
 )
 FEW_STAGES = 12
 """Up to so many stages are echoed in the report itself; more stand in the workbook."""
@@ -189,7 +192,7 @@ def _window(dossier: Dossier, units: Units) -> Section:
         f"Where {option.hammer.name} works at stage {found.stage.name!r}, by stroke and cushion, "
         "and what closes each edge.",
     )
-    return Section(f"Strokes and cushions that work for {option.hammer.name}", (picture,))
+    return Section(f"Strokes and cushions for {option.hammer.name}", (picture,))
 
 
 def _blows(dossier: Dossier, units: Units) -> Section | None:
@@ -197,9 +200,11 @@ def _blows(dossier: Dossier, units: Units) -> Section | None:
         return None
     from matchup.report.figures.blow import blow_figure
 
-    blocks: list[Block] = []
+    blocks: list[Block] = [Prose((AS_PLANNED,))]
     for number, blow in enumerate(dossier.blows, 1):
-        why = "at the target" if number == 1 else "where the stress is highest"
+        why = "where the stress is highest"
+        if number == 1:
+            why = "at the target" if dossier.detail.drives else "where it fails"
         blocks += [
             Headline(f"Stage {blow.stage.name!r}, {why}:"),
             _picture(
@@ -241,7 +246,7 @@ def _about(dossier: Dossier, units: Units) -> Section:
     """Return what it takes to get the same report again."""
     python = ".".join(map(str, sys.version_info[:3]))
     line = (
-        f"Made by matchup {matchup.__version__} with Python {python}, seed "
+        f"Made by matchup {dossier.version} with Python {python}, seed "
         f"{dossier.job.search.seed}. The same files and seed give the same report, byte by byte."
     )
     return Section("How to get this report again", (Prose((line,)), files_table(dossier)))

@@ -35,7 +35,7 @@ ORDER = (
     "Hammers that drive the pile, best first",
     "Hammers that can't, nearest miss first",
     "Driving with",
-    "Strokes and cushions that work for",
+    "Strokes and cushions for",
     "Two blows in detail",
     "Inputs as understood",
     "Methods, sources and what was taken by default",
@@ -329,6 +329,16 @@ def test_a_drive_is_told_case_by_case_and_station_by_station():
     headings = [cell.value for cell in drive[1]]
     depths = [row[headings.index("depth m")] for row in drive.iter_rows(2, values_only=True)]
     assert depths == pytest.approx([plan.stage.penetration for plan in plans])
+
+
+def test_a_drive_that_fails_at_its_target_is_told_without_blows():
+    report = matchup.tender_report(driven_job(), detail="Plover")
+    assert report.dossier.detail.failing is not None
+    assert report.dossier.map.stage == report.dossier.detail.failing.stage
+    files = report.files()
+    assert "Why Plover can't" in read(files["report.html"]).text
+    drive = book(files)["Drive"]
+    assert [row[-1] for row in drive.iter_rows(2, values_only=True)] == [None] * 3
 
 
 def test_a_drive_is_drawn_with_all_its_cases():
