@@ -28,20 +28,14 @@ from matchup.model.selection import (
     select_hammer,
 )
 from matchup.report.document import blow_document, check_document, ranking_document
-from matchup.report.driven import (
-    chosen_case,
-    criterion_document,
-    criterion_page,
-    drive_document,
-    drive_page,
-    stations_table,
-)
+from matchup.report.driven import chosen_case, drive_document, drive_page, stations_table
 from matchup.report.files import figure_kind, refuse_taken, write_file, write_folder
 from matchup.report.mapped import map_document, map_page, map_table
 from matchup.report.one_blow import blow_page, envelope_table, trace_table
 from matchup.report.opinions import formula_fields, opinion_document, opinions_page
 from matchup.report.options import options_table, schedule_table
 from matchup.report.page import Headline, Page, page_html, page_text
+from matchup.report.proven import criterion_document
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.shown import Units
 from matchup.report.table import Table, tabled
@@ -295,11 +289,7 @@ class DriveResult(CheckResult):
 
     def page(self, display: str | None = None) -> Page:
         """Return the drive as blocks of prose and tables."""
-        units = _units(self.job, display)
-        page = list(drive_page(self.ranking, units, self.case))
-        if self.criterion is not None:
-            page[-1:-1] = criterion_page(self.criterion, self.job, units)
-        return page
+        return drive_page(self.ranking, _units(self.job, display), self.case, self.criterion)
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""

@@ -9,6 +9,8 @@ import matchup
 
 FOLDER = Path(__file__).parents[1] / "examples" / "hollowmere_landing"
 NAMES = ("dolphin_tube", "fender_piles", "final_set", "three_stages")
+DRIVES = ("dense_layer", "open_tube", "own_table", "soft_over_dense", "whole_drive")
+"""Jobs with a [ground]."""
 
 
 def path(name: str) -> Path:

@@ -183,13 +183,15 @@ def must_suffice(method: Method, ground: Ground, section: Section, choices: Choi
     Raises
     ------
     ModelError
-        With every field that is missing, and the methods that would do without.
+        With every field that is missing, and what to do: which methods would do without.
     """
     faults = _lacks(method, ground, section, choices)
     if faults:
-        others = ", ".join(usable(ground, section, choices)) or "none"
-        must = f"must be one that the ground suffices for: {others}"
-        raise ModelError(method.name, [*faults, Fault("method", must, method.name)])
+        others = ", ".join(usable(ground, section, choices))
+        do = "No method can do with what is there."
+        if others:
+            do = f"With what is there these would do: {others}."
+        raise ModelError(method.name, [fault._replace(do=fault.do or do) for fault in faults])
 
 
 def unit_resistance(method: Method, task: Task) -> UnitResistance:

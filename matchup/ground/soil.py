@@ -112,6 +112,19 @@ class SetupLaw:
         share = min(math.log10(elapsed / self.start) / math.log10(self.end / self.start), 1.0)
         return np.asarray(1 + (setup - 1) * share)
 
+    @property
+    def text(self) -> str:
+        """The law in words."""
+        return (
+            "set-up of the shaft, linear in the logarithm of time from "
+            f"{time_text(self.start)} to {time_text(self.end)}; toe unchanged"
+        )
+
+
+def time_text(seconds: float) -> str:
+    """Return a time in hours or, from one day on, in days."""
+    return f"{seconds / 3600:.3g} h" if seconds < DAY else f"{seconds / DAY:.3g} d"
+
 
 class Pair(NamedTuple):
     """Quakes and damping that go with a method.

@@ -18,7 +18,7 @@ from matchup.errors import Fault, ModelError
 from matchup.ground.basis import Choices, Ground, Task
 from matchup.ground.cases import DEFAULT_CASES, Case, Loosened, Pause
 from matchup.ground.methods import Method, method_named, unit_resistance
-from matchup.ground.soil import DAY, SetupLaw
+from matchup.ground.soil import SetupLaw, time_text
 from matchup.ground.thin import kept_nodes, strictly_deeper, with_longest
 from matchup.ground.unit import Mode, UnitResistance
 from matchup.model.pile import Pile
@@ -61,6 +61,8 @@ class GroundStage(NamedTuple):
         The mode that the stage has the resistance of.
     modes : tuple of ModeResistance
         Every mode: two for an open section, otherwise one.
+    told : tuple of str
+        Those of the stage's notes that are about the method, and not about this moment or case.
     """
 
     stage: Stage
@@ -68,6 +70,7 @@ class GroundStage(NamedTuple):
     pause: float
     mode: str
     modes: tuple[ModeResistance, ...]
+    told: tuple[str, ...]
 
 
 def resistance_stages(
@@ -222,7 +225,7 @@ class _Drive:
             modes=_told(modes),
             notes=(*self.notes, *self._moment_notes(case, elapsed, modes, chosen)),
         )
-        return GroundStage(stage, case, elapsed, mode.name, modes)
+        return GroundStage(stage, case, elapsed, mode.name, modes, self.notes)
 
     def _shafts(self, row: int, elapsed: float) -> list[_Shaft]:
         tip = float(self.unit.tips[row])
@@ -278,10 +281,7 @@ class _Drive:
         if len(modes) > 1:
             notes.append(f"{modes[chosen].mode}: the rule of case {case.name} is {case.plug_rule}")
         if elapsed > 0:
-            notes.append(
-                f"after {elapsed / DAY:.3g} d without blows: set-up of the shaft, linear in log "
-                f"time from {self.law.start / 3600:g} h to {self.law.end / DAY:g} d; toe unchanged"
-            )
+            notes.append(f"after {time_text(elapsed)} without blows: {self.law.text}")
         return notes
 
 
@@ -311,7 +311,7 @@ def _chosen(modes: tuple[ModeResistance, ...], rule: str) -> int:
 
 def _name(tip: float, case: Case, elapsed: float) -> str:
     text = f"{tip:.1f}" if abs(tip - round(tip, 1)) < 1e-6 else f"{tip:.3f}".rstrip("0")
-    after = f", after {elapsed / DAY:.3g} d" if elapsed > 0 else ""
+    after = f", after {time_text(elapsed)}" if elapsed > 0 else ""
     return f"{text} m, {case.name}{after}"
 
 

@@ -179,8 +179,8 @@ def _field(path: KeyPath) -> FieldInfo:
     model: type[Keys] | None = JobKeys
     field = None
     for part in path:
-        if isinstance(part, str):
-            assert model is not None
+        # Keys of a table that the user names, like those of ground cases, have no fields.
+        if isinstance(part, str) and model is not None:
             fields = model.model_fields
             field = next(f for name, f in fields.items() if part in (name, f.alias))
             model = _model(field.annotation)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from pathlib import Path
 
-from matchup.inputs.findings import Findings
+from matchup.inputs.findings import Findings, shown_path
 from matchup.inputs.readings import condensed
 from matchup.inputs.sounding_ags import read_ags
 from matchup.inputs.sounding_bro import read_bro
@@ -48,7 +48,7 @@ def read_sounding(path: Path, findings: Findings, location: str | None = None) -
 
 
 def _read(path: Path, findings: Findings, location: str | None) -> Sounding | None:
-    file = str(path)
+    file = shown_path(path)
     data = read_bytes(path, findings)
     if data is None:
         return None

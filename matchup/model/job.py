@@ -107,11 +107,14 @@ class Drive:
         Resistance long after driving that the last set must prove. [N]
     capacity_text : str
         How it follows from what the job gives.
+    basis : tuple of str
+        What the resistances rest on, line by line: method, its validity, assumptions.
     """
 
     required: tuple[str, ...] = ()
     capacity: float | None = None
     capacity_text: str = ""
+    basis: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

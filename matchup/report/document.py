@@ -73,6 +73,7 @@ def blows_per_25cm(set_: float) -> float | None:
 def option_document(option: Option, job: Job, units: Units, place: int | None) -> dict[str, object]:
     """Return an option of a ranking, or the nearest miss of a hammer that fails."""
     plan = option.failing or option.target
+    taken = option.slowest.taken if option.slowest and option.drives else None
     return {
         "rank": place,
         "hammer": option.hammer.name,
@@ -98,11 +99,9 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "peak_tension_MPa": number(max(p.tension for p in option.plans), 1e-6),
         "tension_use": number(option.tension_use),
         "blow_rate_per_min": number(plan.blow_rate, 60),
-        "blows_total": None if option.slowest is None else option.slowest.taken.blows,
-        "drive_minutes": None if option.slowest is None else number(_seconds(option), 1 / 60),
-        "drive_blow_energy_MJ": (
-            None if option.slowest is None else number(option.slowest.taken.energy, 1e-6)
-        ),
+        "blows_total": number(taken.blows) if taken else None,
+        "drive_minutes": number(taken.seconds, 1 / 60) if taken else None,
+        "drive_blow_energy_MJ": number(taken.energy, 1e-6) if taken else None,
         "cost": bill_document(option.bill, job.cost),
         "runner_up": (
             None
@@ -115,10 +114,6 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "reach_is_open": option.reach_is_open,
         "cure": cure_document(option.cure),
     }
-
-
-def _seconds(option: Option) -> float | None:
-    return None if option.slowest is None else option.slowest.taken.seconds
 
 
 def _stage_document(plan: StagePlan) -> dict[str, object]:

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from functools import partial
+from itertools import pairwise
+from math import inf
 from typing import Any
 
 from matchup.model.job import Job
@@ -16,40 +18,105 @@ from matchup.report.document import (
 )
 from matchup.report.options import blow_count, measured, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
+from matchup.report.proven import criterion_page
 from matchup.report.ranked import foot
 from matchup.report.sentences import on_stack, reason
 from matchup.report.shown import Units, percent
 from matchup.report.table import Column, Field, Table, tabled
 from matchup.search.criterion import Criterion
-from matchup.search.option import GOES_DOWN, CaseDrive, Option, Ranking, StagePlan
+from matchup.search.option import (
+    DRIVES,
+    GOES_DOWN,
+    CaseDrive,
+    Option,
+    Ranking,
+    StagePlan,
+    Taken,
+)
 
-GOING_DOWN = "goes down"
+VERDICTS_SHORT = {DRIVES: "", GOES_DOWN: "down"}
+"""For people a station that is driven needs no word."""
 
 
-def drive_page(ranking: Ranking, units: Units, case: str | None = None) -> Page:
+def drive_page(
+    ranking: Ranking, units: Units, case: str | None = None, criterion: Criterion | None = None
+) -> Page:
     """Return the drive: the answer, the cases, the stations of one of them.
 
     Parameters
     ----------
     case : str or None
         Whose stations are told; None takes the required one with the most blows, or that fails.
+    criterion : Criterion or None
+        Told below, where there is one.
     """
     job = ranking.job
     option = (*ranking.options, *ranking.rejected)[0]
     page: list[Block] = [Headline(answer(option, job, units))]
     if option.misfits:
-        return [*page, foot(ranking, units)]
+        return [*page, *foot(ranking, units)]
     chosen = chosen_case(option, case)
-    page += [
-        cases_table(option, units),
-        Headline(f"Case {chosen.case}, station by station:"),
-        stations_table((chosen,), units),
-    ]
-    others = [drive.case for drive in option.cases if drive is not chosen]
-    if others and case is None:
-        page.append(Prose((f"Other cases: {', '.join(others)}.",)))
+    page.append(cases_table(option, units))
+    if chosen.plans:
+        page += [
+            Headline(f"Case {chosen.case}, station by station:"),
+            stations_table((chosen,), units),
+        ]
+    if lines := _remarks(chosen, option, units, case is None):
+        page.append(Prose(tuple(lines)))
+    if criterion is not None:
+        page += criterion_page(criterion, job, units)
     page += bills_blocks((option,), job, units)
-    return [*page, foot(ranking, units)]
+    return [*page, *foot(ranking, units)]
+
+
+def _remarks(chosen: CaseDrive, option: Option, units: Units, tell_others: bool) -> list[str]:
+    """Return what the stations of a case do not tell by themselves."""
+    lines = []
+    if chosen.settled is not None:
+        lines.append(
+            f"Down to {units.text(chosen.settled, 'length')} pile and hammer go down under their "
+            "weight."
+        )
+    lines += [
+        _restart(before, plan, units)
+        for before, plan in pairwise(chosen.plans)
+        if plan.stage.after_pause
+    ]
+    lines += _cushion_life(option)
+    others = [drive.case for drive in option.cases if drive is not chosen and drive.plans]
+    if others and tell_others:
+        lines.append(f"Other cases, shown by --case: {', '.join(others)}.")
+    return lines
+
+
+def _restart(before: StagePlan, plan: StagePlan, units: Units) -> str:
+    """Return what a pause does to the shaft, and what the first blows after it do."""
+    stage = plan.stage
+    rest = units.rest(stage.after_pause)
+    head = f"Restart at {units.depth(stage.penetration)} after {rest}: "
+    if before.stage.shaft > 0:
+        head += f"shaft resistance {stage.shaft / before.stage.shaft:.2f} times that before; "
+    count = _count(plan, units)
+    if count is None:
+        return f"{head}it {plan.verdict}."
+    stroke = units.text(plan.stroke, "stroke")
+    return f"{head}it {plan.verdict}, {count:.0f} blows/{units.counted} at {stroke}."
+
+
+def _cushion_life(option: Option) -> list[str]:
+    """Return a warning where a pile cushion takes more blows than its life."""
+    life = option.stack.pile.material.life if option.stack.pile else None
+    cases = [
+        case for case in option.cases if case.required and case.most_on_cushion > (life or inf)
+    ]
+    if not cases:
+        return []
+    worst = max(cases, key=lambda case: case.most_on_cushion)
+    return [
+        f"Warning: in case {worst.case} one pile cushion takes {worst.most_on_cushion:.0f} blows, "
+        f"more than its life of {life:.0f}; it is replaced at pauses only, so plan one earlier."
+    ]
 
 
 def answer(option: Option, job: Job, units: Units) -> str:
@@ -60,12 +127,18 @@ def answer(option: Option, job: Job, units: Units) -> str:
         return f"No: {name} {option.verdict}; {reason(option, job, units)}."
     taken = slowest.taken
     time = "" if taken.seconds is None else f" and {taken.seconds / 60:.0f} min of driving"
-    depth = units.text(option.target.stage.penetration, "length")
-    cushions = f"; {taken.cushions} pile cushions" if taken.cushions > 1 else ""
-    return (
-        f"Yes: {name}{on} reaches {depth} in every required case; at most {taken.blows:.0f} blows"
-        f"{time} (case {slowest.case}){cushions}."
+    depth = units.depth(option.target.stage.penetration)
+    required = [case.case for case in option.cases if case.required]
+    which = (
+        f"in every required case ({', '.join(required)})"
+        if len(required) > 1
+        else (f"in case {required[0]}")
     )
+    most = f"at most {taken.blows:.0f}" if len(required) > 1 else f"{taken.blows:.0f}"
+    case = f" (case {slowest.case})" if len(required) > 1 else ""
+    used = max(case.taken.cushions for case in option.cases if case.required)
+    cushions = f"; {used} pile cushions" if used > 1 else ""
+    return f"Yes: {name}{on} reaches {depth} {which}; {most} blows{time}{case}{cushions}."
 
 
 def chosen_case(option: Option, case: str | None) -> CaseDrive:
@@ -82,22 +155,27 @@ def chosen_case(option: Option, case: str | None) -> CaseDrive:
 def cases_table(option: Option, units: Units) -> Table:
     """Return what the drive comes to in every ground case."""
     length = units.unit("length")
+    digits = _digits(option.cases, units)
     fields: list[Field[CaseDrive]] = [
         (Column("case", "case", wrap=12), lambda c: c.case),
         (Column("answer", "answer", wrap=20), _case_answer),
         (
-            Column(units.key("settled", "length"), f"goes down\nto {length}", 1),
+            Column(units.key("settled", "length"), f"by its\nweight\nto {length}", 1),
             lambda c: units.value(c.settled, "length"),
         ),
-        (Column("blows", "blows", 0), lambda c: c.taken.blows),
-        (Column("minutes", "min", 0), lambda c: minutes(c.taken.seconds)),
-        (Column("cushions", "cush-\nions", 0, keep=2), lambda c: c.taken.cushions),
+        (
+            Column(units.key("got_to", "length"), f"as far\nas {length}", digits),
+            lambda c: _depth(c.plans[-1] if c.plans else None, units),
+        ),
+        (Column("blows", "blows", 0), lambda c: c.taken.blows if c.plans else None),
+        (Column("minutes", "min", 0), lambda c: minutes(c.taken.seconds) if c.plans else None),
+        (Column("cushions", "cush-\nions", 0, keep=4), lambda c: c.taken.cushions),
         (
             Column(f"hardest_{blow_count(units).key}", f"most blows\n/{units.counted}", 0),
             lambda c: None if c.hardest is None else units.blow_count(c.hardest.set),
         ),
         (
-            Column(units.key("hardest_at", "length"), f"at\n{length}", 1),
+            Column(units.key("hardest_at", "length"), f"at\n{length}", digits),
             lambda c: _depth(c.hardest, units),
         ),
         (
@@ -106,15 +184,27 @@ def cases_table(option: Option, units: Units) -> Table:
         ),
         (Column("stress", "in", keep=3), lambda c: _which(c.tightest)),
         (
-            Column(units.key("stress_at", "length"), f"at\n{length}", 1, keep=3),
+            Column(units.key("stress_at", "length"), f"at\n{length}", digits, keep=3),
             lambda c: _depth(c.tightest, units),
         ),
     ]
+    if option.stack.pile is None:
+        fields = [field for field in fields if field[0].key != "cushions"]
     return tabled(option.cases, fields)
 
 
+def _digits(cases: Sequence[CaseDrive], units: Units) -> int:
+    """Return the decimals that the depths of all stations need."""
+    depths = [plan.stage.penetration for drive in cases for plan in drive.plans]
+    return units.depth_digits(*depths)
+
+
 def _case_answer(drive: CaseDrive) -> str:
-    told = "reaches the target" if drive.failing is None else drive.failing.verdict
+    told = "reaches the target"
+    if not drive.plans:
+        told = "not looked at"
+    elif drive.failing is not None:
+        told = drive.failing.verdict
     return told if drive.required else f"{told} (not required)"
 
 
@@ -140,8 +230,15 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
     if len(cases) > 1:
         fields.append((Column("case", "case", once=True), lambda row: row[0].case))
     fields += [
-        measured("penetration", "depth", "length", units, lambda row: row[1].stage.penetration),
-        (Column("rest_h", "rest\nh", 0, keep=2), lambda row: _rest(row[1])),
+        (
+            Column(
+                units.key("penetration", "length"),
+                f"depth\n{units.unit('length')}",
+                _digits(cases, units),
+            ),
+            lambda row: _depth(row[1], units),
+        ),
+        (Column("rest_h", "rest\nh", 0, keep=6), lambda row: _rest(row[1])),
         measured("shaft", "shaft", "force", units, lambda row: row[1].stage.shaft),
         measured("toe", "toe", "force", units, lambda row: row[1].stage.toe),
         *_modes(rows, units),
@@ -151,13 +248,17 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
         *stress_shares(_plan_of),
         measured("transferred", "to pile", "energy", units, _passed, keep=3),
         (Column("blows_per_minute", "blows\n/min", 0, keep=4), lambda row: _rate(row[1])),
-        (Column("wear", "cushion", keep=1), lambda row: _cushion(row[1])),
-        (Column("blows", "blows\nso far", 0), lambda row: _blows_taken(row[1])),
-        (Column("minutes", "min", 0), lambda row: _minutes_taken(row[1])),
+        (Column("wear", "cush-\nion", keep=5), lambda row: _cushion(row[1])),
+        (Column("blows", "blows\nso far", 0), lambda row: _taken(row[1]).blows),
+        (Column("minutes", "min", 0, keep=7), lambda row: minutes(_taken(row[1]).seconds)),
+        (Column("verdict", "", short=VERDICTS_SHORT), lambda row: row[1].verdict),
     ]
-    if not any(plan.stage.after_pause for _, plan in rows):
-        fields = [field for field in fields if field[0].key != "rest_h"]
-    return tabled(rows, fields)
+    idle = {
+        "rest_h": not any(plan.stage.after_pause for _, plan in rows),
+        "wear": not any(plan.wear for _, plan in rows),
+        "verdict": all(plan.verdict == DRIVES for _, plan in rows),
+    }
+    return tabled(rows, [field for field in fields if not idle.get(field[0].key)])
 
 
 def _modes(
@@ -172,7 +273,7 @@ def _modes(
             "force",
             units,
             partial(_whole_resistance, number=number),
-            keep=5,
+            keep=8,
         )
         for number, mode in enumerate(first)
     ]
@@ -203,90 +304,12 @@ def _rate(plan: StagePlan) -> float | None:
 
 
 def _cushion(plan: StagePlan) -> str | None:
-    if plan.verdict == GOES_DOWN:
-        return GOING_DOWN
-    return plan.wear or None
+    return None if plan.verdict == GOES_DOWN else plan.wear or "either"
 
 
-def _blows_taken(plan: StagePlan) -> float | None:
-    """Return the blows so far; None at a station that was looked at and not driven to."""
-    return None if plan.taken is None else plan.taken.blows
-
-
-def _minutes_taken(plan: StagePlan) -> float | None:
-    return None if plan.taken is None else minutes(plan.taken.seconds)
-
-
-def criterion_page(found: Criterion, job: Job, units: Units) -> Page:
-    """Return what sets mean at the target, and which one proves the resistance asked for."""
-    strokes = [units.text(float(stroke), "stroke") for stroke in found.strokes]
-    force, length = units.unit("force"), units.unit("set")
-    columns = [
-        Column(units.key("driving", "force"), f"while\ndriving\n{force}", 0),
-        Column(units.key("later", "force"), f"long\nafter\n{force}", 0),
-        *(
-            Column(
-                f"set_{length}_at_{stroke.replace(' ', '_')}",
-                f"set, {length}\nat {stroke}",
-                units.digits("set"),
-            )
-            for stroke in strokes
-        ),
-    ]
-    rows = [
-        (
-            units.value(float(found.driving[i]), "force"),
-            units.value(float(found.later[i]), "force"),
-            *(units.value(float(value), "set") for value in found.sets[i]),
-        )
-        for i in range(found.driving.size)
-    ]
-    head = (
-        f"What a set means at {units.text(found.stage.penetration, 'length')}, resistance "
-        f"distributed as in case {found.stage.case}; a smaller set proves more:"
-    )
-    lines = [_proof(found, job, units)] if found.needed is not None else []
-    lines.append(
-        f"Long after driving: shaft times {found.stage.setup:.2f} for set-up, toe unchanged. Of "
-        "the wear states the one with the smaller set counts. To be confirmed by dynamic testing."
-    )
-    return [Headline(head), Table(tuple(columns), tuple(rows)), Prose(tuple(lines))]
-
-
-def _proof(found: Criterion, job: Job, units: Units) -> str:
-    """Return which sets prove the resistance asked for."""
-    assert found.needed is not None
-    assert found.proving is not None
-    drive = job.drive
-    why = "" if drive is None else f" ({drive.capacity_text})"
-    needed = f"To prove {units.text(found.needed, 'force')} long after driving{why}"
-    proving = [
-        f"{units.text(float(set_), 'set')} ({units.blow_count(float(set_)):.0f} blows/"
-        f"{units.counted}) at {units.text(float(stroke), 'stroke')}"
-        for stroke, set_ in zip(found.strokes, found.proving, strict=True)
-        if set_ == set_
-    ]
-    if not proving:
-        return f"{needed}, the pile would have to be driven harder than these strokes can."
-    return f"{needed}, drive until the set is at most {', or '.join(proving)}."
-
-
-def criterion_document(found: Criterion) -> dict[str, Any]:
-    """Return the termination criterion for the JSON document."""
-    return {
-        "penetration_m": found.stage.penetration,
-        "case": found.stage.case or None,
-        "setup_factor": found.stage.setup,
-        "planned_stroke_m": found.planned,
-        "strokes_m": found.strokes.tolist(),
-        "resistance_driving_kN": (found.driving / 1e3).tolist(),
-        "resistance_later_kN": (found.later / 1e3).tolist(),
-        "sets_mm": [[number(float(s), 1e3) for s in row] for row in found.sets],
-        "needed_later_kN": number(found.needed, 1e-3),
-        "proving_sets_mm": (
-            None if found.proving is None else [number(float(s), 1e3) for s in found.proving]
-        ),
-    }
+def _taken(plan: StagePlan) -> Taken:
+    """Return what was taken; nothing for a target that was looked at by itself."""
+    return plan.taken or Taken(seconds=None)
 
 
 def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
@@ -297,6 +320,7 @@ def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
     return {
         "schema_version": SCHEMA_VERSION,
         **checked,
+        "ground": list(ranking.job.drive.basis) if ranking.job.drive else [],
         "cases": [_case_document(drive, ranking.job) for drive in option.cases],
         "stations": [_station_document(plan) for drive in option.cases for plan in drive.plans],
     }
@@ -307,7 +331,7 @@ def _case_document(drive: CaseDrive, job: Job) -> dict[str, Any]:
     return {
         "case": drive.case,
         "required": drive.required,
-        "reaches": drive.failing is None,
+        "reaches": drive.reaches,
         "stopped_by": None if drive.failing is None else drive.failing.verdict,
         "stopped_at_m": None if drive.failing is None else drive.failing.stage.penetration,
         "goes_down_to_m": number(drive.settled),
@@ -337,11 +361,11 @@ def _station_document(plan: StagePlan) -> dict[str, Any]:
         "set_needed_mm": 1e3 * stage.set_needed,
         "set_mm": number(plan.set, 1e3),
         "blows_per_25cm": None if moves else blows_per_25cm(plan.set),
-        "compression_MPa": number(plan.compression, 1e-6),
-        "tension_MPa": number(plan.tension, 1e-6),
-        "compression_use": number(plan.compression_use),
-        "tension_use": number(plan.tension_use),
-        "transferred_energy_kJ": number(plan.transferred, 1e-3),
+        "compression_MPa": None if moves else number(plan.compression, 1e-6),
+        "tension_MPa": None if moves else number(plan.tension, 1e-6),
+        "compression_use": None if moves else number(plan.compression_use),
+        "tension_use": None if moves else number(plan.tension_use),
+        "transferred_energy_kJ": None if moves else number(plan.transferred, 1e-3),
         "blow_rate_per_min": number(plan.blow_rate, 60),
         "cushion_wear": plan.wear or None,
         "blows": None if taken is None else number(taken.blows),

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import html
+from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
@@ -10,6 +11,7 @@ from typing import Any
 import numpy as np
 
 from matchup.model.cushion import Stack
+from matchup.report.closing import closing
 from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
@@ -18,7 +20,7 @@ from matchup.report.document import (
     number,
 )
 from matchup.report.page import Headline, Page, Prose
-from matchup.report.sentences import CAUTION, basis
+from matchup.report.sentences import where
 from matchup.report.shown import Units, percent
 from matchup.report.table import Column, Table, wrapped
 from matchup.search.stroke_map import (
@@ -35,20 +37,52 @@ SIGNS = {OPEN_CELL: "#", SHORT: ".", SQUEEZED: "c", PULLED: "t", RUNNING: "r", U
 WIDEST_STEP = 3
 """Characters from one stroke to the next, where there is room."""
 LABEL_WIDTH = 6
+CLOSING_STAGES = 4
+"""Of more stages that close cells, those that close the fewest are not told."""
 WIDTH_IN_NOTEBOOK = 100
 
 
 def map_page(found: StrokeMap, units: Units) -> Page:
     """Return the map: the answer, the grid, what it rests on."""
-    head = f"{map_place(found)}: {map_answer(found, units)}."
-    grid = _Grid(found, units)
-    return [Headline(head), grid, Prose((*basis(found.job, units), CAUTION))]
+    head = f"{map_place(found, units)}: {map_answer(found, units)}."
+    closed = [Prose(_closing_stages(found, units))] if found.everywhere else []
+    return [Headline(head), _Grid(found, units), *closed, *closing(found.job, units)]
 
 
-def map_place(found: StrokeMap) -> str:
+def _closing_stages(found: StrokeMap, units: Units) -> tuple[str, ...]:
+    """Return which stages close how many cells, the most first, and what a map can't tell."""
+    job = found.job
+    stages = {stage.name: stage for stage in job.stages}
+    counts = Counter(
+        (name, state)
+        for names, states in zip(found.closed_at, found.states, strict=True)
+        for name, state in zip(names, states, strict=True)
+        if name
+    )
+    told = [
+        f"{count} {where(stages[name], job, units)} ({state})"
+        for (name, state), count in counts.most_common(CLOSING_STAGES)
+    ]
+    if not told:
+        return ()
+    cells = found.strokes.size * len(found.stacks)
+    lines = [
+        f"Closed, of {cells} cells, each told once and the targets first: {', '.join(told)}"
+        + (" and others" if len(counts) > CLOSING_STAGES else "")
+        + "."
+    ]
+    targets = {job.stages[course.target].name for course in job.courses}
+    if job.drive is not None and not found.is_open and any(n not in targets for n, _ in counts):
+        lines.append("With a stroke of its own for every station it may work: see `matchup drive`.")
+    return tuple(lines)
+
+
+def map_place(found: StrokeMap, units: Units) -> str:
     """Return which hammer the map is of, and where."""
-    where = "at every stage" if found.everywhere else f"at stage {found.stage.name!r}"
-    return f"{found.hammer.name} {where}"
+    at = where(found.stage, found.job, units)
+    if found.everywhere:
+        at = "at every stage" if found.job.drive is None else "with one stroke for all stations"
+    return f"{found.hammer.name} {at}"
 
 
 def map_answer(found: StrokeMap, units: Units) -> str:

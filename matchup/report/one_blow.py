@@ -5,8 +5,9 @@ from __future__ import annotations
 from matchup.analysis.cells import is_setting
 from matchup.analysis.single import Blow
 from matchup.model.job import Job
+from matchup.report.closing import closing
 from matchup.report.page import Headline, Page, Prose
-from matchup.report.sentences import CAUTION, basis, set_text
+from matchup.report.sentences import set_text, where
 from matchup.report.shown import Units, share_text
 from matchup.report.table import Column, Table
 
@@ -16,11 +17,12 @@ def blow_page(blow: Blow, job: Job, units: Units) -> Page:
     on = "" if blow.cushion is None else f" on {units.cushion_words(blow.cushion)} ({blow.wear})"
     gives = set_text(blow.set, blow.stage, job, units)
     head = (
-        f"{blow.hammer.name} at stage {blow.stage.name!r}: stroke "
+        f"{blow.hammer.name} {where(blow.stage, job, units)}: stroke "
         f"{units.text(blow.stroke, 'stroke')}{on} gives {gives}."
     )
-    lines = (*blow_notices(blow, job, units), *basis(job, units), CAUTION)
-    return [Headline(head), figures_table(blow, units), Prose(lines)]
+    notices = blow_notices(blow, job, units)
+    noticed = [Prose(tuple(notices))] if notices else []
+    return [Headline(head), figures_table(blow, units), *noticed, *closing(job, units)]
 
 
 def figures_table(blow: Blow, units: Units) -> Table:

@@ -5,10 +5,10 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 
-from matchup.report.sentences import needed_set
-from matchup.report.shown import Units, percent
+from matchup.report.sentences import needed_set, where
+from matchup.report.shown import OfLimit, Units, percent
 from matchup.report.table import AtLeast, Column, Field, Row, Table, tabled
-from matchup.search.option import REDUCED, Option, Ranking, StagePlan
+from matchup.search.option import GOES_DOWN, REDUCED, Option, Ranking, StagePlan
 
 VERDICT = Column(
     "verdict",
@@ -82,7 +82,7 @@ def _where(options: Sequence[Option], units: Units) -> list[Field[Option]]:
         plan = option.tightest
         if plan is None:
             return None
-        return f"{units.text(plan.stage.penetration, 'length')}, {plan.stage.case}"
+        return f"{units.depth(plan.stage.penetration)}, {plan.stage.case}"
 
     return [(text, shown)]
 
@@ -137,13 +137,17 @@ def stress_shares(of: Callable[[Row], StagePlan]) -> tuple[Field[Row], Field[Row
     return (
         (
             Column("compression_percent", "compr.\n% limit", 0),
-            lambda row: percent(of(row).compression_use),
+            lambda row: _percent(of(row), of(row).compression_use),
         ),
         (
             Column("tension_percent", "tension\n% limit", 0),
-            lambda row: percent(of(row).tension_use),
+            lambda row: _percent(of(row), of(row).tension_use),
         ),
     )
+
+
+def _percent(plan: StagePlan, use: float) -> OfLimit | None:
+    return None if plan.verdict == GOES_DOWN else percent(use)
 
 
 def blow_count(units: Units) -> Column:
@@ -181,7 +185,7 @@ def margins_table(option: Option, ranking: Ranking, units: Units) -> Table:
     plan = option.failing or option.target
     needed = needed_set(plan.stage, job)
     reached, asked = units.together(plan.set, needed, "set")
-    what = "set" if len(job.stages) == 1 else f"set at {plan.stage.name!r}"
+    what = "set" if len(job.stages) == 1 else f"set {where(plan.stage, job, units)}"
     rows: list[tuple[object, ...]] = [
         (what, reached, f"at least {asked}", 100 * (plan.set / needed - 1))
     ]

@@ -4,11 +4,10 @@ from __future__ import annotations
 
 from matchup.model.job import Job
 from matchup.report.bills import bills_blocks
+from matchup.report.closing import closing
 from matchup.report.options import margins_table, options_table, schedule_table
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.sentences import (
-    CAUTION,
-    basis,
     reason,
     searched,
     softer_sentence,
@@ -39,7 +38,7 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
     page += [*bills_blocks(ranking.options, job, units), *softer_prose(ranking, units)]
     if ranking.rejected:
         page.append(Prose(failures(ranking, units), "Hammers that can't, nearest miss first:"))
-    return [*page, foot(ranking, units)]
+    return [*page, *foot(ranking, units)]
 
 
 def softer_prose(ranking: Ranking, units: Units) -> list[Block]:
@@ -59,11 +58,11 @@ def _answer(option: Option, job: Job, units: Units) -> str:
     return f"{option.hammer.name}: {option.verdict}; {reason(option, job, units)}."
 
 
-def foot(ranking: Ranking, units: Units) -> Prose:
+def foot(ranking: Ranking, units: Units) -> Page:
     """Return what an answer rests on, how it was found, and the caution."""
     everyone = (*ranking.options, *ranking.rejected)
     reach = [REACH] if any(option.reach is not None for option in everyone) else []
-    return Prose((*basis(ranking.job, units), *reach, searched(ranking), CAUTION))
+    return closing(ranking.job, units, *reach, searched(ranking))
 
 
 def check_page(ranking: Ranking, units: Units) -> Page:
@@ -81,4 +80,4 @@ def check_page(ranking: Ranking, units: Units) -> Page:
     page += bills_blocks((option,), job, units)
     if option.runner_up is not None:
         page.append(Prose((softer_sentence(option, job.search.objective, units),)))
-    return [*page, foot(ranking, units)]
+    return [*page, *foot(ranking, units)]

@@ -95,6 +95,15 @@ def on_stack(stack: Stack, units: Units) -> str:
     return f" on {words}" if stack.pile else (f" under {words}" if words else "")
 
 
+def where(stage: Stage, job: Job, units: Units) -> str:
+    """Return a stage in words: by name, in a drive by depth, case and rest."""
+    if job.drive is None:
+        return f"at stage {stage.name!r}"
+    case = f" in case {stage.case}" if len(job.courses) > 1 else ""
+    rest = f", after {units.rest(stage.after_pause)} of rest" if stage.after_pause else ""
+    return f"at {units.depth(stage.penetration)}{case}{rest}"
+
+
 def needed_set(stage: Stage, job: Job) -> float:
     """Return the least set of a stage with the job's reserve on top [m]."""
     return (1 + job.search.reserve) * stage.set_needed
@@ -105,7 +114,7 @@ def reason(option: Option, job: Job, units: Units) -> str:
     if option.misfits:
         return "; ".join(misfit_text(misfit, units) for misfit in option.misfits)
     plan = option.failing or option.target
-    at = f"at stage {plan.stage.name!r}, " if len(job.stages) > 1 else ""
+    at = f"{where(plan.stage, job, units)}, " if len(job.stages) > 1 else ""
     if option.verdict == PILE_RUNS:
         resistance = units.text(plan.stage.resistance, "force")
         return (
@@ -122,7 +131,7 @@ def reason(option: Option, job: Job, units: Units) -> str:
     else:
         uses = _uses(plan.compression_use, plan.tension_use, job)
         does = _failing_stroke(option, plan, job, units)
-    helps = _held_back(option, units) + _cured(option.cure, option, units)
+    helps = _held_back(option, job, units) + _cured(option.cure, option, units)
     return f"{at}{does}; {uses}{helps}"
 
 
@@ -179,15 +188,21 @@ def _uses(compression: float, tension: float, job: Job) -> str:
     )
 
 
-def _held_back(option: Option, units: Units) -> str:
+def _held_back(option: Option, job: Job, units: Units) -> str:
     """Return the stages whose stroke must stay below the target's, in words."""
     if option.verdict != REDUCED:
         return ""
     held = [plan for plan in option.plans if plan.stroke < option.target.stroke]
     if len(held) > STAGES_NAMED:
         low, high = (units.text(f(p.stroke for p in held), "stroke") for f in (min, max))
-        return f"; stroke kept to {low} to {high} at {len(held)} of {len(option.plans)} stages"
-    named = [f"{units.text(plan.stroke, 'stroke')} at {plan.stage.name!r}" for plan in held]
+        between = low if low == high else f"{low} to {high}"
+        what = "stages" if job.drive is None else "stations"
+        return f"; stroke kept to {between} at {len(held)} of {len(option.plans)} {what}"
+    named = [
+        f"{units.text(plan.stroke, 'stroke')} "
+        + (f"at {plan.stage.name!r}" if job.drive is None else where(plan.stage, job, units))
+        for plan in held
+    ]
     return f"; stroke kept to {', '.join(named)}"
 
 
@@ -263,7 +278,10 @@ def _at_what_cost(option: Option, runner_up: Option, objective: str) -> str:
 
 
 def basis(job: Job, units: Units) -> list[str]:
-    """Return what the answer rests on: limits with their sources, defaults, warnings."""
+    """Return what the answer rests on: limits with their sources, defaults, warnings.
+
+    The ground of a whole drive is told apart, since there is so much of it.
+    """
     return [*rests_on(job, units), *warned(job)]
 
 
@@ -276,7 +294,7 @@ def warned(job: Job) -> list[str]:
 
 
 def rests_on(job: Job, units: Units) -> list[str]:
-    """Return limits with their sources, the ground, and what was taken by default."""
+    """Return limits with their sources, and what was taken by default."""
     limits = job.limits
     lines = [
         f"Limits: compression {_limit(limits.squeeze, units)}; "
@@ -290,9 +308,6 @@ def rests_on(job: Job, units: Units) -> list[str]:
             "limits."
         )
     lines += site_lines(job, units)
-    if job.drive is not None:
-        told = dict.fromkeys(note for stage in job.stages for note in stage.notes)
-        lines.append(f"Ground: {'; '.join(map(units.retold, told))}.")
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
     return lines

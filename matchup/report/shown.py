@@ -7,6 +7,7 @@ import re
 from dataclasses import dataclass
 
 from matchup.model.cushion import Cushion
+from matchup.report.table import Marked
 from matchup.units import display_unit, parse_quantity, to_display
 
 DIGITS = {
@@ -68,6 +69,22 @@ class Units:
         """Return number and unit."""
         value = to_display(si, quantity, self.system)
         return f"{value:.{self.digits(quantity)}f} {self.unit(quantity)}"
+
+    def depth_digits(self, *depths: float) -> int:
+        """Return the decimals in which depths [m] are told: more where the usual ones round."""
+        usual = self.digits("length")
+        shown = [to_display(depth, "length", self.system) for depth in depths]
+        return usual + any(abs(depth - round(depth, usual)) > 0.01 for depth in shown)
+
+    def depth(self, si: float) -> str:
+        """Return a depth with its unit."""
+        value = to_display(si, "length", self.system)
+        return f"{value:.{self.depth_digits(si)}f} {self.unit('length')}"
+
+    def rest(self, si: float) -> str:
+        """Return a rest in hours, from three days on in days."""
+        hours = si / 3600
+        return f"{hours:.3g} h" if hours < 72 else f"{hours / 24:.3g} d"
 
     def together(self, si: float, bound: float, quantity: str) -> tuple[str, str]:
         """Return a value and its bound with units, in as many decimals as tell them apart."""
@@ -155,6 +172,18 @@ def share_text(share: float) -> str:
     return "just over 100%" if share > 1 else "just under 100%"
 
 
-def percent(share: float | None) -> float | None:
-    """Return a share as a percentage."""
-    return None if share is None or not math.isfinite(share) else 100 * share
+class OfLimit(Marked):
+    """A percentage of a limit: people never see 100 of what is above or below it."""
+
+    def shown(self, digits: int) -> str:
+        """Return it with decimals, where none are wanted, only near the limit."""
+        usual = f"{self:.{digits}f}"
+        if float(usual) != 100:
+            return usual
+        told = share_text(self / 100).removesuffix("%")
+        return told.replace("just over ", ">").replace("just under ", "<")
+
+
+def percent(share: float | None) -> OfLimit | None:
+    """Return a share of a limit as a percentage."""
+    return None if share is None or not math.isfinite(share) else OfLimit(100 * share)

@@ -30,8 +30,28 @@ NO_BREAK = "\u00a0"
 Row = TypeVar("Row")
 
 
-class AtLeast(float):
-    """A number that is a lower bound: a plus for people, the number in files."""
+class Marked(float):
+    """A number that people see otherwise than just rounded; in files it is the number."""
+
+    def shown(self, digits: int) -> str:
+        """Return it as people see it, with so many decimals where there are any."""
+        raise NotImplementedError
+
+
+class AtLeast(Marked):
+    """A lower bound: shown with a plus."""
+
+    def shown(self, digits: int) -> str:
+        """Return the number with a plus."""
+        return f"{self:.{digits}f}+"
+
+
+class Starred(Marked):
+    """A number with a reservation that stands below the table: shown with a star."""
+
+    def shown(self, digits: int) -> str:
+        """Return the number with a star."""
+        return f"{self:.{digits}f}*"
 
 
 @dataclass(frozen=True, slots=True)
@@ -90,7 +110,7 @@ class Table:
                 break
             least = min(droppable, key=lambda i: self.columns[i].keep)
             columns.remove(least)
-            left_out.append(" ".join(self.columns[least].header.split()))
+            left_out.append(" ".join(self.columns[least].header.split()).replace("- ", ""))
             text = self._render(columns)
         notes = self._notes(columns)
         if left_out:
@@ -212,7 +232,9 @@ def _cell(value: object, column: Column) -> str:
     if value is None:
         return "-"
     if column.digits is not None and isinstance(value, (int, float)):
-        return f"{value:.{column.digits}f}{'+' if isinstance(value, AtLeast) else ''}"
+        if isinstance(value, Marked):
+            return value.shown(column.digits)
+        return f"{value:.{column.digits}f}"
     plain = f"{float(f'{value:.4g}'):g}" if isinstance(value, float) else str(value)
     text = column.short.get(plain, plain)
     if column.wrap:

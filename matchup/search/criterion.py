@@ -6,14 +6,14 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from matchup.analysis.cells import UNSOUND, Cells, job_demands
+from matchup.analysis.cells import OPEN, UNSOUND, Cells, job_demands
 from matchup.analysis.rig import Rig, Tell
 from matchup.analysis.window import WindowFinder
 from matchup.model.job import Job
 from matchup.model.stage import Stage
 from matchup.search.option import Option
 from matchup.search.reach import scaled
-from matchup.wave.layout import Floats
+from matchup.wave.layout import Floats, Integers
 
 MULTIPLES = tuple(round(0.4 + 0.1 * i, 1) for i in range(15))
 """Of the target's resistance, for the table of sets."""
@@ -44,7 +44,10 @@ class Criterion:
     needed : float or None
         Resistance long after driving to be proven; None where the job does not say. [N]
     proving : (strokes,) float64 array or None
-        Set that proves it; NaN where none does, or a stress limit breaks. [m]
+        Set that proves it; NaN where none does: it would be below `least`, or a stress limit
+        breaks. [m]
+    least : float
+        The refusal set: below it a blow does not mobilise the ground, and proves nothing. [m]
     """
 
     stage: Stage
@@ -56,6 +59,7 @@ class Criterion:
     stress_uses: Floats
     needed: float | None
     proving: Floats | None
+    least: float
 
 
 def find_criterion(
@@ -70,13 +74,14 @@ def find_criterion(
     needed = job.drive.capacity if job.drive else None
     if needed is not None:
         multiples.append(needed / _later(stage))
+    least = min(one.set_needed for one in job.stages)
     stages = tuple(
-        replace(scaled(stage, multiple), name=f"{row}") for row, multiple in enumerate(multiples)
+        replace(scaled(stage, multiple), name=f"{row}", set_needed=least)
+        for row, multiple in enumerate(multiples)
     )
     rig = Rig(replace(job, stages=stages, hammers=(option.hammer,), drive=None), workers, tell)
     finder = WindowFinder(rig, job_demands(rig).without_set())
-    count = finder.strokes[0].size
-    at = np.arange(max(0, plan.at - STROKES_EACH_WAY), min(count, plan.at + STROKES_EACH_WAY + 1))
+    at = _settings(rig, rig.stacks.index(option.stack), plan.at, needed is not None)
     shape = (len(stages), at.size)
     sets, uses = np.full((2, *shape), np.nan)
     rows = [row for row in range(len(stages)) if not rig.runs(row, 0)]
@@ -91,8 +96,8 @@ def find_criterion(
         worst = np.maximum(struck.compression / limits.compression, struck.tension / limits.tension)
         uses[rows] = worst.reshape(len(rows), at.size)
     later = np.array([_later(one) for one in stages])
-    # A stroke that breaks a limit is none to prove anything with.
-    provable = (sets[-1] > 0) & (uses[-1] <= 1)
+    # A stroke that breaks a limit, or hardly moves the pile, is none to prove anything with.
+    provable = (sets[-1] >= least) & (uses[-1] <= 1)
     known = slice(0, len(MULTIPLES))
     return Criterion(
         stage=stage,
@@ -104,7 +109,21 @@ def find_criterion(
         stress_uses=uses[known],
         needed=needed,
         proving=None if needed is None else np.where(provable, sets[-1], np.nan),
+        least=least,
     )
+
+
+def _settings(rig: Rig, stack: int, planned: int, to_prove: bool) -> Integers:
+    """Return settings around the planned one, and the one nearest to it that can prove."""
+    finder = WindowFinder(rig, job_demands(rig))
+    last = finder.strokes[0].size - 1
+    at = np.arange(max(0, planned - STROKES_EACH_WAY), min(last, planned + STROKES_EACH_WAY) + 1)
+    row = len(rig.job.stages) - 1
+    if not to_prove or rig.runs(row, 0):
+        return at
+    cell = Cells(*(np.array([place]) for place in (row, 0, stack)))
+    proving = finder.nearest(cell, np.array([planned]))
+    return np.union1d(at, proving.at) if proving.state[0] == OPEN else at
 
 
 def _later(stage: Stage) -> float:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field
 
 from matchup.model.cushion import Stack
@@ -35,6 +36,8 @@ VERDICTS = (
 )
 """Worst news first."""
 CAN_DRIVE = (DRIVES, REDUCED)
+HOPELESS = 10.0
+"""Shortfall from which it says no more how far a stage is from working. [-]"""
 FINE = (DRIVES, GOES_DOWN)
 """Of one stage."""
 
@@ -132,6 +135,11 @@ class StagePlan:
         return self.set / self.stage.set_needed
 
     @property
+    def distance(self) -> float:
+        """The shortfall, but the same for all that are hopeless; infinite where no blow tells."""
+        return min(self.shortfall, HOPELESS) if math.isfinite(self.shortfall) else math.inf
+
+    @property
     def stress_use(self) -> float:
         """The larger use of a stress limit [-]."""
         return max(self.compression_use, self.tension_use)
@@ -152,7 +160,7 @@ class CaseDrive:
     required : bool
         Whether an option must manage it.
     plans : tuple of StagePlan
-        Station by station.
+        Station by station; empty where a hammer was ruled out before.
     failing : StagePlan or None
         The station that stops it.
     settled : float or None
@@ -170,10 +178,20 @@ class CaseDrive:
     bill: Bill | None = None
 
     @property
+    def reaches(self) -> bool:
+        """Whether the target is reached."""
+        return bool(self.plans) and self.failing is None
+
+    @property
     def taken(self) -> Taken:
         """Blows and time down to the last station that was reached."""
         takings = [plan.taken for plan in self.plans if plan.taken is not None]
         return takings[-1] if takings else Taken()
+
+    @property
+    def most_on_cushion(self) -> float:
+        """The most blows that one pile cushion takes [-]."""
+        return max((plan.taken.on_cushion for plan in self.plans if plan.taken), default=0.0)
 
     @property
     def hardest(self) -> StagePlan | None:

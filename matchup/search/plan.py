@@ -87,12 +87,14 @@ class Planner:
         else:
             certificates = self._study()
         best = self._best()
+        misses = {h: self._nearest(h) for h, c in best.items() if c is None}
+        self._walk_misses(misses)
         softer = self._softer(best)
         shown = [pair for pair in (*best.items(), *softer.items()) if pair[1] is not None]
         self._find_ends([(h, c) for h, c in shown if c is not None])
         return [
             replace(
-                self._miss(h) if c is None else self._option(h, c, softer.get(h)),
+                self._miss(h, misses[h]) if c is None else self._option(h, c, softer.get(h)),
                 certificate=certificates[h],
                 analyses=int(self.rig.spent_on[h]),
             )
@@ -241,10 +243,18 @@ class Planner:
         return min(max(failing.shortfall, 1e-6), 1e9)
 
     def _failing(self, hammer: int, stack: int) -> StagePlan | None:
-        """Return the failing stage with the worst news, or None where all stages work."""
-        plans = self._required(self.stage_plans(hammer, stack))
-        failing = [plan for plan in plans if plan.verdict not in FINE]
-        return min(failing, key=lambda p: VERDICTS.index(p.verdict), default=None)
+        """Return the stage that is farthest from working, or None where all stages work.
+
+        Over several ground cases a hammer may fail at several stages: what helps at this one is
+        the most likely to help at the others. Of hopeless ones it is that with the most resistance.
+        """
+        plans = (*self._targets[hammer, stack], *self._ways.get((hammer, stack), ()))
+        failing = [plan for plan in self._required(plans) if plan.verdict not in FINE]
+        return max(
+            failing,
+            key=lambda p: (p.distance, p.stage.resistance, -VERDICTS.index(p.verdict)),
+            default=None,
+        )
 
     def _merit(self, hammer: int, stack: int) -> tuple[float, ...]:
         """Ties of cost go to the thinner cushion, then lower compression, then catalogue order.
@@ -364,7 +374,7 @@ class Planner:
             target=target,
             cost=self.cost(hammer, stack),
             cases=tuple(
-                replace(case, bill=None if case.failing else self._bill(hammer, stack, case.taken))
+                replace(case, bill=self._bill(hammer, stack, case.taken) if case.reaches else None)
                 for case in self._cases(hammer, plans)
             ),
             runner_up=None if softer is None else self._option(hammer, softer),
@@ -393,19 +403,27 @@ class Planner:
             return "tension"
         return "stroke range" if target.at == 0 else "set"
 
-    def _miss(self, hammer: int) -> Option:
+    def _nearest(self, hammer: int) -> int:
         """Return the nearest miss: the stack whose failing stage falls short by the least."""
         stacks = [c for h, c in self._targets if h == hammer]
-        nearest = min(stacks, key=lambda c: (self._excess(hammer, c), c))
+        return min(stacks, key=lambda c: (self._excess(hammer, c), c))
+
+    def _walk_misses(self, misses: dict[int, int]) -> None:
+        """Find how far nearest misses get in every ground case of a drive."""
+        if self.rig.job.drive is not None:
+            self._look_on_the_way([(h, c) for h, c in misses.items() if not self._runs(h)])
+
+    def _miss(self, hammer: int, nearest: int) -> Option:
         failing = self._failing(hammer, nearest)
         assert failing is not None
         plans = self.stage_plans(hammer, nearest)
+        told = {plan.stage.name for plan in plans}
         return Option(
             hammer=self.rig.job.hammers[hammer],
             verdict=failing.verdict,
             governs=GOVERNS[failing.verdict],
             stack=self.rig.stacks[nearest],
-            plans=plans,
+            plans=plans if failing.stage.name in told else (*plans, failing),
             target=self.target_plan(hammer, nearest),
             cases=self._cases(hammer, plans),
             cost=math.inf,

@@ -43,7 +43,7 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
     return Ranking(
         job=replace(job, notices=(*job.notices, *fitting.notes)),
         options=tuple(sorted(driving, key=lambda option: option.cost)),
-        rejected=(*sorted(failing, key=_shortfall), *fitting.unfit),
+        rejected=(*sorted(failing, key=_distance), *fitting.unfit),
         analyses=spent,
         runtime=time.perf_counter() - started,
     )
@@ -65,6 +65,7 @@ def _check_objective(job: Job) -> None:
         raise InputError([Problem(job.file, None, "search.objective", must, "cost", do)])
 
 
-def _shortfall(option: Option) -> float:
+def _distance(option: Option) -> tuple[float, float]:
+    """Return how far an option is from working; the hopeless are told apart by their reach."""
     assert option.failing is not None
-    return option.failing.shortfall
+    return option.failing.distance, -(option.reach or 0.0)

@@ -24,6 +24,7 @@ from matchup.analysis.cells import (
     Cells,
     Found,
 )
+from matchup.analysis.rig import Rig
 from matchup.analysis.window import WindowFinder
 from matchup.model.job import Course, Job
 from matchup.search.option import (
@@ -80,8 +81,15 @@ def stage_plan(finder: WindowFinder, found: Found, row: int) -> StagePlan:
         shortfall=math.inf if state in (RUNS, UNSOUND) else float(excess),
         lifted=bool(found.lifted[row]),
         why=rig.why_unsound(stage, hammer, stack) if state == UNSOUND else "",
-        wear="" if wear == EVERY_WEAR else rig.wears[wear],
+        wear=_wear_name(rig, stack, wear),
     )
+
+
+def _wear_name(rig: Rig, stack: int, wear: int) -> str:
+    """Return the one wear state that counts; nothing where there are several, or no cushion."""
+    if wear != EVERY_WEAR:
+        return rig.wears[wear]
+    return rig.wears[0] if len(rig.wears) == 1 and rig.stacks[stack].pile else ""
 
 
 @dataclass(slots=True)

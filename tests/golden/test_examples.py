@@ -23,6 +23,8 @@ FIGURES = (
     "peak_compression_MPa",
     "peak_tension_MPa",
     "reach_ratio",
+    "blows_total",
+    "drive_minutes",
 )
 TOLERANCE = 1e-6
 """Room for the order of operations of other processors and compilers, relative. [-]"""
@@ -36,7 +38,7 @@ def figures(name: str) -> list[dict[str, object]]:
     return [{key: entry[key] for key in (*EXACT, *FIGURES)} for entry in entries]
 
 
-@pytest.mark.parametrize("name", examples.NAMES)
+@pytest.mark.parametrize("name", [*examples.NAMES, *examples.DRIVES])
 def test_an_example_gives_what_it_gave(name, update_golden):
     today = figures(name)
     stored = json.loads(STORED.read_text(encoding="utf-8")) if STORED.exists() else {}

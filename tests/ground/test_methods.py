@@ -89,7 +89,10 @@ def test_what_is_missing_is_named_with_what_would_do():
     ground = Ground(Profile((sand(0, 12), clay(12, 30, 50 * KPA)), 1.0), soft_over_dense_sounding())
     found = lacking("stevens 1982", ground)
     assert found["layers.2.ocr"] == "must be given for Stevens et al. 1982 (clay, 12-30 m)"
-    assert found["method"] == ("must be one that the ground suffices for: api 2011, alm hamre 2001")
+    with pytest.raises(ModelError) as caught:
+        unit_of("stevens 1982", ground, CLOSED, [10.0])
+    would_do = "With what is there these would do: api 2011, alm hamre 2001."
+    assert {fault.do for fault in caught.value.faults} == {would_do}
 
 
 def test_a_sounding_alone_suffices_for_alm_and_hamre():
@@ -178,7 +181,7 @@ def test_clay_needs_sleeve_friction_where_layers_say_clay():
 def test_alm_and_hamre_has_no_rock():
     rock = Profile((sand(0, 20), Layer(20, 30, "rock", 23e3)), 1.0)
     found = lacking("alm hamre 2001", Ground(rock, soft_over_dense_sounding()))
-    assert set(found) == {"layers.2.soil", "method"}
+    assert set(found) == {"layers.2.soil"}
 
 
 def test_choices_and_ground_check_themselves():

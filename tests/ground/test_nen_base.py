@@ -98,13 +98,13 @@ def fields(section, choices, tip=15.0) -> dict[str, str]:
 
 
 def test_a_companion_must_be_named():
-    assert set(fields(SQUARE, Choices())) == {"companion", "method"}
-    assert set(fields(SQUARE, Choices(companion="table"))) == {"companion", "method"}
+    assert set(fields(SQUARE, Choices())) == {"companion"}
+    assert set(fields(SQUARE, Choices(companion="table"))) == {"companion"}
 
 
 @pytest.mark.parametrize("section", [TUBE, H])
 def test_open_sections_are_refused(section):
-    assert set(fields(section, Choices(companion="api 2011"))) == {"section", "method"}
+    assert set(fields(section, Choices(companion="api 2011"))) == {"section"}
 
 
 def test_the_sounding_must_reach_four_diameters_below_the_toe():

@@ -103,3 +103,60 @@ class Desk:
         problems = self.problems(*args, **kwargs)
         assert len(problems) == 1, "\n".join(map(str, problems))
         return problems[0]
+
+
+GROUND = """\
+[ground]
+layers = "layers.csv"
+method = "api 2011"
+start = "3 m"
+every = "1 m"
+cases = { low = 0.8, best = 1.0, high = 1.2 }
+[target]
+penetration = "21 m"
+set = "4 mm"
+"""
+DRIVE = JOB[: JOB.index("[[stages]]")] + GROUND + JOB[JOB.index("[limits]") :]
+LAYERS = """\
+top [m],bottom [m],soil,unit_weight [kN/m3],density,strength [kPa],water [m]
+0,8.2,clay,17,,30,1
+8.2,25,sand,20,dense,,
+"""
+TABLE = """\
+depth [m],shaft_best [kN],toe_best [kN],kind
+0,0,50,driving
+30,1000,900,
+"""
+CONE = "depth [m],cone resistance [MPa],sleeve friction [MPa]\n" + "".join(
+    f"{0.1 * row:.1f},{5 + 0.04 * row:.2f},{0.05 + 0.0004 * row:.4f}\n" for row in range(1, 281)
+)
+"""A cone test of sand, from 0.1 m to 28 m; invented."""
+
+
+class DriveDesk(Desk):
+    """A desk whose jobs are whole drives, with the files of the ground beside them."""
+
+    def drive(
+        self,
+        *pairs: tuple[str, str],
+        layers: str = LAYERS,
+        table: str = TABLE,
+        cone: str | bytes = CONE,
+    ) -> Job:
+        """Load the drive with the first occurrence of every pair's left side replaced."""
+        self.put("layers.csv", layers)
+        self.put("table.csv", table)
+        self.put("cone.csv", cone)
+        return self.load(replaced(DRIVE, *pairs))
+
+    def told(self, *pairs: tuple[str, str], **files: str) -> list[Problem]:
+        """The problems of such a drive."""
+        with pytest.raises(InputError) as caught:
+            self.drive(*pairs, **files)
+        return list(caught.value.problems)
+
+    def one(self, *pairs: tuple[str, str], **files: str) -> Problem:
+        """The only problem of such a drive."""
+        problems = self.told(*pairs, **files)
+        assert len(problems) == 1, "\n".join(map(str, problems))
+        return problems[0]

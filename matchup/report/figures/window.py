@@ -91,7 +91,7 @@ def window_figure(
     most = max(panel.rows.size for panel in panels)
     height = min(2.9, 0.8 + 0.16 * most)
     with drawing():
-        title = f"{map_place(found)}: {map_answer(found, units)}"
+        title = f"{map_place(found, units)}: {map_answer(found, units)}"
         figure = new_figure(title, height * down + 0.55)
         across = min(ACROSS, len(panels))
         grid = figure.subplots(down, across, squeeze=False, sharex=True)

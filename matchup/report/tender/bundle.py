@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 
 from matchup.analysis.single import Blow
+from matchup.report.closing import ground
 from matchup.report.document import blow_document, ranking_document
 from matchup.report.driven import stations_table
 from matchup.report.mapped import map_table
@@ -111,7 +112,8 @@ def _rejected_table(dossier: Dossier, units: Units) -> Table:
 
 def _sources_table(dossier: Dossier, units: Units) -> Table:
     job = dossier.job
-    lines = (*rests_on(job, units), *METHOD, *warned(job))
+    soil = [line for prose in ground(job, units) for line in prose.lines]
+    lines = (*soil, *rests_on(job, units), *METHOD, *warned(job))
     return Table(
         (Column("text", "limits, sources, defaults and method"),), tuple((x,) for x in lines)
     )

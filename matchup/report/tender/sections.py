@@ -8,17 +8,13 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from matchup.report.bills import bills_blocks
-from matchup.report.driven import (
-    answer,
-    cases_table,
-    chosen_case,
-    criterion_page,
-    stations_table,
-)
+from matchup.report.closing import ground
+from matchup.report.driven import answer, cases_table, chosen_case, stations_table
 from matchup.report.one_blow import figures_table
 from matchup.report.options import margins_table, options_table, schedule_table
 from matchup.report.page import Block, Headline, Prose
 from matchup.report.picture import Picture
+from matchup.report.proven import criterion_page
 from matchup.report.ranked import REACH, failures, softer_prose
 from matchup.report.sentences import (
     CAUTION,
@@ -28,6 +24,7 @@ from matchup.report.sentences import (
     searched,
     verdict_sentence,
     warned,
+    where,
 )
 from matchup.report.shown import Units
 from matchup.report.table import Column, Table
@@ -189,8 +186,8 @@ def _window(dossier: Dossier, units: Units) -> Section:
     picture = _picture(
         "window",
         window_figure(found, units, chosen),
-        f"Where {option.hammer.name} works at stage {found.stage.name!r}, by stroke and cushion, "
-        "and what closes each edge.",
+        f"Where {option.hammer.name} works {where(found.stage, dossier.job, units)}, by stroke and "
+        "cushion, and what closes each edge.",
     )
     return Section(f"Strokes and cushions for {option.hammer.name}", (picture,))
 
@@ -205,14 +202,15 @@ def _blows(dossier: Dossier, units: Units) -> Section | None:
         why = "where the stress is highest"
         if number == 1:
             why = "at the target" if dossier.detail.drives else "where it fails"
+        at = where(blow.stage, dossier.job, units)
         blocks += [
-            Headline(f"Stage {blow.stage.name!r}, {why}:"),
+            Headline(f"{at[0].upper()}{at[1:]}, {why}:"),
             _picture(
                 f"blow_{number}",
                 blow_figure(blow, dossier.job.pile, units),
-                f"One blow of {blow.hammer.name} at stage {blow.stage.name!r}: force in the pile "
-                "over time and position, the record at the head, and the largest stresses along "
-                "the pile against their limits.",
+                f"One blow of {blow.hammer.name} {at}: force in the pile over time and position, "
+                "the record at the head, and the largest stresses along the pile against their "
+                "limits.",
             ),
             figures_table(blow, units),
         ]
@@ -235,7 +233,8 @@ def _inputs(dossier: Dossier, units: Units) -> Section:
 
 def _methods(dossier: Dossier, units: Units) -> Section:
     lines = (*METHOD, *rests_on(dossier.job, units), searched(dossier.ranking, timed=False))
-    return Section("Methods, sources and what was taken by default", (Prose(lines),))
+    blocks = (*ground(dossier.job, units), Prose(lines))
+    return Section("Methods, sources and what was taken by default", blocks)
 
 
 def _cautions(dossier: Dossier, units: Units) -> Section:
