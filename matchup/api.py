@@ -695,6 +695,7 @@ def blow(
     hammer: str | None = None,
     stroke: float | str | None = None,
     *,
+    energy: float | str | None = None,
     stage: str | None = None,
     cushion: str | None = None,
     sheets: int | None = None,
@@ -713,6 +714,9 @@ def blow(
         the target, the wear state the first of the job's.
     stroke, thickness : float, str or None
         [m], or a text with its unit.
+    energy : float, str or None
+        In place of a stroke: the blow energy, ram weight times stroke, or the setting of a hammer
+        that is set by energy. [J], or a text with its unit.
     sheets : int or None
     best : bool
         Take stroke and cushions of the hammer's best plan, so none of them may be given.
@@ -727,6 +731,7 @@ def blow(
     job = _job(job)
     problems: list[Problem] = []
     stroke = _quantity(stroke, "stroke", "stroke", problems)
+    stroke = _stroke_of(job, hammer, stroke, energy, problems)
     thickness = _quantity(thickness, "thickness", "thickness", problems)
     selection = Selection(hammer, stage, cushion, sheets, thickness, wear, hammer_cushion)
     pick = _best_plan if best else _select
@@ -844,11 +849,34 @@ def _quantity(
         return None
 
 
+def _stroke_of(
+    job: Job,
+    hammer: str | None,
+    stroke: float | None,
+    energy: float | str | None,
+    problems: list[Problem],
+) -> float | None:
+    """Return the stroke, or the one that an energy is equivalent to."""
+    if energy is None:
+        return stroke
+    if stroke is not None:
+        must = "must be left out together with a stroke"
+        problems.append(Problem(None, None, "energy", must, str(energy)))
+        return stroke
+    joules = _quantity(energy, "energy", "energy", problems)
+    if joules is None:
+        return None
+    try:
+        return select_hammer(job, hammer).stroke_of(joules)
+    except InputError as error:
+        raise InputError([*problems, *error.problems]) from None
+
+
 def _select(
     job: Job, selection: Selection, stroke: float | None, problems: list[Problem]
 ) -> tuple[Selected, float]:
     if stroke is None and not problems:
-        do = 'For example "0.6 m", or --best for the best plan of the hammer.'
+        do = 'For example "0.6 m", an energy, or --best for the best plan of the hammer.'
         problems.append(Problem(None, None, "stroke", "must be given", "nothing", do))
     if stroke is not None and not 0 < stroke < float("inf"):
         problems.append(Problem(None, None, "stroke", "must be > 0", f"{stroke:g} m"))

@@ -20,7 +20,7 @@ from matchup.model.hammer import STANDARD_GRAVITY, Hammer
 from matchup.model.job import Analysis
 from matchup.model.pile import Pile, Section, concrete_modulus
 from matchup.model.stage import SHAFT_DAMPING, Stage
-from matchup.wave.layout import COLUMNS, LANES, Bar, Blows, Grounds
+from matchup.wave.layout import COLUMNS, Bar, Blows, Grounds
 from matchup.wave.march import march
 
 STIFF = 1e4
@@ -167,8 +167,7 @@ def hit(
         bar,
         soil(nodes) if grounds is None else grounds,
         blows,
-        np.zeros(LANES, np.int64),
-        (0, LANES),
+        np.zeros(1, np.int64),
         (least, most),
         out,
         envelope,
@@ -236,26 +235,28 @@ def _concrete(rng: np.random.Generator) -> Pile:
     width = rng.uniform(0.25, 0.5)
     length = rng.uniform(12.0, min(35.0, 80 * width))
     modulus = concrete_modulus(strength)
-    return Pile("concrete", Section.square(width), length, modulus, 2400.0, strength, 5e6)
+    return Pile.uniform("concrete", Section.square(width), length, modulus, 2400.0, strength, 5e6)
 
 
 def _steel(rng: np.random.Generator) -> Pile:
     diameter = rng.uniform(0.27, 0.76)
     toe = str(rng.choice(("open", "closed")))
     section = Section.pipe(diameter, rng.uniform(8e-3, 16e-3), toe)
-    return Pile("steel", section, rng.uniform(15.0, 45.0), 210e9, 7850.0, 355e6)
+    return Pile.uniform("steel", section, rng.uniform(15.0, 45.0), 210e9, 7850.0, 355e6)
 
 
 def _timber(rng: np.random.Generator) -> Pile:
     section = Section.round(rng.uniform(0.25, 0.35))
-    return Pile("timber", section, rng.uniform(8.0, 16.0), rng.uniform(8.6e9, 10.3e9), 800.0, 25e6)
+    return Pile.uniform(
+        "timber", section, rng.uniform(8.0, 16.0), rng.uniform(8.6e9, 10.3e9), 800.0, 25e6
+    )
 
 
 def _pile_cushion(rng: np.random.Generator, pile: Pile) -> tuple[Spring, bool]:
-    if pile.material == "steel" or (pile.material == "timber" and rng.random() < 0.5):
+    if pile.toe.material == "steel" or (pile.toe.material == "timber" and rng.random() < 0.5):
         return pile_contact(pile), False
     material = PLYWOOD if rng.random() < 0.6 else OAK
-    thickest = 0.35 if pile.material == "concrete" else 0.12
+    thickest = 0.35 if pile.toe.material == "concrete" else 0.12
     thickness = rng.uniform(0.08, thickest)
     cushion = Cushion(material, thickness, pile.section.area)
     return cushion.spring("new" if rng.random() < 0.5 else "worn"), True
@@ -266,7 +267,7 @@ def _stage(rng: np.random.Generator, pile: Pile, hammer: Hammer, stroke: float) 
     penetration = pile.length * rng.uniform(0.35, 0.98)
     set_wished = 10 ** rng.uniform(math.log10(0.5e-3), math.log10(30e-3))
     energy = hammer.blow_energy(stroke) * hammer.efficiency
-    resistance = min(0.5 * energy / (set_wished + 4e-3), 0.6 * pile.strength * section.area)
+    resistance = min(0.5 * energy / (set_wished + 4e-3), 0.6 * pile.toe.strength * section.area)
     weight = STANDARD_GRAVITY * (pile.mass + (hammer.helmet_mass or 0.0) + hammer.ram_mass)
     resistance = max(resistance, 3 * weight)
     toe_share = rng.uniform(0.05, 0.95)

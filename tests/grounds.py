@@ -21,7 +21,7 @@ H = Section.h(0.0168, 0.346, 0.373)
 
 
 def pile(section: Section, length: float = 45.0) -> Pile:
-    return Pile("steel", section, length, 210e9, 7850.0, 355 * MPA)
+    return Pile.uniform("steel", section, length, 210e9, 7850.0, 355 * MPA)
 
 
 def sand(top: float, bottom: float, density: str = "medium dense", **given) -> Layer:

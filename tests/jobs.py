@@ -38,16 +38,18 @@ SOFT_BLOCK = HammerCushion("soft block", Spring(0.4e9, 0.6))
 def concrete(width: float = 0.35, length: float = 14.0, prestress: float = 5e6) -> Pile:
     strength = 50e6
     modulus = concrete_modulus(strength)
-    return Pile("concrete", Section.square(width), length, modulus, 2400.0, strength, prestress)
+    return Pile.uniform(
+        "concrete", Section.square(width), length, modulus, 2400.0, strength, prestress
+    )
 
 
 def tube(diameter: float = 0.4, wall: float = 0.012, length: float = 18.0) -> Pile:
     section = Section.pipe(diameter, wall, "closed")
-    return Pile("steel", section, length, 210e9, 7850.0, 310e6)
+    return Pile.uniform("steel", section, length, 210e9, 7850.0, 310e6)
 
 
 def timber(diameter: float = 0.32, length: float = 11.0) -> Pile:
-    return Pile("timber", Section.round(diameter), length, 9.45e9, 800.0, 8.6e6)
+    return Pile.uniform("timber", Section.round(diameter), length, 9.45e9, 800.0, 8.6e6)
 
 
 def hydraulic(tonnes: float, stroke_max: float = 1.2, name: str = "", **more: object) -> Hammer:

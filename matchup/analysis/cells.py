@@ -14,6 +14,8 @@ from matchup.wave.layout import Flags, Floats, Integers
 
 FREE_STROKE_STEP = 0.01
 """Steps in which a freely set stroke is planned. [m]"""
+FREE_SHARE = 0.01
+"""Steps in which a freely set energy is planned, of the largest. [-]"""
 EVERY_WEAR = -1
 RUNS, UNSOUND, NO_SET, COMPRESSION, TENSION, OPEN = range(6)
 """State of a cell or a stroke: the pile runs; a blow could not be trusted; the set is not reached
@@ -83,7 +85,8 @@ def job_demands(rig: Rig) -> Demands:
 
 def settings(hammer: Hammer) -> Floats:
     """Return the strokes [m] that can be planned, from the least in steps, and the largest."""
-    step = hammer.stroke_step or FREE_STROKE_STEP
+    free = FREE_SHARE * hammer.stroke_max if hammer.set_by_energy else FREE_STROKE_STEP
+    step = hammer.stroke_step or free
     span = hammer.stroke_max - hammer.stroke_min
     whole = math.floor(span / step + 1e-9)
     strokes: Floats = hammer.stroke_min + step * np.arange(whole + 1, dtype=np.float64)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import NamedTuple
 
 import numpy as np
@@ -13,16 +14,20 @@ from matchup.errors import AnalysisError
 from matchup.model.cushion import Spring
 from matchup.model.hammer import STANDARD_GRAVITY, Hammer
 from matchup.model.job import Analysis
-from matchup.model.pile import Pile
+from matchup.model.pile import Part, Pile
 from matchup.model.stage import Stage
-from matchup.wave.layout import Bar, Blows, Floats, Grounds, Integers
+from matchup.wave.layout import SUBSTEPS, Bar, Blows, Floats, Grounds, Integers
 from matchup.wave.rest import rest
 
-CUSHIONED_TRAVEL = 0.125e-3
-"""Longest travel time of a segment under a pile cushion, about 0.5 m of concrete. [s]"""
+CUSHIONED_TRAVEL = 0.145e-3
+"""Longest travel time of a segment under a pile cushion, about 0.57 m of concrete. [s]"""
 BARE_TRAVEL = 0.08e-3
 """The same for a helmet on the pile, where the wave front is steeper: 0.4 m of steel. [s]"""
+TIMBER_TRAVEL = 0.07e-3
+"""The same for a timber pile, whose small impedance hardly damps the ringing of the helmet. [s]"""
 FEWEST_SEGMENTS = 16
+MORE_SEGMENTS = 1.5
+"""A pile of several parts may be cut into so many times the segments, to round their times less."""
 HEAD_ACCURACY = 0.3
 """Sub-step of the head times the largest circular frequency of ram and helmet."""
 RAM_CONTACT = Spring(3.5e9, 0.9)
@@ -35,83 +40,126 @@ SOFT_TOE_SHARE = 0.2
 """Below this share of the toe in the resistance, the set is measured with the mean quake."""
 
 
-class Part(NamedTuple):
-    """A length of pile of one section and material, head first."""
-
-    length: float
-    wave_speed: float
-    impedance: float
-    area: float
-    density: float
-
-
-def pile_parts(pile: Pile) -> tuple[Part, ...]:
-    """Return the parts of a pile from head to toe."""
-    return (Part(pile.length, pile.wave_speed, pile.impedance, pile.section.area, pile.density),)
-
-
-def cut_bar(parts: Sequence[Part], gravity: bool, segments: int) -> tuple[Bar, Floats]:
-    """Cut a pile into segments of equal travel time.
-
-    A part gets the whole number of segments nearest to its travel time over the common step, at
-    least one, keeping its length, section, impedance and weight. What rounding changes is its
-    travel time, by at most half a step, and with it in the same ratio its inertia. For a pile of
-    one part there is no rounding.
+class Cut(NamedTuple):
+    """A pile cut into segments.
 
     Parameters
     ----------
-    parts : sequence of Part
-        Head first.
-    gravity : bool
-        Whether the nodes have weight.
-    segments : int
-        Number wanted in all.
-
-    Returns
-    -------
     bar : Bar
     depth : (nodes,) float64 array
         Distance of the nodes from the head. [m]
+    part : (segments,) int64 array
+        Which part of the pile's column a segment belongs to.
     """
-    times = np.array([part.length / part.wave_speed for part in parts])
-    step = times.sum() / segments
-    counts = np.maximum(1, np.rint(times / step)).astype(int)
-    per_part = [
-        np.array([p.length / n, p.impedance, p.area, p.density])
-        for p, n in zip(parts, counts, strict=True)
-    ]
-    length, impedance, area, density = np.repeat(per_part, counts, axis=0).T
+
+    bar: Bar
+    depth: Floats
+    part: Integers
+
+
+def segment_counts(pile: Pile, segments: int) -> Integers:
+    """Return the number of segments of each part.
+
+    They are shared out by travel time, what is left over to the parts that fall shortest, so that
+    the travel time of the whole pile is exact and that of a part is off by less than one step. A
+    part that is crossed in less than a step gets one segment all the same.
+    """
+    times = np.array([part.travel_time for part in pile.column])
+    share = times / times.sum() * segments
+    counts: Integers = np.maximum(1, np.floor(share + 1e-9)).astype(np.int64)
+    for _ in range(segments - int(counts.sum())):
+        counts[np.argmax(share - counts)] += 1
+    return counts
+
+
+def cut_bar(pile: Pile, gravity: float, segments: int) -> Cut:
+    """Cut a pile into segments of equal travel time.
+
+    A part keeps its length, section, impedance and weight. What rounding changes is its travel
+    time, see `segment_counts`, and with it in the same ratio its inertia. For a pile of one part
+    there is no rounding. A driving shoe makes the last segment as much heavier as it weighs.
+
+    Parameters
+    ----------
+    pile : Pile
+    gravity : float
+        Along the pile; zero for nodes without weight. [m/s2]
+    segments : int
+        Number wanted in all.
+    """
+    counts = segment_counts(pile, segments)
+    step = sum(part.travel_time for part in pile.column) / int(counts.sum())
+    rows = np.array(
+        [row for p, n in zip(pile.column, counts, strict=True) for row in _segments(p, int(n))]
+    )
+    length, impedance, area, mass = rows.T
     weight = np.zeros(length.size + 1)
-    if gravity:
-        half = 0.5 * STANDARD_GRAVITY * density * area * length
-        weight[:-1] += half
-        weight[1:] += half
+    weight[:-1] += 0.5 * gravity * mass
+    weight[1:] += 0.5 * gravity * mass
+    weight[-1] += gravity * pile.shoe_mass
+    impedance[-1] += pile.shoe_mass / step
     depth = np.concatenate(([0.0], np.cumsum(length)))
-    return Bar(float(step), impedance.copy(), area.copy(), weight), depth
+    bar = Bar(step, impedance.copy(), area.copy(), weight)
+    return Cut(bar, depth, np.repeat(np.arange(counts.size), counts))
+
+
+def _segments(part: Part, count: int) -> list[tuple[float, float, float, float]]:
+    """Return length, impedance, bearing area and mass of the segments of a part, head first.
+
+    Of a tapered part impedance and mass are those of the mean area of a segment; the area that a
+    stress is reckoned on is that at its upper end, and of the last one that of the toe, so that
+    stresses at nodes are those of the section there.
+    """
+    section, length = part.section, part.length / count
+    ends = np.linspace(0.0, 1.0, count + 1).tolist()
+    means = [section.area_between(a, b) / section.area for a, b in pairwise(ends)]
+    nodes = [section.area_at(share) / section.area for share in (*ends[:-2], 1.0)]
+    return [
+        (
+            length,
+            mean * part.impedance,
+            node * part.bearing_area,
+            mean * part.mass_per_length * length,
+        )
+        for mean, node in zip(means, nodes, strict=True)
+    ]
 
 
 def enough_segments(pile: Pile, cushioned: bool, stages: Sequence[Stage] = ()) -> int:
     """Return the number of segments that meets the accuracy asked of a blow.
 
     Found by comparing random realistic blows with refinements; the figures stand in the
-    contributor guide. A timber pile takes the finer step even under a cushion, since its small
-    impedance hardly damps the ringing of the helmet. Very stiff toes shorten the step further, so
-    that the toe spring gives way less in half a step than the pile.
+    contributor guide. Very stiff toes shorten the step further, so that the toe spring gives way
+    less in half a step than the pile. Of several parts, so many more that the rounding of their
+    travel times is least.
     """
-    longest = CUSHIONED_TRAVEL if cushioned and pile.material != "timber" else BARE_TRAVEL
+    longest = CUSHIONED_TRAVEL if cushioned else BARE_TRAVEL
+    if any(part.material == "timber" for part in pile.column):
+        longest = TIMBER_TRAVEL
     for stage in stages:
         if stage.toe > 0:
-            longest = min(longest, 2 * pile.impedance * stage.toe_quake / stage.toe)
-    return max(FEWEST_SEGMENTS, math.ceil(pile.length / pile.wave_speed / longest))
+            longest = min(longest, 2 * pile.toe.impedance * stage.toe_quake / stage.toe)
+    times = np.array([part.travel_time for part in pile.column])
+    least = max(FEWEST_SEGMENTS, math.ceil(float(times.sum()) / longest))
+    if times.size == 1:
+        return least
+
+    def rounding(segments: int) -> float:
+        counts = segment_counts(pile, segments)
+        return float(np.abs(counts * times.sum() / counts.sum() / times - 1).max())
+
+    candidates = range(least, math.ceil(MORE_SEGMENTS * least) + 1)
+    return min(candidates, key=rounding)
 
 
 def pile_contact(pile: Pile) -> Spring:
     """Return the spring between helmet and pile where there is no pile cushion."""
-    stiffness = pile.modulus * pile.section.area / PILE_CONTACT_LENGTH
+    head = pile.head
+    stiffness = head.impedance_at(0.0) * head.wave_speed / PILE_CONTACT_LENGTH
     return Spring(stiffness, PILE_CONTACT_RESTITUTION)
 
 
-def shaft_strengths(stage: Stage, pile_length: float, depth: Floats) -> Floats:
+def shaft_strengths(stage: Stage, column_length: float, depth: Floats) -> Floats:
     """Return a stage's shaft resistance lumped at the nodes.
 
     Each node takes what acts along half a segment to either side, from the exact integral of the
@@ -119,6 +167,8 @@ def shaft_strengths(stage: Stage, pile_length: float, depth: Floats) -> Floats:
 
     Parameters
     ----------
+    column_length : float
+        Of the pile, with its follower. [m]
     depth : (nodes,) float64 array
         Distance of the nodes from the head. [m]
 
@@ -127,7 +177,7 @@ def shaft_strengths(stage: Stage, pile_length: float, depth: Floats) -> Floats:
     (nodes,) float64 array
         [N]
     """
-    below_ground = depth - (pile_length - stage.penetration)
+    below_ground = depth - (column_length - stage.penetration)
     edges = np.concatenate(
         ([below_ground[0]], 0.5 * (below_ground[1:] + below_ground[:-1]), [below_ground[-1]])
     )
@@ -171,7 +221,11 @@ class Chains:
     hammers : tuple of Hammer
     stages : tuple of Stage
     gravity : float
-        Standard gravity, or zero. [m/s2]
+        Along the pile, or zero. [m/s2]
+    part : (segments,) int64 array
+        Which part of the pile's column a segment belongs to.
+    rake : float
+        [rad]
     """
 
     bar: Bar
@@ -182,6 +236,8 @@ class Chains:
     hammers: tuple[Hammer, ...]
     stages: tuple[Stage, ...]
     gravity: float
+    part: Integers
+    rake: float
 
 
 def build_chains(
@@ -203,9 +259,9 @@ def build_chains(
     AnalysisError
         If the state at rest can't be found.
     """
-    gravity = STANDARD_GRAVITY if analysis.gravity else 0.0
-    bar, depth = cut_bar(pile_parts(pile), analysis.gravity, segments)
-    strengths = [shaft_strengths(stage, pile.length, depth) for stage in stages]
+    gravity = STANDARD_GRAVITY * math.cos(pile.rake) if analysis.gravity else 0.0
+    bar, depth, part = cut_bar(pile, gravity, segments)
+    strengths = [shaft_strengths(stage, float(depth[-1]), depth) for stage in stages]
     ground_of = np.full((len(stages), len(hammers)), -1, np.int64)
     loads = [gravity * ((h.helmet_mass or 0.0) + h.frame_mass) for h in hammers]
     rams = np.array([gravity * hammer.ram_mass for hammer in hammers])
@@ -240,7 +296,18 @@ def build_chains(
         np.array(settlements).reshape(-1, nodes),
         analysis.damping == "smith",
     )
-    return Chains(bar, depth, grounds, ground_of, weights, tuple(hammers), tuple(stages), gravity)
+    return Chains(
+        bar,
+        depth,
+        grounds,
+        ground_of,
+        weights,
+        tuple(hammers),
+        tuple(stages),
+        gravity,
+        part,
+        pile.rake,
+    )
 
 
 def _settle(stage: Stage, strength: Floats, bar: Bar, load: float) -> Floats | None:
@@ -291,7 +358,7 @@ def head_rows(
     substeps : (blows,) int64 array
         A power of two, so that blows gather in few kinds of groups.
     """
-    table = np.array([_hammer_row(h) for h in chains.hammers])[hammer]
+    table = np.array([_hammer_row(h, chains.rake) for h in chains.hammers])[hammer]
     ram, drive, loading_1, unloading_1, helmet, frame = table.T
     if hammer_stiffness is not None and hammer_restitution is not None:
         own = np.isnan(hammer_stiffness)
@@ -313,16 +380,16 @@ def head_rows(
         )
     )
     frequency = np.sqrt((unloading_1 + unloading) / helmet + unloading_1 / ram)
-    wanted = np.maximum(chains.bar.step * frequency / HEAD_ACCURACY, 1.0)
+    wanted = np.maximum(chains.bar.step * frequency / HEAD_ACCURACY, SUBSTEPS)
     substeps = (2 ** np.ceil(np.log2(wanted))).astype(np.int64)
     return np.ascontiguousarray(head), substeps
 
 
-def _hammer_row(hammer: Hammer) -> tuple[float, ...]:
+def _hammer_row(hammer: Hammer, rake: float) -> tuple[float, ...]:
     spring = hammer.cushion or RAM_CONTACT
     return (
         hammer.ram_mass,
-        hammer.efficiency,
+        hammer.share_at_impact(rake),
         spring.stiffness,
         spring.stiffness / spring.restitution**2,
         hammer.helmet_mass or 0.0,

@@ -17,7 +17,7 @@ POUND_FORCE = POUND_PER_SQUARE_INCH * INCH**2
 FOOT_POUND = POUND_FORCE * 12 * INCH
 KIP = 1000 * POUND_FORCE
 SHORT_TON_FORCE = 2000 * POUND_FORCE
-WSDOT_SHARE = {"drop": 0.28, "air": 0.55, "hydraulic": 0.58}
+WSDOT_SHARE = {"drop": 0.28, "air": 0.55, "hydraulic": 0.58, "double-acting": 0.55}
 """Share of the developed energy that the WSDOT formula counts, by kind of hammer; from memory."""
 
 

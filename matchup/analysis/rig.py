@@ -7,8 +7,9 @@ from typing import NamedTuple
 
 import numpy as np
 
-from matchup.analysis.blow import Strikes, strike
+from matchup.analysis.blow import Strikes
 from matchup.analysis.chain import build_chains, enough_segments, pile_contact
+from matchup.analysis.stress import strike_stressed
 from matchup.model.cushion import WEAR_STATES, Cushion, Spring, Stack
 from matchup.model.job import Job
 from matchup.wave.layout import Flags, Floats, Integers
@@ -23,7 +24,8 @@ class Answers(NamedTuple):
     Parameters
     ----------
     set, compression, tension : (blows,) float64 array
-        [m], and largest stresses, both positive [Pa].
+        [m], and largest stresses, both positive and, where the pile's parts have limits of their
+        own, on the scale of the lowest part [Pa].
     transferred : (blows,) float64 array
         Largest work done on the pile head. [J]
     sound : (blows,) bool array
@@ -143,7 +145,7 @@ class Rig:
     ) -> None:
         if self.tell:
             self.tell(stroke.size)
-        struck = strike(
+        struck, stressed = strike_stressed(
             self.chains,
             Strikes(
                 stage,
@@ -153,13 +155,14 @@ class Rig:
                 stroke,
                 *self._hammer_springs[cushion].T,
             ),
-            workers=self.workers,
+            self.job.limits,
+            self.workers,
         )
         for i in np.flatnonzero(~struck.sound):
             place = (int(stage[i]), int(hammer[i]), int(cushion[i]))
             self._why[place] = f"at a stroke of {stroke[i]:.3g} m {struck.why_unsound(int(i))}"
         fresh = np.column_stack(
-            (struck.set, struck.compression, struck.tension, struck.transferred, struck.sound)
+            (struck.set, stressed.compression, stressed.tension, struck.transferred, struck.sound)
         )
         if self.spent + stroke.size > len(self._answers):
             room = np.empty((2 * (self.spent + stroke.size), 5))

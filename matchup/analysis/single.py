@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 
 from matchup.analysis.blow import Strikes, record_forces, strike
-from matchup.analysis.chain import build_chains, enough_segments, pile_contact, set_quake
+from matchup.analysis.chain import Chains, build_chains, enough_segments, pile_contact, set_quake
+from matchup.analysis.stress import stresses_at_nodes, uses_at_nodes, uses_of_segments
 from matchup.errors import AnalysisError
 from matchup.model.cushion import Cushion, Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
+from matchup.model.limits import StressLimits
 from matchup.model.stage import Stage
 from matchup.wave.layout import COLUMNS, Floats
 
@@ -26,11 +29,15 @@ class Envelope:
         From the head. [m]
     compression, tension : (nodes,) float64 array
         Both positive. [Pa]
+    compression_use, tension_use : (nodes,) float64 array
+        As fractions of the limits there. [-]
     """
 
     distance: Floats
     compression: Floats
     tension: Floats
+    compression_use: Floats
+    tension_use: Floats
 
 
 @dataclass(frozen=True, slots=True)
@@ -91,9 +98,12 @@ class Blow:
     set_rule : str
         Which quake was taken off.
     compression, tension : float
-        Largest stresses, both positive. [Pa]
+        Largest stresses, both positive; where the pile's parts have limits of their own, those with
+        the largest uses of a limit. [Pa]
     compression_at, tension_at : float
         Where they occur, from the head. [m]
+    compression_in, tension_in : str
+        In which part; empty where the pile has one.
     compression_use, tension_use : float
         As fractions of the limits. [-]
     head_force : float
@@ -125,6 +135,8 @@ class Blow:
     tension: float
     compression_at: float
     tension_at: float
+    compression_in: str
+    tension_in: str
     compression_use: float
     tension_use: float
     head_force: float
@@ -136,6 +148,11 @@ class Blow:
     envelope: Envelope
     trace: Trace
     waves: Waves
+
+    @property
+    def left_at_impact(self) -> float:
+        """Share of the blow energy left at impact [-]."""
+        return 0.5 * self.hammer.ram_mass * self.impact_velocity**2 / self.blow_energy
 
     @property
     def cushion(self) -> Cushion | None:
@@ -188,28 +205,30 @@ def compute_blow(
     if not struck.sound[0]:
         raise AnalysisError(f"{what}: {struck.why_unsound(0)}")
     raw = dict(zip(COLUMNS, struck.raw[0], strict=True))
-    area = job.pile.section.area
+    envelope = struck.envelope[0]
+    compression, tension = (_worst(chains, job.limits, envelope, side) for side in range(2))
     step = chains.bar.step
     steps = np.arange(struck.trace.shape[0], dtype=np.float64)
-    compression, tension = float(raw["peak_stress"]), float(raw["tension_stress"])
     return Blow(
         hammer=hammer,
         stage=stage,
         stack=stack,
         wear=wear,
         stroke=stroke,
-        impact_velocity=hammer.impact_velocity(stroke),
+        impact_velocity=hammer.impact_velocity(stroke, job.pile.rake),
         blow_energy=hammer.blow_energy(stroke),
         transferred=float(raw["passed_most"]),
         set=float(struck.set[0]),
         toe_most=float(raw["toe_most"]),
         set_rule=set_quake(stage)[1],
-        compression=compression,
-        tension=tension,
-        compression_at=float(chains.depth[int(raw["peak_node"])]),
-        tension_at=float(chains.depth[int(raw["tension_node"])]),
-        compression_use=compression / job.limits.compression,
-        tension_use=tension / job.limits.tension,
+        compression=compression.stress,
+        tension=tension.stress,
+        compression_at=compression.at,
+        tension_at=tension.at,
+        compression_in=compression.part,
+        tension_in=tension.part,
+        compression_use=compression.use,
+        tension_use=tension.use,
         head_force=float(raw["force_most"]),
         ram_velocity=float(raw["ram_velocity"]),
         balance=float(raw["balance"]),
@@ -218,11 +237,34 @@ def compute_blow(
         duration=float(raw["steps"]) * step,
         envelope=Envelope(
             chains.depth,
-            np.maximum(struck.envelope[0, :, 0], 0.0) / area,
-            np.maximum(-struck.envelope[0, :, 1], 0.0) / area,
+            *stresses_at_nodes(chains, envelope).T,
+            *uses_at_nodes(chains, job.limits, envelope).T,
         ),
         trace=Trace(
             (steps + 0.5) * step, struck.trace[:, 0], struck.trace[:, 1], struck.trace[:, 2]
         ),
         waves=Waves((steps + 1) * step, chains.depth, record_forces(chains, strikes, steps.size)),
+    )
+
+
+class _Worst(NamedTuple):
+    """The stress with the largest use of a limit, and where it occurs."""
+
+    stress: float
+    use: float
+    at: float
+    part: str
+
+
+def _worst(chains: Chains, limits: StressLimits, envelope: Floats, side: int) -> _Worst:
+    """Return the worst stress in compression, side 0, or in tension, side 1."""
+    uses = uses_of_segments(chains, limits, envelope)[..., side]
+    segment, end = (int(at) for at in np.unravel_index(np.argmax(uses), uses.shape))
+    node = segment + end
+    force = abs(float(envelope[node, side])) if uses[segment, end] > 0 else 0.0
+    return _Worst(
+        stress=force / float(chains.bar.area[segment]),
+        use=float(uses[segment, end]),
+        at=float(chains.depth[node]),
+        part=limits.parts[int(chains.part[segment])].part,
     )

@@ -16,6 +16,9 @@ def blow(
     *,
     hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
     stroke: Annotated[str | None, Parameter(help='With its unit: "0.6 m".')] = None,
+    energy: Annotated[
+        str | None, Parameter(help='Instead of a stroke: ram weight times stroke, "35 kJ".')
+    ] = None,
     cushion: Annotated[str | None, Parameter(help="Material of the pile cushion.")] = None,
     sheets: Annotated[int | None, Parameter(help="Number of sheets.")] = None,
     thickness: Annotated[str | None, Parameter(help='Instead of sheets: "150 mm".')] = None,
@@ -40,6 +43,7 @@ def blow(
         job,
         hammer,
         stroke,
+        energy=energy,
         stage=stage,
         cushion=cushion,
         sheets=sheets,

@@ -146,7 +146,7 @@ def _check(pile: Pile, tips: FloatArray, cases: Sequence[Case], pauses: Sequence
     )
     for tip in tips.tolist():
         must = f"must be above 0 and at most the pile's length {pile.length:g} m"
-        rules.must(0 < tip <= pile.length, "penetration", must, tip, "length")
+        rules.must(0 < tip <= pile.length * (1 + 1e-9), "penetration", must, tip, "length")
     names = [case.name for case in cases]
     rules.must(bool(names), "cases", "must hold at least one case", "none")
     rules.must(len(set(names)) == len(names), "cases", "must have different names", names)

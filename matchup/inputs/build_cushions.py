@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from matchup.errors import ModelError, did_you_mean
+from matchup.inputs.build_pile import given_follower, given_parts
 from matchup.inputs.cushions import CushionCatalogue
 from matchup.inputs.findings import some
 from matchup.inputs.job_keys import how_to_write
@@ -64,17 +65,19 @@ def build_cushion_space(
 
 
 def _area(text: JobText, keys: JobKeys, pile: Pile | None) -> float | None:
-    """Return the area that the cushion carries on: given, or a solid pile's head."""
+    """Return the area that the cushion carries on: given, or that of a solid head."""
     assert keys.pile_cushion is not None
     path = ("pile_cushion", "area")
     if keys.pile_cushion.area is not None:
         note_unusual(text, path, keys.pile_cushion.area, "stack area")
         return keys.pile_cushion.area
-    if keys.pile.shape not in ("square", "round") and not text.is_unread("pile", "shape"):
-        must = f"must be given for a pile of the shape {keys.pile.shape}"
+    head = given_follower(keys.pile) or given_parts(keys.pile)[0]
+    shape = head.keys.shape
+    if shape not in ("square", "round", None) and not text.is_unread(*head.at("shape")):
+        must = f"must be given for a pile of the shape {shape}"
         text.wrong(path, must, how_to_write(path))
         return None
-    return pile.section.area if pile else None
+    return pile.head.section.area_at(0.0) if pile else None
 
 
 def _materials(

@@ -17,6 +17,7 @@ from matchup.ground.cases import Case, Loosened, Pause
 from matchup.ground.methods import METHODS
 from matchup.ground.soil import SetupLaw, time_text
 from matchup.ground.stages import resistance_stages
+from matchup.inputs.build_pile import length_of, length_typed
 from matchup.inputs.findings import Findings, shown_fault, shown_path
 from matchup.inputs.ground_told import ground_basis, known_depths, note_without_effect
 from matchup.inputs.job_text import JobText, named_file
@@ -53,6 +54,7 @@ def build_drive(
     given = keys.ground
     assert given is not None
     before = len(findings.problems)
+    _check_pile(text, keys, pile)
     ground = _ground(text, given, findings)
     cases = _cases(text, given, ground.table if ground else None)
     stations = _stations(text, keys, given)
@@ -143,6 +145,16 @@ def _ground(text: JobText, given: GroundKeys, findings: Findings) -> Ground | No
     )
 
 
+def _check_pile(text: JobText, keys: JobKeys, pile: Pile | None) -> None:
+    """Note piles that resistance methods do not know: raked ones, and those of several outlines."""
+    if keys.pile.rake:
+        must = "must be left out with a [ground], which goes by depth"
+        text.wrong(("pile", "rake"), must, "Give [[stages]] along the raked pile.")
+    if pile is not None and len({part.section.perimeter for part in pile.parts}) > 1:
+        must = "must have one outline with a [ground]"
+        text.wrong(("pile", "parts"), must, "Give [[stages]].", "parts of different perimeter")
+
+
 def _cases(text: JobText, given: GroundKeys, table: ResistanceTable | None) -> list[Case]:
     """Return the cases; of a table of resistance each must have its columns."""
     path = ("ground", "cases")
@@ -223,8 +235,9 @@ def _target(text: JobText, keys: JobKeys) -> float | None:
         if getattr(target, key) is None:
             do = f"For example `{key} = {example}`."
             text.wrong(("target", key), "must be given with a [ground]", do)
-    if target.penetration is not None and target.penetration > keys.pile.length:
-        must = f"must be at most the pile's length, {text.typed(('pile', 'length'))}"
+    longest = length_of(keys.pile) * (1 + 1e-9)
+    if target.penetration is not None and target.penetration > longest:
+        must = f"must be at most the pile's length, {length_typed(text, keys.pile)}"
         text.wrong(("target", "penetration"), must)
     return target.penetration
 

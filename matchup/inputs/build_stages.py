@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from matchup.errors import ModelError
+from matchup.inputs.build_pile import length_of, length_typed
 from matchup.inputs.job_text import JobText
 from matchup.inputs.schema import JobKeys, StageKeys
 from matchup.inputs.usual import note_unusual
@@ -36,9 +37,9 @@ def build_stages(text: JobText, keys: JobKeys, pile: Pile | None) -> tuple[Stage
     _check_names(text, keys)
     made = []
     for place, stage in enumerate(keys.stages):
-        if stage.penetration > keys.pile.length:
+        if stage.penetration > length_of(keys.pile) * (1 + 1e-9):
             path = ("stages", place, "penetration")
-            text.wrong(path, f"must be at most the pile's length, {text.typed(('pile', 'length'))}")
+            text.wrong(path, f"must be at most the pile's length, {length_typed(text, keys.pile)}")
         built = _stage(text, keys, place, stage, pile)
         if built is not None:
             made.append(built)

@@ -59,10 +59,17 @@ def _stages(
 
 def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     """Return the job, once every part of it has been looked at."""
-    from matchup.inputs import build_cost, build_cushions, build_pile, build_site, build_stages
+    from matchup.inputs import (
+        build_cost,
+        build_cushions,
+        build_limits,
+        build_pile,
+        build_site,
+        build_stages,
+    )
 
     pile = build_pile.build_pile(text, keys.pile)
-    limits = build_pile.build_limits(text, keys, pile)
+    limits = build_limits.build_limits(text, keys, pile)
     stages, drive = _stages(text, keys, pile, findings)
     analysis, search = build_stages.build_settings(text, keys)
 

@@ -26,6 +26,8 @@ LATER = {
     "repeat_blows": "Repeated blows can't be computed yet; leave the key out.",
 }
 """Keys of jobs that this version can't do, with what to do instead."""
+HOLDERS: tuple[KeyPath, ...] = (("stages",), ("pile", "parts"), ("pile",))
+"""Tables of whose contents one key alone is replaced: lists of them, and what is in a table."""
 WORDS = {
     "string_type": "must be a text",
     "int_type": "must be a whole number",
@@ -51,6 +53,8 @@ def read_keys(text: JobText) -> JobKeys:
         if detail["type"] == "extra_forbidden":
             misspelt |= _tell_unknown(text, path)
             del _holder(data, path)[path[-1]]
+    # Nothing follows from a key that is misspelt: it is told once.
+    text.unread |= {key for key in misspelt if key[-1] not in _holder(data, key)}
     for path, detail in zip(paths, details, strict=True):
         if detail["type"] != "extra_forbidden":
             if path not in misspelt:
@@ -129,12 +133,11 @@ def _holder(data: Any, path: KeyPath) -> Any:
 
 
 def _stand_in(data: dict[str, Any], unread: set[KeyPath], path: KeyPath) -> None:
-    """Replace what holds a wrong value: a whole key, or an element of the stages."""
+    """Replace what holds a wrong value: a whole key, or one of a stage or a part of the pile."""
     unread.add(path)
-    depth = 1 if len(path) == 1 else 2
-    if path[0] == "stages":
-        depth = min(len(path), 3)
-    key = path[:depth]
+    holders = [prefix for prefix in HOLDERS if path[: len(prefix)] == prefix]
+    depth = max(map(len, holders), default=0) + 2 if holders else 2
+    key = path[: min(len(path), depth)]
     unread.add(key)
     holder = _holder(data, key)
     if isinstance(key[-1], int):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Annotated, Any, Literal
@@ -86,6 +87,24 @@ PeakVelocity = Annotated[float, *_key("vibration")]
 Inertia = Annotated[float, *_key("inertia")]
 Duration = Annotated[float, *_key("time", may_be_zero=True)]
 Angle = Annotated[float, *_key("angle")]
+_SLOPE = re.compile(r"1\s*:\s*(\d+\.?\d*)", re.ASCII)
+
+
+def _read_rake(value: Any) -> float:
+    match = _SLOPE.fullmatch(value.strip()) if isinstance(value, str) else None
+    if match is None:
+        return _reader("angle", may_be_zero=True, may_be_negative=False)(value)
+    return math.atan2(1.0, float(match[1]))
+
+
+Rake = Annotated[
+    float,
+    BeforeValidator(_read_rake),
+    WithJsonSchema(
+        {"type": "string", "description": 'from the vertical: an angle, or a slope like "1:6"'}
+    ),
+    OfQuantity("angle"),
+]
 
 
 def _amount(what: str, example: str) -> tuple[Any, ...]:
@@ -183,25 +202,71 @@ class CatalogKeys(Keys):
     cushions: str | None = None
 
 
-class PileKeys(Keys):
-    """The pile; which sizes a shape needs is checked when it is built."""
+class LimitsKeys(Keys):
+    """Driving stress limits."""
 
-    material: Literal["concrete", "steel", "timber"]
-    shape: Literal["square", "round", "pipe", "h", "other"]
-    length: Length
+    rule: Annotated[str, WithJsonSchema({"enum": [*RULES]})] | None = None
+    compression: Share | None = None
+    tension: Share | None = None
+    compression_stress: Stress | None = None
+    tension_stress: Stress | None = None
+    bending: float = 0.0
+    wall_buckling: Share | None = None
+
+
+class FillKeys(Keys):
+    """Concrete in a tube."""
+
     strength: Stress
+    modulus: Stress | None = None
+    density: Density | None = None
+
+
+class SectionKeys(Keys):
+    """Material and section; which sizes a shape needs is checked when it is built."""
+
+    material: Literal["concrete", "steel", "timber"] | None = None
+    shape: Literal["square", "round", "pipe", "h", "other"] | None = None
+    length: Length | None = None
+    strength: Stress | None = None
     strength_at_driving: Stress | None = None
     prestress: Prestress | None = None
     modulus: Stress | None = None
     density: Density | None = None
     width: Size | None = None
     diameter: Size | None = None
+    toe_diameter: Size | None = None
     wall: Thickness | None = None
     toe: Literal["open", "closed"] | None = None
     depth: Size | None = None
     area: Area | None = None
     perimeter: Size | None = None
     toe_area: Area | None = None
+    fill: FillKeys | None = None
+
+
+class PartKeys(SectionKeys):
+    """A part of the pile; what it leaves out is the pile's. Or a follower, which gives all."""
+
+    name: str | None = None
+    limits: LimitsKeys | None = None
+
+
+class PlugKeys(Keys):
+    """Soil that goes along in an open section, from the toe up."""
+
+    length: Length
+    density: Density
+
+
+class PileKeys(SectionKeys):
+    """The pile: of one part, or what its parts have in common."""
+
+    parts: list[PartKeys] | None = None
+    follower: PartKeys | None = None
+    plug: PlugKeys | None = None
+    shoe_mass: Mass | None = None
+    rake: Rake | None = None
 
 
 class HelmetKeys(Keys):
@@ -328,18 +393,6 @@ class TargetKeys(Keys):
     load: Force | None = None
     safety_factor: float | None = None
     resistance_factor: float | None = None
-
-
-class LimitsKeys(Keys):
-    """Driving stress limits."""
-
-    rule: Annotated[str, WithJsonSchema({"enum": [*RULES]})] | None = None
-    compression: Share | None = None
-    tension: Share | None = None
-    compression_stress: Stress | None = None
-    tension_stress: Stress | None = None
-    bending: float = 0.0
-    wall_buckling: Share | None = None
 
 
 class SearchKeys(Keys):

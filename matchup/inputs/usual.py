@@ -49,6 +49,8 @@ USUAL = {
     "pile width": Usual(0.08, 5.0, "length"),
     "pile depth": Usual(0.08, 1.5, "length"),
     "pile diameter": Usual(0.08, 12.0, "length"),
+    "pile toe_diameter": Usual(0.08, 1.0, "length"),
+    "pile shoe_mass": Usual(1.0, 5000.0, "mass"),
     "pile wall": Usual(0.003, 0.3, "thickness"),
     "helmet mass": Usual(10.0, 150e3, "mass"),
     "stack thickness": Usual(0.005, 1.0, "thickness"),

@@ -186,7 +186,7 @@ class Job:
         self._check_site(rules)
         for stage in self.stages:
             rules.must(
-                not stage.penetration > self.pile.length,
+                not stage.penetration > self.pile.length * (1 + 1e-9),
                 f"stages.{stage.name}.penetration",
                 "must be at most the pile's length",
                 stage.penetration,
@@ -237,11 +237,14 @@ class Job:
         )
         if site.standing is not None:
             rules.must(
-                bool(site.standing.inertia or self.pile.section.inertia),
+                bool(site.standing.inertia) or all(p.section.inertia for p in self.pile.parts),
                 "site.inertia",
                 "must be given: the shape of the pile does not tell it",
                 "",
             )
+            must = "must be left out for a raked pile, which can't stand free"
+            safety = site.standing.safety
+            rules.must(not self.pile.rake, "site.buckling_safety", must, safety)
         if site.vibration is not None:
             low, high = site.vibration.published.depth
             outside = [s.penetration for s in self.stages if not low <= s.penetration <= high]

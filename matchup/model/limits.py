@@ -8,11 +8,11 @@ tension.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
-from dataclasses import dataclass
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
 from typing import NamedTuple
 
-from matchup.model.pile import POUND_PER_SQUARE_INCH, Pile
+from matchup.model.pile import POUND_PER_SQUARE_INCH, Part, Pile
 from matchup.model.rules import Rules
 
 KSI = 1000 * POUND_PER_SQUARE_INCH
@@ -39,92 +39,116 @@ class Limit(NamedTuple):
     values: tuple[tuple[str, float], ...] = ()
 
 
+class PartLimits(NamedTuple):
+    """What the blow may do to one part of the pile.
+
+    Parameters
+    ----------
+    part : str
+        Its name; empty for the only one.
+    squeeze, pull : Limit
+        Largest driving stresses in compression and in tension, both positive; infinite where a
+        follower's are not limited.
+    warnings : tuple of str
+        What the engineer should know about these limits.
+    """
+
+    part: str
+    squeeze: Limit
+    pull: Limit
+    warnings: tuple[str, ...] = ()
+
+
 @dataclass(frozen=True, slots=True)
 class StressLimits:
     """What the blow may do to the pile.
 
     Parameters
     ----------
-    squeeze, pull : Limit
-        Largest driving stresses in compression and in tension, both positive.
-    warnings : tuple of str
-        What the engineer should know about these limits.
+    parts : tuple of PartLimits
+        From the helmet to the toe, one for each part of the pile's column.
     """
 
-    squeeze: Limit
-    pull: Limit
-    warnings: tuple[str, ...] = ()
-
-    def __post_init__(self) -> None:
-        rules = Rules("limits")
-        rules.positive("compression", self.compression, "stress")
-        rules.positive("tension", self.tension, "stress")
-        rules.close()
+    parts: tuple[PartLimits, ...]
 
     @property
     def compression(self) -> float:
-        """Largest driving stress in compression [Pa]."""
-        return self.squeeze.stress
+        """Largest driving stress of the lowest part in compression [Pa]."""
+        return self.parts[-1].squeeze.stress
 
     @property
     def tension(self) -> float:
-        """Largest driving stress in tension, positive [Pa]."""
-        return self.pull.stress
+        """Largest driving stress of the lowest part in tension, positive [Pa]."""
+        return self.parts[-1].pull.stress
+
+    @property
+    def differ(self) -> bool:
+        """Whether some parts may bear other stresses than others."""
+        return len({(part.squeeze.stress, part.pull.stress) for part in self.parts}) > 1
+
+    @property
+    def warnings(self) -> tuple[str, ...]:
+        """What the engineer should know about these limits."""
+        return tuple(
+            f"{part.part}: {text}" if part.part else text
+            for part in self.parts
+            for text in part.warnings
+        )
 
 
-def _fy(pile: Pile) -> tuple[tuple[str, float], ...]:
-    return (("fy", pile.strength),)
+def _fy(part: Part) -> tuple[tuple[str, float], ...]:
+    return (("fy", part.strength),)
 
 
-def _concrete(pile: Pile, strength: str) -> tuple[tuple[str, float], ...]:
-    return ((strength, pile.strength), ("fpe", pile.prestress))
+def _concrete(part: Part, strength: str) -> tuple[tuple[str, float], ...]:
+    return ((strength, part.strength), ("fpe", part.prestress))
 
 
-def _aashto_steel(pile: Pile) -> Limit:
-    return Limit(0.9 * pile.strength, "AASHTO LRFD 10.7.8: 0.9 fy", _fy(pile))
+def _aashto_steel(part: Part) -> Limit:
+    return Limit(0.9 * part.strength, "AASHTO LRFD 10.7.8: 0.9 fy", _fy(part))
 
 
-def _aashto_compression(pile: Pile) -> Limit:
-    stress = 0.85 * pile.strength - pile.prestress
-    return Limit(stress, "AASHTO LRFD 10.7.8: 0.85 f'c - fpe", _concrete(pile, "f'c"))
+def _aashto_compression(part: Part) -> Limit:
+    stress = 0.85 * part.strength - part.prestress
+    return Limit(stress, "AASHTO LRFD 10.7.8: 0.85 f'c - fpe", _concrete(part, "f'c"))
 
 
-def _aashto_tension(pile: Pile) -> Limit:
-    allowance = TENSION_ALLOWANCE * math.sqrt(pile.strength / KSI) * KSI
+def _aashto_tension(part: Part) -> Limit:
+    allowance = TENSION_ALLOWANCE * math.sqrt(part.strength / KSI) * KSI
     text = "AASHTO LRFD 10.7.8: 0.095 sqrt(f'c in ksi) + fpe"
-    return Limit(allowance + pile.prestress, text, _concrete(pile, "f'c"))
+    return Limit(allowance + part.prestress, text, _concrete(part, "f'c"))
 
 
-def _aashto_corrosion(pile: Pile) -> Limit:
+def _aashto_corrosion(part: Part) -> Limit:
     text = "AASHTO LRFD 10.7.8, severe corrosion: fpe"
-    return Limit(pile.prestress, text, (("fpe", pile.prestress),))
+    return Limit(part.prestress, text, (("fpe", part.prestress),))
 
 
-def _aashto_timber(pile: Pile) -> Limit:
+def _aashto_timber(part: Part) -> Limit:
     text = "AASHTO LRFD 10.7.8: 1.15 x 2.6 Fco"
-    return Limit(1.15 * 2.6 * pile.strength, text, (("Fco", pile.strength),))
+    return Limit(1.15 * 2.6 * part.strength, text, (("Fco", part.strength),))
 
 
-def _en_concrete(pile: Pile) -> Limit:
-    stress = 0.8 * pile.strength - pile.prestress
-    return Limit(stress, "EN 12699: 0.8 fck - fpe", _concrete(pile, "fck"))
+def _en_concrete(part: Part) -> Limit:
+    stress = 0.8 * part.strength - part.prestress
+    return Limit(stress, "EN 12699: 0.8 fck - fpe", _concrete(part, "fck"))
 
 
-def _en_concrete_monitored(pile: Pile) -> Limit:
+def _en_concrete_monitored(part: Part) -> Limit:
     text = "EN 12699, monitored: 1.1 x 0.8 fck - fpe"
-    return Limit(1.1 * 0.8 * pile.strength - pile.prestress, text, _concrete(pile, "fck"))
+    return Limit(1.1 * 0.8 * part.strength - part.prestress, text, _concrete(part, "fck"))
 
 
-def _en_steel(pile: Pile) -> Limit:
-    return Limit(0.9 * pile.strength, "EN 12699: 0.9 fy", _fy(pile))
+def _en_steel(part: Part) -> Limit:
+    return Limit(0.9 * part.strength, "EN 12699: 0.9 fy", _fy(part))
 
 
-def _en_steel_monitored(pile: Pile) -> Limit:
+def _en_steel_monitored(part: Part) -> Limit:
     text = "EN 12699, monitored: 1.2 x 0.9 fy"
-    return Limit(1.2 * 0.9 * pile.strength, text, _fy(pile))
+    return Limit(1.2 * 0.9 * part.strength, text, _fy(part))
 
 
-_Side = Callable[[Pile], Limit]
+_Side = Callable[[Part], Limit]
 
 RULES: dict[str, dict[str, tuple[_Side, _Side | None]]] = {
     "aashto": {
@@ -189,7 +213,7 @@ class GivenLimits(NamedTuple):
         return sides[0] if side == "compression" else sides[1]
 
     def check(self, material: str) -> None:
-        """Hold the choice itself against a pile's material, without any figure of the pile.
+        """Hold the choice itself against a part's material, without any figure of it.
 
         Raises
         ------
@@ -218,6 +242,20 @@ class GivenLimits(NamedTuple):
                 rules.must(False, side, f"must be given{why}", "", do=_how_to_give(side, not why))
         rules.close()
 
+    def check_walls(self, parts: Sequence[Part]) -> None:
+        """Hold a share of wall buckling against the parts that it is meant for.
+
+        Raises
+        ------
+        ModelError
+            If none of them is a tube whose wall may buckle.
+        """
+        rules = Rules("limits")
+        must = "must be left out where no part is an empty steel tube"
+        tubes = self.wall_buckling is None or any(map(is_empty_tube, parts))
+        rules.must(tubes, "wall_buckling", must, self.wall_buckling)
+        rules.close()
+
 
 def _how_to_give(side: str, by_rule: bool) -> str:
     stress, fraction = ("28 MPa", "0.85") if side == "compression" else ("3 MPa", "0.03")
@@ -226,6 +264,9 @@ def _how_to_give(side: str, by_rule: bool) -> str:
         f'`{side}_stress = "{stress}"`, or a fraction of the strength, for example '
         f"`{side} = {fraction}`."
     )
+
+
+NOT_LIMITED = Limit(math.inf, "not limited")
 
 
 def stress_limits(
@@ -239,6 +280,8 @@ def stress_limits(
     wall_buckling: float | None = None,
 ) -> StressLimits:
     """Return the limits of a pile from a named rule, fractions of strength or stresses.
+
+    They are the same for all parts; those of a follower are not limited.
 
     Parameters
     ----------
@@ -254,24 +297,68 @@ def stress_limits(
     given = GivenLimits(
         rule, compression, tension, compression_stress, tension_stress, bending, wall_buckling
     )
-    given.check(pile.material)
-    squeeze, pull = _limit(pile, given, "compression"), _limit(pile, given, "tension")
+    given.check_walls(pile.parts)
+    parts = tuple(part_limits(part, given) for part in pile.parts)
+    if pile.follower is not None:
+        parts = (part_limits(pile.follower, None), *parts)
+    return StressLimits(parts)
+
+
+def part_limits(part: Part, given: GivenLimits | None) -> PartLimits:
+    """Return the limits of one part; None gives it none.
+
+    Raises
+    ------
+    ModelError
+        Naming the side for which nothing, or more than one thing, is given.
+    """
+    if given is None:
+        return PartLimits(part.name, NOT_LIMITED, NOT_LIMITED)
+    given.check(part.material)
+    squeeze, pull = _filled(part, given, *(_limit(part, given, side) for side in SIDES))
     rules = Rules("limits")
-    if wall_buckling is not None:
-        must = "must be left out for a pile that is not a steel tube"
-        is_tube = pile.material == "steel" and pile.section.wall is not None
-        rules.must(is_tube, "wall_buckling", must, wall_buckling)
-    if wall_buckling is not None and not rules.faults:
-        squeeze = min(squeeze, wall_limit(pile, wall_buckling))
+    if given.wall_buckling is not None and is_empty_tube(part):
+        squeeze = min(squeeze, wall_limit(part, given.wall_buckling))
     for side, limit in zip(SIDES, (squeeze, pull), strict=True):
         must = f"must leave a driving stress > 0 ({limit.text})"
-        rules.must(limit.stress > 0, side, must, limit.stress, "stress")
+        positive = math.isfinite(limit.stress) and limit.stress > 0
+        rules.must(positive, side, must, limit.stress, "stress")
     rules.close()
-    warnings = _warnings(pile, squeeze, pull)
-    return StressLimits(_less_bending(squeeze, bending), _less_bending(pull, bending), warnings)
+    return PartLimits(
+        part.name,
+        _less_bending(squeeze, given.bending),
+        _less_bending(pull, given.bending),
+        _warnings(part, squeeze, pull),
+    )
 
 
-def wall_buckling_stress(pile: Pile) -> float:
+def _filled(part: Part, given: GivenLimits, squeeze: Limit, pull: Limit) -> tuple[Limit, Limit]:
+    """Return the limits of a tube, lowered for what its fill can bear.
+
+    The fill strains with the tube, so its stress is that of the tube by the ratio of the moduli.
+    In tension it cracks, and the tube bears all alone.
+    """
+    fill = part.fill
+    if fill is None:
+        return squeeze, pull
+    concrete = replace(part, material="concrete", strength=fill.strength, fill=None)
+    if given.compression_stress is None:
+        own = _limit(concrete, given, "compression")
+        ratio = part.modulus / fill.modulus
+        if own.stress * ratio < squeeze.stress:
+            text = f"stress of the tube at which the fill reaches its limit, {own.text}"
+            squeeze = Limit(own.stress * ratio, text, own.values)
+    share = part.section.area / part.bearing_area
+    text = f"{pull.text}, the tube bearing alone"
+    return squeeze, Limit(share * pull.stress, text, pull.values)
+
+
+def is_empty_tube(part: Part) -> bool:
+    """Return whether a part is a steel tube whose wall nothing holds from within."""
+    return part.material == "steel" and part.section.wall is not None and part.fill is None
+
+
+def wall_buckling_stress(part: Part) -> float:
     """Return the stress [Pa] at which the wall of a steel tube buckles under axial compression.
 
     Notes
@@ -283,19 +370,19 @@ def wall_buckling_stress(pile: Pile) -> float:
     ----------
     .. [1] API RP 2A-WSD 3.2.2b, from memory.
     """
-    assert pile.section.wall is not None
-    slenderness = pile.section.width / pile.section.wall
-    elastic = 0.6 * pile.modulus / slenderness
+    assert part.section.wall is not None
+    slenderness = part.section.width / part.section.wall
+    elastic = 0.6 * part.modulus / slenderness
     if slenderness <= STOCKY_WALL:
-        return min(pile.strength, elastic)
-    return float(min(pile.strength * (1.64 - 0.23 * slenderness**0.25), elastic))
+        return min(part.strength, elastic)
+    return float(min(part.strength * (1.64 - 0.23 * slenderness**0.25), elastic))
 
 
-def wall_limit(pile: Pile, share: float) -> Limit:
+def wall_limit(part: Part, share: float) -> Limit:
     """Return the limit that the wall of a steel tube sets to compression."""
-    assert pile.section.wall is not None
-    stress = wall_buckling_stress(pile)
-    slenderness = pile.section.width / pile.section.wall
+    assert part.section.wall is not None
+    stress = wall_buckling_stress(part)
+    slenderness = part.section.width / part.section.wall
     text = (
         f"{share:g} of the stress at which the wall buckles, D/t {slenderness:.0f}; API RP 2A-WSD "
         "3.2.2b, from memory"
@@ -310,48 +397,48 @@ def _less_bending(limit: Limit, share: float) -> Limit:
     return limit._replace(stress=(1 - share) * limit.stress, text=text)
 
 
-def _limit(pile: Pile, given: GivenLimits, side: str) -> Limit:
+def _limit(part: Part, given: GivenLimits, side: str) -> Limit:
     fraction, stress = given.side(side)
     if stress is not None:
         return Limit(stress, "driving stress given in the job")
     if fraction is not None:
         sign, word = (-1, "less") if side == "compression" else (1, "plus")
         text = f"{fraction:g} of the strength"
-        values = [("strength", pile.strength)]
-        if pile.prestress:
+        values = [("strength", part.strength)]
+        if part.prestress:
             text += f" {word} effective prestress"
-            values.append(("prestress", pile.prestress))
-        return Limit(fraction * pile.strength + sign * pile.prestress, text, tuple(values))
-    ruled = given.ruled(side, pile.material)
+            values.append(("prestress", part.prestress))
+        return Limit(fraction * part.strength + sign * part.prestress, text, tuple(values))
+    ruled = given.ruled(side, part.material)
     assert ruled is not None
-    return ruled(pile)
+    return ruled(part)
 
 
-def _warnings(pile: Pile, compression: Limit, tension: Limit) -> tuple[str, ...]:
+def _warnings(part: Part, compression: Limit, tension: Limit) -> tuple[str, ...]:
     warnings = []
-    if pile.material == "concrete":
-        allowance = _aashto_tension(pile)
+    if part.material == "concrete":
+        allowance = _aashto_tension(part)
         if tension.stress > allowance.stress * (1 + 1e-9):
             warnings.append(
                 f"the tension limit is {tension.stress / allowance.stress:.2f} times the published "
                 f"allowance ({allowance.text})"
             )
-    if pile.material == "steel":
-        warnings += _warnings_of_wall(pile, compression)
+    if part.material == "steel":
+        warnings += _warnings_of_wall(part, compression)
         for name, limit in (("compression", compression), ("tension", tension)):
-            if limit.stress > pile.strength:
+            if limit.stress > part.strength:
                 warnings.append(f"the {name} limit is above the yield stress ({limit.text})")
     return tuple(warnings)
 
 
-def _warnings_of_wall(pile: Pile, compression: Limit) -> list[str]:
+def _warnings_of_wall(part: Part, compression: Limit) -> list[str]:
     """Return that the wall of a thin tube may buckle before compression reaches its limit."""
-    wall = pile.section.wall
-    if wall is None or pile.section.width <= STOCKY_WALL * wall:
+    wall = part.section.wall
+    if not is_empty_tube(part) or wall is None or part.section.width <= STOCKY_WALL * wall:
         return []
-    if wall_buckling_stress(pile) >= compression.stress:
+    if wall_buckling_stress(part) >= compression.stress:
         return []
-    limit = wall_limit(pile, 1.0)
+    limit = wall_limit(part, 1.0)
     return [
         f"the wall buckles at {limit.stress / 1e6:.0f} MPa, below the compression limit ("
         f"{limit.text.partition(', ')[2]}); `wall_buckling` keeps below that"

@@ -1,4 +1,4 @@
-"""The pile: a straight elastic bar of one section and one material."""
+"""The pile: a straight elastic bar of one part or more, each of one section and material."""
 
 from __future__ import annotations
 
@@ -19,6 +19,8 @@ TIMBER_MODULUS = 9.45e9
 """Middle of 8.6-10.3 GPa, FHWA-NHI-16-009 Table 8-3, as quoted second-hand. [Pa]"""
 TIMBER_DENSITY = 800.0
 """Treated softwood; common practice, no published source. [kg/m3]"""
+STEEPEST_RAKE = math.radians(45)
+"""Beyond it a pile is not driven by a ram that falls. [rad]"""
 POUND_PER_SQUARE_INCH = 6894.757293168361
 """Exact to the digits shown: pound-force (NIST SP 811) over square inch. [Pa]"""
 
@@ -88,8 +90,12 @@ class Section:
         True for a full-displacement pile (solid or closed), False for a coring one.
     core : Core or None
         Soil taken in by an open tube, or by an H whose perimeter and toe area are not given.
+    ends : (float, float) or None
+        Of a tapered section the areas at head and toe, with `area` and `perimeter` the means in
+        between; None where it is the same throughout. [m2]
     inertia : float or None
-        Least second moment of area; None where the shape does not tell it. [m4]
+        Least second moment of area, of a tapered section that of the toe; None where the shape
+        does not tell it. [m4]
     wall : float or None
         Of a tube. [m]
     """
@@ -101,6 +107,7 @@ class Section:
     width: float
     displaces: bool = True
     core: Core | None = None
+    ends: tuple[float, float] | None = None
     inertia: float | None = None
     wall: float | None = None
 
@@ -118,11 +125,28 @@ class Section:
         return cls("square", width**2, 4 * width, width**2, width, inertia=width**4 / 12)
 
     @classmethod
-    def round(cls, diameter: float) -> Section:
-        """Return a solid round section."""
+    def round(cls, diameter: float, toe_diameter: float | None = None) -> Section:
+        """Return a solid round section, tapered in a straight line to `toe_diameter` if given."""
         area = math.pi * diameter**2 / 4
-        inertia = math.pi * diameter**4 / 64
-        return cls("round", area, math.pi * diameter, area, diameter, inertia=inertia)
+        if toe_diameter is None:
+            inertia = math.pi * diameter**4 / 64
+            return cls("round", area, math.pi * diameter, area, diameter, inertia=inertia)
+        rules = Rules("pile section")
+        rules.positive("toe_diameter", toe_diameter, "length")
+        must = "must be at most the diameter, which is that of the head"
+        rules.must(not toe_diameter > diameter, "toe_diameter", must, toe_diameter, "length")
+        rules.close()
+        toe = math.pi * toe_diameter**2 / 4
+        mean = math.pi / 2 * (diameter + toe_diameter)
+        return cls(
+            "round, tapered",
+            _mean(area, toe),
+            mean,
+            toe,
+            toe_diameter,
+            ends=(area, toe),
+            inertia=math.pi * toe_diameter**4 / 64,
+        )
 
     @classmethod
     def pipe(cls, diameter: float, wall: float, toe: str) -> Section:
@@ -147,8 +171,8 @@ class Section:
             diameter,
             closed,
             None if closed else core,
-            math.pi * (diameter**4 - inside**4) / 64,
-            wall,
+            inertia=math.pi * (diameter**4 - inside**4) / 64,
+            wall=wall,
         )
 
     @classmethod
@@ -188,10 +212,52 @@ class Section:
         """Return a section by its figures; its width is that of a square of the toe area."""
         return cls("other", area, perimeter, toe_area, math.sqrt(toe_area))
 
+    def area_at(self, share: float) -> float:
+        """Return the area [m2] at a share of the length from the head."""
+        if self.ends is None:
+            return self.area
+        head, toe = map(math.sqrt, self.ends)
+        return (head + (toe - head) * share) ** 2
+
+    def area_between(self, low: float, high: float) -> float:
+        """Return the mean area [m2] between two shares of the length from the head."""
+        return self.area if self.ends is None else _mean(self.area_at(low), self.area_at(high))
+
+
+def _mean(one: float, other: float) -> float:
+    """Return the mean area of a cone's frustum between two circles."""
+    return (one + math.sqrt(one * other) + other) / 3
+
 
 @dataclass(frozen=True, slots=True)
-class Pile:
-    """One pile.
+class Fill:
+    """Concrete that fills a tube while it is driven, and strains with it.
+
+    Parameters
+    ----------
+    area : float
+        [m2]
+    modulus, density, strength : float
+        [Pa], [kg/m3], cylinder strength at driving [Pa]
+    """
+
+    area: float
+    modulus: float
+    density: float
+    strength: float
+
+    def __post_init__(self) -> None:
+        rules = Rules("fill")
+        rules.positive("area", self.area, "area")
+        rules.positive("modulus", self.modulus, "modulus")
+        rules.positive("density", self.density, "density")
+        rules.positive("strength", self.strength, "stress")
+        rules.close()
+
+
+@dataclass(frozen=True, slots=True)
+class Part:
+    """A length of pile of one section and one material.
 
     Parameters
     ----------
@@ -209,6 +275,12 @@ class Pile:
         value in compression along the grain. [Pa]
     prestress : float
         Effective prestress, a compression. [Pa]
+    name : str
+        Empty for the only part of a pile.
+    fill : Fill or None
+        Of a tube. Stresses of the part are then those of the tube.
+    carried : float
+        Mass per length that goes along and adds no stiffness: a soil plug. [kg/m]
     notes : tuple of str
         Which values are defaults, and their source.
     """
@@ -220,6 +292,9 @@ class Pile:
     density: float
     strength: float
     prestress: float = 0.0
+    name: str = ""
+    fill: Fill | None = None
+    carried: float = 0.0
     notes: tuple[str, ...] = ()
 
     def __post_init__(self) -> None:
@@ -230,6 +305,7 @@ class Pile:
         rules.positive("density", self.density, "density")
         rules.positive("strength", self.strength, "stress")
         rules.not_negative("prestress", self.prestress, "stress")
+        rules.not_negative("carried", self.carried)
         rules.must(
             not self.prestress >= self.strength,
             "prestress",
@@ -244,19 +320,138 @@ class Pile:
             self.prestress,
             "stress",
         )
+        rules.must(
+            self.section.ends is None or (self.fill is None and not self.carried),
+            "section",
+            "must not be tapered where it is filled or plugged",
+            self.section.text,
+        )
         rules.close()
 
     @property
-    def wave_speed(self) -> float:
-        """``sqrt(E / rho)`` [m/s]."""
-        return math.sqrt(self.modulus / self.density)
+    def stiffness(self) -> float:
+        """``E A``, of a tapered part the mean, with its fill [N]."""
+        filled = self.fill.modulus * self.fill.area if self.fill else 0.0
+        return self.modulus * self.section.area + filled
 
     @property
-    def impedance(self) -> float:
-        """``E A / c`` [N s/m]."""
-        return self.modulus * self.section.area / self.wave_speed
+    def mass_per_length(self) -> float:
+        """With fill and plug [kg/m]."""
+        filled = self.fill.density * self.fill.area if self.fill else 0.0
+        return self.density * self.section.area + filled + self.carried
 
     @property
     def mass(self) -> float:
         """Mass [kg]."""
-        return self.density * self.section.area * self.length
+        return self.mass_per_length * self.length
+
+    @property
+    def wave_speed(self) -> float:
+        """``sqrt(E A / m)`` with mass per length `m`; of a plain part ``sqrt(E / rho)`` [m/s]."""
+        return math.sqrt(self.stiffness / self.mass_per_length)
+
+    @property
+    def travel_time(self) -> float:
+        """Of a wave from its head to its toe [s]."""
+        return self.length / self.wave_speed
+
+    @property
+    def impedance(self) -> float:
+        """``E A / c``, of a tapered part the mean [N s/m]."""
+        return self.stiffness / self.wave_speed
+
+    def impedance_at(self, share: float) -> float:
+        """Return the impedance at a share of the length from the head [N s/m]."""
+        return self.impedance * self.section.area_at(share) / self.section.area
+
+    @property
+    def bearing_area(self) -> float:
+        """Force over the stress in the part's own material [m2].
+
+        Of a filled tube its steel and, by the ratio of the moduli, its fill.
+        """
+        return self.stiffness / self.modulus
+
+
+@dataclass(frozen=True, slots=True)
+class Pile:
+    """One pile.
+
+    Parameters
+    ----------
+    parts : tuple of Part
+        Head first.
+    follower : Part or None
+        Stands on the pile, under the helmet, and stays above the ground. The joint is taken as
+        rigid.
+    shoe_mass : float
+        Of a driving shoe at the toe. [kg]
+    rake : float
+        Angle between the pile and the vertical. [rad]
+    """
+
+    parts: tuple[Part, ...]
+    follower: Part | None = None
+    shoe_mass: float = 0.0
+    rake: float = 0.0
+
+    def __post_init__(self) -> None:
+        rules = Rules("pile")
+        rules.must(bool(self.parts), "parts", "must hold at least one part", "none")
+        rules.not_negative("shoe_mass", self.shoe_mass, "mass")
+        must = f"must be 0 to {math.degrees(STEEPEST_RAKE):.0f} deg from the vertical"
+        rules.must(0 <= self.rake <= STEEPEST_RAKE, "rake", must, self.rake, "angle")
+        rules.close()
+
+    @classmethod
+    def uniform(
+        cls,
+        material: str,
+        section: Section,
+        length: float,
+        modulus: float,
+        density: float,
+        strength: float,
+        prestress: float = 0.0,
+    ) -> Pile:
+        """Return a pile of one part."""
+        return cls((Part(material, section, length, modulus, density, strength, prestress),))
+
+    @property
+    def column(self) -> tuple[Part, ...]:
+        """All that the wave runs through, from the helmet to the toe."""
+        return (self.follower, *self.parts) if self.follower else self.parts
+
+    @property
+    def head(self) -> Part:
+        """The part under the helmet."""
+        return self.column[0]
+
+    @property
+    def toe(self) -> Part:
+        """The lowest part."""
+        return self.parts[-1]
+
+    @property
+    def section(self) -> Section:
+        """The section of the toe, which the ground meets."""
+        return self.toe.section
+
+    @property
+    def length(self) -> float:
+        """Without a follower [m]."""
+        return sum(part.length for part in self.parts)
+
+    @property
+    def mass(self) -> float:
+        """Of all that the wave runs through [kg]."""
+        return sum(part.mass for part in self.column) + self.shoe_mass
+
+    @property
+    def notes(self) -> tuple[str, ...]:
+        """Which values are defaults, and their source."""
+        return tuple(
+            f"{part.name}: {note}" if len(self.column) > 1 else note
+            for part in self.column
+            for note in part.notes
+        )

@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterable
 from typing import Any
 
 from matchup.analysis.single import Blow
 from matchup.model.cushion import Cushion
+from matchup.model.hammer import Hammer
 from matchup.model.job import Job
+from matchup.model.limits import PartLimits
 from matchup.report.bills import bill_document
 from matchup.report.sentences import misfit_text, reason
 from matchup.report.shown import Units
@@ -20,20 +23,39 @@ SCHEMA_VERSION = 1
 def limits_document(job: Job) -> dict[str, object]:
     """Return the stress limits and their sources."""
     limits = job.limits
+    parts = [{"part": part.part or None, **_part_limits(part)} for part in limits.parts]
     return {
-        "compression_MPa": limits.compression / 1e6,
-        "tension_MPa": limits.tension / 1e6,
-        "compression_rule": limits.squeeze.text,
-        "compression_values_MPa": {name: value / 1e6 for name, value in limits.squeeze.values},
-        "tension_rule": limits.pull.text,
-        "tension_values_MPa": {name: value / 1e6 for name, value in limits.pull.values},
+        **_part_limits(limits.parts[-1]),
         "warnings": list(limits.warnings),
+        "parts": parts if len(parts) > 1 else None,
     }
+
+
+def _part_limits(part: PartLimits) -> dict[str, object]:
+    """Return both limits of a part; null where they are not limited."""
+    return {
+        "compression_MPa": number(part.squeeze.stress, 1e-6),
+        "tension_MPa": number(part.pull.stress, 1e-6),
+        "compression_rule": part.squeeze.text,
+        "compression_values_MPa": {name: value / 1e6 for name, value in part.squeeze.values},
+        "tension_rule": part.pull.text,
+        "tension_values_MPa": {name: value / 1e6 for name, value in part.pull.values},
+    }
+
+
+def peak(stresses: Iterable[float], job: Job) -> float | None:
+    """Return the largest stress [MPa]; None where parts have limits, and so peaks, of their own."""
+    return None if job.limits.differ else number(max(stresses), 1e-6)
 
 
 def number(value: float | None, scale: float = 1.0) -> float | None:
     """Return a number times `scale`, or None where it is absent or not finite."""
     return None if value is None or not math.isfinite(value) else float(value) * scale
+
+
+def energy_set(hammer: Hammer, stroke: float) -> float | None:
+    """Return a hammer's setting where that is an energy [kJ], and the stroke its equivalent."""
+    return hammer.blow_energy(stroke) / 1e3 if hammer.set_by_energy else None
 
 
 def cushion_document(cushion: Cushion | None) -> dict[str, object] | None:
@@ -86,6 +108,7 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "cushion": cushion_document(option.stack.pile),
         "hammer_cushion": hammer_cushion(option),
         "stroke_m": number(plan.stroke),
+        "energy_set_kJ": number(plan.energy_set, 1e-3),
         "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
         "schedule": (
             [] if option.misfits else [_stage_document(stage_plan) for stage_plan in option.plans]
@@ -94,9 +117,9 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "blows_per_25cm": blows_per_25cm(plan.set),
         "blow_energy_kJ": number(plan.blow_energy, 1e-3),
         "transferred_energy_kJ": number(plan.transferred, 1e-3),
-        "peak_compression_MPa": number(max(p.compression for p in option.plans), 1e-6),
+        "peak_compression_MPa": peak((p.compression for p in option.plans), job),
         "compression_use": number(option.compression_use),
-        "peak_tension_MPa": number(max(p.tension for p in option.plans), 1e-6),
+        "peak_tension_MPa": peak((p.tension for p in option.plans), job),
         "tension_use": number(option.tension_use),
         "blow_rate_per_min": number(plan.blow_rate, 60),
         "blows_total": number(taken.blows) if taken else None,
@@ -123,6 +146,7 @@ def _stage_document(plan: StagePlan) -> dict[str, object]:
         "penetration_m": plan.stage.penetration,
         "verdict": plan.verdict,
         "stroke_m": number(plan.stroke),
+        "energy_set_kJ": number(plan.energy_set, 1e-3),
         "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
         "set_needed_mm": 1e3 * plan.stage.set_needed,
         "set_mm": number(plan.set, 1e3),
@@ -180,6 +204,7 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
         "hammer_cushion": blow.hammer_cushion,
         "wear": blow.wear if blow.cushion else None,
         "stroke_m": blow.stroke,
+        "energy_set_kJ": energy_set(blow.hammer, blow.stroke),
         "impact_velocity_m_s": blow.impact_velocity,
         "blow_energy_kJ": blow.blow_energy / 1e3,
         "transferred_energy_kJ": blow.transferred / 1e3,
@@ -190,8 +215,10 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
         "toe_displacement_max_mm": 1e3 * blow.toe_most,
         "peak_compression_MPa": blow.compression / 1e6,
         "peak_compression_at_m": blow.compression_at,
+        "peak_compression_in": blow.compression_in or None,
         "peak_tension_MPa": blow.tension / 1e6,
         "peak_tension_at_m": blow.tension_at,
+        "peak_tension_in": blow.tension_in or None,
         "compression_use": blow.compression_use,
         "tension_use": blow.tension_use,
         "head_force_peak_kN": blow.head_force / 1e3,
@@ -204,11 +231,19 @@ def blow_document(blow: Blow, traces: bool = False) -> dict[str, Any]:
     if traces:
         envelope, trace = blow.envelope, blow.trace
         document["envelope"] = [
-            {"distance_m": x, "compression_MPa": c / 1e6, "tension_MPa": t / 1e6}
-            for x, c, t in zip(
+            {
+                "distance_m": x,
+                "compression_MPa": c / 1e6,
+                "tension_MPa": t / 1e6,
+                "compression_use": cu,
+                "tension_use": tu,
+            }
+            for x, c, t, cu, tu in zip(
                 envelope.distance.tolist(),
                 envelope.compression.tolist(),
                 envelope.tension.tolist(),
+                envelope.compression_use.tolist(),
+                envelope.tension_use.tolist(),
                 strict=True,
             )
         ]

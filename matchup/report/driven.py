@@ -15,8 +15,9 @@ from matchup.report.document import (
     blows_per_25cm,
     check_document,
     number,
+    peak,
 )
-from matchup.report.options import blow_count, measured, stress_shares
+from matchup.report.options import blow_count, measured, setting_columns, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.proven import criterion_page
 from matchup.report.ranked import foot
@@ -242,7 +243,7 @@ def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:
         measured("shaft", "shaft", "force", units, lambda row: row[1].stage.shaft),
         measured("toe", "toe", "force", units, lambda row: row[1].stage.toe),
         *_modes(rows, units),
-        measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
+        *setting_columns(_plan_of, [plan for _, plan in rows], units),
         measured("set", "set", "set", units, lambda row: row[1].set),
         (blow_count(units), lambda row: _count(row[1], units)),
         *stress_shares(_plan_of),
@@ -322,7 +323,9 @@ def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
         **checked,
         "ground": list(ranking.job.drive.basis) if ranking.job.drive else [],
         "cases": [_case_document(drive, ranking.job) for drive in option.cases],
-        "stations": [_station_document(plan) for drive in option.cases for plan in drive.plans],
+        "stations": [
+            _station_document(plan, ranking.job) for drive in option.cases for plan in drive.plans
+        ],
     }
 
 
@@ -343,7 +346,7 @@ def _case_document(drive: CaseDrive, job: Job) -> dict[str, Any]:
     }
 
 
-def _station_document(plan: StagePlan) -> dict[str, Any]:
+def _station_document(plan: StagePlan, job: Job) -> dict[str, Any]:
     stage = plan.stage
     moves = plan.verdict == GOES_DOWN
     taken = plan.taken
@@ -358,11 +361,12 @@ def _station_document(plan: StagePlan) -> dict[str, Any]:
             {"mode": m.name, "shaft_kN": m.shaft / 1e3, "toe_kN": m.toe / 1e3} for m in stage.modes
         ],
         "stroke_m": number(plan.stroke),
+        "energy_set_kJ": number(plan.energy_set, 1e-3),
         "set_needed_mm": 1e3 * stage.set_needed,
         "set_mm": number(plan.set, 1e3),
         "blows_per_25cm": None if moves else blows_per_25cm(plan.set),
-        "compression_MPa": None if moves else number(plan.compression, 1e-6),
-        "tension_MPa": None if moves else number(plan.tension, 1e-6),
+        "compression_MPa": None if moves else peak((plan.compression,), job),
+        "tension_MPa": None if moves else peak((plan.tension,), job),
         "compression_use": None if moves else number(plan.compression_use),
         "tension_use": None if moves else number(plan.tension_use),
         "transferred_energy_kJ": None if moves else number(plan.transferred, 1e-3),

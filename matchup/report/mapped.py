@@ -16,6 +16,7 @@ from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
     cushion_document,
+    energy_set,
     limits_document,
     number,
 )
@@ -88,13 +89,15 @@ def map_place(found: StrokeMap, units: Units) -> str:
 def map_answer(found: StrokeMap, units: Units) -> str:
     """Return on how many cushions it works, and between which strokes."""
     if not found.is_open:
-        return "no stroke works" + (" on any cushion" if len(found.stacks) > 1 else "")
+        word = "setting" if found.hammer.set_by_energy else "stroke"
+        return f"no {word} works" + (" on any cushion" if len(found.stacks) > 1 else "")
     working = [row for row in found.states if OPEN_CELL in row]
     strokes = [
         float(found.strokes[i]) for row in working for i, s in enumerate(row) if s == OPEN_CELL
     ]
-    low, high = (units.text(stroke, "stroke") for stroke in (min(strokes), max(strokes)))
-    between = f"at {low}" if low == high else f"at strokes of {low} to {high}"
+    low, high = (units.setting(found.hammer, s) for s in (min(strokes), max(strokes)))
+    word = "settings" if found.hammer.set_by_energy else "strokes"
+    between = f"at {low}" if low == high else f"at {word} of {low} to {high}"
     if len(found.stacks) == 1:
         return f"it works {between}"
     return f"it works on {len(working)} of {len(found.stacks)} cushions, {between}"
@@ -130,19 +133,26 @@ class _Grid:
     def _ruler(self, shown: Sequence[int], step: int, room: int) -> str:
         """Return stroke labels over every so many columns that they stand apart."""
         every = -(-LABEL_WIDTH // step)
-        labels = [
-            f"{self.units.value(float(self.found.strokes[i]), 'stroke'):.2f}"
-            for i in shown[::every]
-        ]
+        labels = [self._at(float(self.found.strokes[i])) for i in shown[::every]]
         ruler = "".join(f"{label:<{every * step}}" for label in labels).rstrip()
         return ruler if len(ruler) <= room else ruler[: -len(labels[-1])]
+
+    def _at(self, stroke: float) -> str:
+        """Return a stroke as a label, or the energy that is set for it."""
+        hammer = self.found.hammer
+        if hammer.set_by_energy:
+            return f"{self.units.value(hammer.blow_energy(stroke), 'energy'):.0f}"
+        return f"{self.units.value(stroke, 'stroke'):.2f}"
 
     def _legend(self, shown: int) -> str:
         seen = {state for row in self.found.states for state in row}
         signs = ", ".join(f"{sign} {state}" for state, sign in SIGNS.items() if state in seen)
         strokes = self.found.strokes.size
         some = "" if shown == strokes else f", {shown} of {strokes} for want of width"
-        return f"Across: stroke in {self.units.unit('stroke')}{some}. {signs}."
+        across = f"stroke in {self.units.unit('stroke')}"
+        if self.found.hammer.set_by_energy:
+            across = f"energy set in {self.units.unit('energy')}"
+        return f"Across: {across}{some}. {signs}."
 
 
 def _columns(found: StrokeMap, room: int) -> list[int]:
@@ -195,6 +205,7 @@ def map_document(found: StrokeMap) -> dict[str, Any]:
             "cushion": cushion_document(stack.pile),
             "hammer_cushion": stack.hammer.text if stack.hammer else found.hammer.cushion_text,
             "stroke_m": float(stroke),
+            "energy_set_kJ": energy_set(found.hammer, float(stroke)),
             "state": found.states[row][column],
             "closed_at": found.closed_at[row][column] or None,
             "set_mm": number(float(found.sets[row, column]), 1e3),

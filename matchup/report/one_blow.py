@@ -17,8 +17,8 @@ def blow_page(blow: Blow, job: Job, units: Units) -> Page:
     on = "" if blow.cushion is None else f" on {units.cushion_words(blow.cushion)} ({blow.wear})"
     gives = set_text(blow.set, blow.stage, job, units)
     head = (
-        f"{blow.hammer.name} {where(blow.stage, job, units)}: stroke "
-        f"{units.text(blow.stroke, 'stroke')}{on} gives {gives}."
+        f"{blow.hammer.name} {where(blow.stage, job, units)}: {_setting(blow, units)}{on} gives "
+        f"{gives}."
     )
     notices = blow_notices(blow, job, units)
     noticed = [Prose(tuple(notices))] if notices else []
@@ -43,18 +43,22 @@ def figures_table(blow: Blow, units: Units) -> Table:
         (
             "peak compression",
             units.text(blow.compression, "stress"),
-            f"{share_text(blow.compression_use)} of the limit, "
+            f"{share_text(blow.compression_use)} of the limit{_of(blow.compression_in)}, "
             f"{units.text(blow.compression_at, 'length')} from the head",
         ),
         (
             "peak tension",
             units.text(blow.tension, "stress"),
-            f"{share_text(blow.tension_use)} of the limit, "
+            f"{share_text(blow.tension_use)} of the limit{_of(blow.tension_in)}, "
             f"{units.text(blow.tension_at, 'length')} from the head",
         ),
         ("hammer cushion", "", units.retold(blow.hammer_cushion)),
         ("peak head force", units.text(blow.head_force, "force"), ""),
-        ("blow energy", units.text(blow.blow_energy, "energy"), "ram weight times stroke"),
+        (
+            "blow energy",
+            units.text(blow.blow_energy, "energy"),
+            "the setting" if blow.hammer.set_by_energy else "ram weight times stroke",
+        ),
         (
             "transferred energy",
             units.text(blow.transferred, "energy"),
@@ -63,7 +67,7 @@ def figures_table(blow: Blow, units: Units) -> Table:
         (
             "impact velocity",
             f"{units.value(blow.impact_velocity, 'velocity'):.2f} {units.unit('velocity')}",
-            f"efficiency {100 * blow.hammer.efficiency:.0f}%",
+            _efficiency(blow),
         ),
         (
             "energy audit",
@@ -84,16 +88,31 @@ def figures_table(blow: Blow, units: Units) -> Table:
     return Table(columns, tuple(rows))
 
 
+def _setting(blow: Blow, units: Units) -> str:
+    word = "set at" if blow.hammer.set_by_energy else "stroke"
+    return f"{word} {units.setting(blow.hammer, blow.stroke)}"
+
+
+def _efficiency(blow: Blow) -> str:
+    """Return the share of the energy left at impact, and what a rake leaves of it."""
+    whole, left = (f"{100 * share:.0f}%" for share in (blow.hammer.efficiency, blow.left_at_impact))
+    return f"efficiency {whole}" + ("" if whole == left else f", along the rake {left}")
+
+
+def _of(part: str) -> str:
+    return f" of {part}" if part else ""
+
+
 def blow_notices(blow: Blow, job: Job, units: Units) -> list[str]:
     """Return what lies outside the hammer's settings or the job's cushions, in words."""
     notices = []
     hammer, stroke = blow.hammer, blow.stroke
     if stroke < hammer.stroke_min * (1 - 1e-9):
-        least = units.text(hammer.stroke_min, "stroke")
-        notices.append(f"Notice: the stroke is below the hammer's least of {least}.")
+        least = units.setting(hammer, hammer.stroke_min)
+        notices.append(f"Notice: the setting is below the hammer's least of {least}.")
     elif hammer.stroke_step and not is_setting(hammer, stroke):
-        step = units.text(hammer.stroke_step, "stroke")
-        notices.append(f"Notice: the stroke lies between the hammer's steps of {step}.")
+        step = units.setting(hammer, hammer.stroke_step)
+        notices.append(f"Notice: the setting lies between the hammer's steps of {step}.")
     if blow.cushion and job.cushions and blow.cushion not in job.cushions.cushions():
         words = units.cushion_words(blow.cushion)
         notices.append(f"Notice: {words} are not among the job's cushions.")

@@ -6,7 +6,7 @@ import math
 from collections.abc import Callable, Sequence
 
 from matchup.report.sentences import needed_set, where
-from matchup.report.shown import OfLimit, Units, percent
+from matchup.report.shown import OfLimit, Units, percent, share_text
 from matchup.report.table import AtLeast, Column, Field, Row, Table, tabled
 from matchup.search.option import GOES_DOWN, REDUCED, Option, Ranking, StagePlan
 
@@ -41,7 +41,7 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
         speed = Column(units.speed_key, f"speed\n{units.speed_unit}", 2)
         fields.append((speed, lambda o: units.speed(o.target.speed)))
     fields += [
-        measured("stroke", "stroke", "stroke", units, lambda o: o.target.stroke),
+        *setting_columns(_target_of, [option.target for option in options], units),
         (Column("cushion", "pile\ncushion", wrap=12), lambda o: units.cushion(o.stack.pile)),
     ]
     if any(option.stack.hammer for option in options):
@@ -100,7 +100,7 @@ def schedule_table(options: Sequence[Option], units: Units) -> Table:
             lambda row: row[1].stage.penetration,
             keep=1,
         ),
-        measured("stroke", "stroke", "stroke", units, lambda row: row[1].stroke),
+        *setting_columns(_plan_of, [plan for option in options for plan in option.plans], units),
         (_window(units), lambda row: _range(row[1], units)),
         measured("set", "set", "set", units, lambda row: row[1].set),
         measured("set_needed", "needed", "set", units, lambda row: row[1].stage.set_needed),
@@ -108,6 +108,10 @@ def schedule_table(options: Sequence[Option], units: Units) -> Table:
         *stress_shares(_plan_of),
     ]
     return tabled([(option, plan) for option in options for plan in option.plans], fields)
+
+
+def _target_of(option: Option) -> StagePlan:
+    return option.target
 
 
 def _plan_of(row: tuple[Option, StagePlan]) -> StagePlan:
@@ -130,6 +134,23 @@ def measured(
         keep=keep,
     )
     return column, lambda row: units.value(of(row), quantity)
+
+
+def setting_columns(
+    of: Callable[[Row], StagePlan], plans: Sequence[StagePlan], units: Units
+) -> list[Field[Row]]:
+    """Return the column of strokes, and of settings where some are energies."""
+
+    def stroke(row: Row) -> float:
+        return of(row).stroke
+
+    def energy(row: Row) -> float | None:
+        return of(row).energy_set
+
+    strokes = measured("stroke", "stroke", "stroke", units, stroke)
+    if all(plan.energy_set is None for plan in plans):
+        return [strokes]
+    return [measured("energy_set", "set at", "energy", units, energy), strokes]
 
 
 def stress_shares(of: Callable[[Row], StagePlan]) -> tuple[Field[Row], Field[Row]]:
@@ -196,6 +217,9 @@ def margins_table(option: Option, ranking: Ranking, units: Units) -> Table:
     ):
         if math.isfinite(found):
             peak, most = units.together(found, limit, "stress")
+            if job.limits.differ:
+                # Stresses of parts with limits of their own compare by their use alone.
+                peak, most = f"{share_text(keep * found / limit)} of its limit", share_text(keep)
             rows.append((f"peak {name}", peak, f"at most {most}", 100 * (1 - found / limit)))
     if option.reach is not None:
         reach = f"{option.reach:.2f}{'+' if option.reach_is_open else ''}"

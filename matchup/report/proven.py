@@ -16,7 +16,7 @@ from matchup.search.criterion import Criterion
 
 def criterion_page(found: Criterion, job: Job, units: Units) -> Page:
     """Return what sets mean at the target, and which one proves the resistance asked for."""
-    strokes = [units.text(float(stroke), "stroke") for stroke in found.strokes]
+    strokes = [units.setting(job.hammers[0], float(stroke)) for stroke in found.strokes]
     force, length = units.unit("force"), units.unit("set")
     columns = [
         Column(units.key("driving", "force"), f"while\ndriving\n{force}", 0),
@@ -81,7 +81,7 @@ def _proof(found: Criterion, job: Job, units: Units) -> str:
     needed = f"To prove {units.text(found.needed, 'force')} long after driving{why}"
     proving = [
         f"{units.text(float(set_), 'set')} ({units.blow_count(float(set_)):.0f} blows/"
-        f"{units.counted}) at {units.text(float(stroke), 'stroke')}"
+        f"{units.counted}) at {units.setting(job.hammers[0], float(stroke))}"
         for stroke, set_ in zip(found.strokes, found.proving, strict=True)
         if set_ == set_
     ]

@@ -9,7 +9,7 @@ from collections.abc import Sequence
 from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
-from matchup.model.limits import Limit
+from matchup.model.limits import NOT_LIMITED, Limit, StressLimits
 from matchup.model.stage import Stage
 from matchup.report.bills import per_pile_text
 from matchup.report.shown import Units, share_text
@@ -61,7 +61,7 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
         figure += f", {per_pile_text(best.bill, ranking.job.cost)}"
     return (
         f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
-        f"{units.text(plan.stroke, 'stroke')}{on_stack(best.stack, units)}, {figure}."
+        f"{units.setting(best.hammer, plan.stroke)}{on_stack(best.stack, units)}, {figure}."
     )
 
 
@@ -126,7 +126,7 @@ def reason(option: Option, job: Job, units: Units) -> str:
         return f"{at}{plan.why}{on}"
     if option.drives:
         uses = _uses(option.compression_use, option.tension_use, job)
-        stroke = units.text(plan.stroke, "stroke")
+        stroke = units.setting(option.hammer, plan.stroke)
         does = f"{stroke}{on} gives {set_text(plan.set, plan.stage, job, units)}"
     else:
         uses = _uses(plan.compression_use, plan.tension_use, job)
@@ -147,20 +147,21 @@ def misfit_text(misfit: Misfit, units: Units) -> str:
 def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> str:
     """Return the stroke that explains a failure, and the set that it gives."""
     hammer = option.hammer
-    stroke = f"{units.text(plan.stroke, 'stroke')}{on_stack(option.stack, units)}"
+    stroke = f"{units.setting(hammer, plan.stroke)}{on_stack(option.stack, units)}"
+    word = "setting" if hammer.set_by_energy else "stroke"
     gives = f"gives {set_text(plan.set, plan.stage, job, units)}"
     if option.verdict in SHORT_OF_SET and _is_held(hammer, job):
         return f"the largest stroke allowed here, {stroke}, {gives}"
     if hammer.stroke_min == hammer.stroke_max:
-        return f"its only stroke of {stroke} {gives}"
+        return f"its only {word} of {stroke} {gives}"
     if option.verdict in SHORT_OF_SET:
-        return f"full stroke of {stroke} {gives}"
+        return f"full {word} of {stroke} {gives}"
     if plan.stroke <= hammer.stroke_min:
-        return f"already its lowest stroke of {stroke} {gives}"
+        return f"already its lowest {word} of {stroke} {gives}"
     if hammer.stroke_step:
         return f"the lowest step that reaches the set, {stroke}, {gives}"
     needed = units.text(needed_set(plan.stage, job), "set")
-    return f"a set of {needed} needs a stroke of {stroke}"
+    return f"a set of {needed} needs a {word} of {stroke}"
 
 
 def _is_held(hammer: Hammer, job: Job) -> bool:
@@ -194,12 +195,12 @@ def _held_back(option: Option, job: Job, units: Units) -> str:
         return ""
     held = [plan for plan in option.plans if plan.stroke < option.target.stroke]
     if len(held) > STAGES_NAMED:
-        low, high = (units.text(f(p.stroke for p in held), "stroke") for f in (min, max))
+        low, high = (units.setting(option.hammer, f(p.stroke for p in held)) for f in (min, max))
         between = low if low == high else f"{low} to {high}"
         what = "stages" if job.drive is None else "stations"
         return f"; stroke kept to {between} at {len(held)} of {len(option.plans)} {what}"
     named = [
-        f"{units.text(plan.stroke, 'stroke')} "
+        f"{units.setting(option.hammer, plan.stroke)} "
         + (f"at {plan.stage.name!r}" if job.drive is None else where(plan.stage, job, units))
         for plan in held
     ]
@@ -214,7 +215,7 @@ def _cured(cure: Cure | None, option: Option, units: Units) -> str:
     if cure.set_within is not None and cure.stroke_within is not None:
         words.append(
             f"within the limits it reaches a set of {units.text(cure.set_within, 'set')}, at "
-            f"{units.text(cure.stroke_within, 'stroke')}"
+            f"{units.setting(option.hammer, cure.stroke_within)}"
         )
     if cure.stack is not None:
         words.append(f"{cushions(cure.stack, units)}, more than allowed, would do")
@@ -254,7 +255,7 @@ def softer_sentence(option: Option, objective: str, units: Units) -> str:
     ]
     return (
         f"Softer for {option.hammer.name}: {cushions(softer.stack, units)} at "
-        f"{units.text(softer.target.stroke, 'stroke')}; {', '.join(changes)} of the limit, "
+        f"{units.setting(option.hammer, softer.target.stroke)}; {', '.join(changes)} of the limit, "
         f"{_at_what_cost(option, softer, objective)}."
     )
 
@@ -296,10 +297,7 @@ def warned(job: Job) -> list[str]:
 def rests_on(job: Job, units: Units) -> list[str]:
     """Return limits with their sources, and what was taken by default."""
     limits = job.limits
-    lines = [
-        f"Limits: compression {_limit(limits.squeeze, units)}; "
-        f"tension {_limit(limits.pull, units)}."
-    ]
+    lines = _limits(limits, units)
     keep = job.search.reserve
     if keep:
         lines.append(
@@ -313,8 +311,24 @@ def rests_on(job: Job, units: Units) -> list[str]:
     return lines
 
 
+def _limits(limits: StressLimits, units: Units) -> list[str]:
+    """Return the stress limits, parts with the same ones told together."""
+    told: dict[str, list[str]] = {}
+    for part in limits.parts:
+        both = (_limit(part.squeeze, units), _limit(part.pull, units))
+        text = f"compression {both[0]}; tension {both[1]}"
+        if part.squeeze == part.pull:
+            text = f"compression and tension {both[0]}"
+        told.setdefault(text, []).append(part.part)
+    if len(told) == 1:
+        return [f"Limits: {text}." for text in told]
+    return [f"Limits of {' and '.join(names)}: {text}." for text, names in told.items()]
+
+
 def _limit(limit: Limit, units: Units) -> str:
     """Return a stress limit with its rule, clause, formula and the numbers in it."""
+    if limit == NOT_LIMITED:
+        return limit.text
     values = [f"{name} {units.text(value, 'stress')}" for name, value in limit.values]
     told = f"{limit.text}; {', '.join(values)}" if values else limit.text
     return f"{units.text(limit.stress, 'stress')} ({told})"

@@ -7,6 +7,7 @@ import re
 from dataclasses import dataclass
 
 from matchup.model.cushion import Cushion
+from matchup.model.hammer import Hammer
 from matchup.report.table import Marked
 from matchup.units import display_unit, parse_quantity, to_display
 
@@ -85,6 +86,13 @@ class Units:
         """Return a rest in hours, from three days on in days."""
         hours = si / 3600
         return f"{hours:.3g} h" if hours < 72 else f"{hours / 24:.3g} d"
+
+    def setting(self, hammer: Hammer, stroke: float) -> str:
+        """Return a hammer's setting: its stroke, or its energy with the equivalent stroke."""
+        told = self.text(stroke, "stroke")
+        if not hammer.set_by_energy:
+            return told
+        return f"{self.text(hammer.blow_energy(stroke), 'energy')} ({told})"
 
     def together(self, si: float, bound: float, quantity: str) -> tuple[str, str]:
         """Return a value and its bound with units, in as many decimals as tell them apart."""

@@ -14,6 +14,7 @@ from matchup.analysis.cells import settings
 from matchup.model.cushion import Stack
 from matchup.model.hammer import STANDARD_GRAVITY, Hammer
 from matchup.model.job import Job
+from matchup.model.pile import Pile
 from matchup.model.site import Site, Standing
 from matchup.model.stability import buckling_use
 from matchup.model.vibration import Vibration
@@ -97,7 +98,7 @@ def _available(hammer: Hammer) -> Misfit | None:
 
 
 def _helmet(job: Job, hammer: Hammer) -> Misfit | None:
-    width = job.pile.section.width
+    width = _head_width(job.pile)
     side, bound = "least", hammer.head_min
     if bound is None or width >= bound * (1 - ROUNDING):
         side, bound = "most", hammer.head_max
@@ -105,6 +106,12 @@ def _helmet(job: Job, hammer: Hammer) -> Misfit | None:
             return None
     words = f"its helmet takes piles of at {side} {{}}, and this one is {{}} wide"
     return Misfit("helmet", words, ((bound, "thickness"), (width, "thickness")))
+
+
+def _head_width(pile: Pile) -> float:
+    """Return the width of the pile's head [m]; a tapered one is told by its toe."""
+    head = pile.head.section
+    return head.width if head.ends is None else 2 * math.sqrt(head.ends[0] / math.pi)
 
 
 def _lifted(hammer: Hammer) -> float | None:
@@ -158,18 +165,19 @@ def _slowed(site: Site | None, hammer: Hammer) -> Hammer:
     fastest = hammer.blow_rate(hammer.stroke_min)
     if most is None or fastest is None or fastest <= most:
         return hammer
-    return replace(hammer, blow_rate_max=most)
+    return replace(hammer, pace=most)
 
 
 def _stands(job: Job, site: Site, standing: Standing, hammer: Hammer) -> Misfit | None:
     """Return that a free-standing pile would buckle under helmet, ram and what stands on it."""
     pile = job.pile
-    inertia = standing.inertia or pile.section.inertia
-    assert inertia is not None
+    stiffness = min(
+        part.modulus * (standing.inertia or part.section.inertia or 0.0) for part in pile.parts
+    )
     length = _above_ground(job, site) + standing.fixity
     load = STANDARD_GRAVITY * (hammer.ram_mass + (hammer.helmet_mass or 0.0) + hammer.frame_mass)
     weight = STANDARD_GRAVITY * pile.mass * length / pile.length
-    use = buckling_use(pile.modulus * inertia, length, load, weight)
+    use = buckling_use(stiffness, length, load, weight)
     if use * standing.safety <= 1:
         return None
     words = (
@@ -240,7 +248,7 @@ def _held(job: Job, hammer: Hammer) -> Hammer:
     quiet = quiet_strokes(job, vibration, hammer)
     if (quiet[0], quiet[-1]) == (hammer.stroke_min, hammer.stroke_max):
         return hammer
-    return replace(hammer, stroke_min=quiet[0], stroke_max=quiet[-1])
+    return hammer.within(quiet[0], quiet[-1])
 
 
 # --- telling ------------------------------------------------------------------------------------

@@ -36,10 +36,10 @@ def second_opinion(option: Option, job: Job) -> Opinion:
     blow = LastBlow(
         kind=option.hammer.kind,
         energy=plan.blow_energy,
-        efficiency=option.hammer.efficiency,
+        efficiency=option.hammer.share_at_impact(pile.rake),
         set=plan.set,
         length=pile.length,
-        stiffness=pile.modulus * pile.section.area,
+        stiffness=pile.length / sum(part.length / part.stiffness for part in pile.parts),
     )
     found: dict[str, float | None] = {}
     for formula in FORMULAS:

@@ -107,6 +107,8 @@ class StagePlan:
         The one wear state planned for; empty for every one asked for.
     taken : Taken or None
         In a drive, what it took to get here from the first station.
+    energy_set : float or None
+        The hammer's setting where that is an energy, and the stroke its equivalent. [J]
     """
 
     stage: Stage
@@ -128,6 +130,7 @@ class StagePlan:
     why: str = ""
     wear: str = ""
     taken: Taken | None = None
+    energy_set: float | None = None
 
     @property
     def set_share(self) -> float:
@@ -268,7 +271,8 @@ class Option:
     verdict : str
         One of `VERDICTS`.
     governs : str
-        ``set``, ``compression``, ``tension``, ``stroke range``, ``refusal``, ``weight`` or ``fit``.
+        ``set``, ``compression``, ``tension``, ``stroke range``, ``blow rate``, ``refusal``,
+        ``weight`` or ``fit``.
     stack : Stack
         Cushions.
     plans : tuple of StagePlan

@@ -36,6 +36,7 @@ from matchup.search.option import (
     Taken,
 )
 from matchup.search.way import Walk, case_drives, stage_plan, walk
+from matchup.wave.layout import Integers
 
 GOVERNS = {
     PILE_RUNS: "weight",
@@ -104,6 +105,8 @@ class Planner:
     def _whole(self) -> str:
         if self.rig.job.cushions is None and len(self.rig.stacks) == 1:
             return "exact: no pile cushion to choose"
+        if len(self.rig.stacks) == 1:
+            return "exact: the one cushion given"
         return f"exact: all {len(self.rig.stacks)} cushions"
 
     def _study(self) -> dict[int, str]:
@@ -159,19 +162,38 @@ class Planner:
         cells = Cells(*np.array(keys).T)
         found = self.finder.find(cells)
         if self._is_fast:
-            # The pile goes in fastest at the highest stroke: the set grows at least in proportion
-            # to it, and the blow rate falls at most in inverse proportion. For the same reason it
-            # takes the least blows and the least energy, and so costs the least.
             works = np.flatnonzero(found.state == OPEN)
             if works.size:
                 some = cells.take(works)
                 tops = self.finder.tops(some, found.at[works])
-                found.put(works, self.finder.strike(some, tops))
+                fastest = self._fastest(some, found.at[works], tops)
+                found.put(works, self.finder.strike(some, fastest))
         row = 0
         for pair, keys_of_pair in zip(fresh, per_pair, strict=True):
             rows = range(row, row + len(keys_of_pair))
             self._targets[pair] = tuple(stage_plan(self.finder, found, r) for r in rows)
             row += len(keys_of_pair)
+
+    def _fastest(self, cells: Cells, low: Integers, top: Integers) -> Integers:
+        """Return the settings between two at which the pile goes in fastest.
+
+        That is the highest: the set grows at least in proportion to the stroke, and the blow rate
+        falls at most in inverse proportion. For the same reason it takes the least blows and the
+        least energy, and so costs the least. A rate that falls in a straight line between two given
+        ones may fall faster; then every setting in between is looked at.
+        """
+        best = top.copy()
+        for row, place in enumerate(cells.hammer.tolist()):
+            hammer = self.rig.job.hammers[place]
+            if hammer.blow_rate_full is None:
+                continue
+            at = np.arange(low[row], top[row] + 1)
+            same = cells.take(np.full(at.size, row))
+            sets, _, _ = self.finder.sets(same, at)
+            strokes = self.finder.stroke(same.hammer, at).tolist()
+            rates = np.array([hammer.blow_rate(stroke) for stroke in strokes], float)
+            best[row] = at[np.argmax(rates * sets)]
+        return best
 
     def _look_on_the_way(self, pairs: list[Pair]) -> None:
         """Plan the stages before the targets of pairs not yet planned."""
@@ -185,8 +207,10 @@ class Planner:
 
     def _walks(self, hammer: int, stack: int) -> list[Walk]:
         last = int(self.finder.last_settings(np.array([hammer]))[0])
+        falls = self.rig.job.hammers[hammer].blow_rate_full is not None
+        high = self._is_fast and not falls
         return [
-            Walk(course, hammer, stack, target, last if self._is_fast else target.at)
+            Walk(course, hammer, stack, target, last if high else target.at)
             for course, target in zip(self.courses, self._targets[hammer, stack], strict=True)
         ]
 
@@ -398,6 +422,8 @@ class Planner:
         if self._is_fast:
             if target.at == strokes.size - 1:
                 return "stroke range"
+            if target.top is not None and target.stroke < target.top:
+                return "blow rate"
             return "compression" if target.compression_use > target.tension_use else "tension"
         if target.lifted:
             return "tension"

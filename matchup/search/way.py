@@ -62,6 +62,7 @@ def stage_plan(finder: WindowFinder, found: Found, row: int) -> StagePlan:
     compression, tension = float(found.compression[row]), float(found.tension[row])
     short = demands.set_needed[stage] / set_ if set_ > 0 else 1e9
     excess = max(short, compression / demands.compression, tension / demands.tension) - 1
+    energy = rig.job.hammers[hammer].blow_energy(stroke)
     wear = EVERY_WEAR if found.cells.wear is None else int(found.cells.wear[row])
     return StagePlan(
         stage=rig.job.stages[stage],
@@ -74,7 +75,7 @@ def stage_plan(finder: WindowFinder, found: Found, row: int) -> StagePlan:
         tension=tension,
         compression_use=compression / limits.compression,
         tension_use=tension / limits.tension,
-        blow_energy=rig.job.hammers[hammer].blow_energy(stroke),
+        blow_energy=energy,
         transferred=float(found.transferred[row]),
         blow_rate=rig.job.hammers[hammer].blow_rate(stroke),
         verdict=VERDICT_OF[state],
@@ -82,6 +83,7 @@ def stage_plan(finder: WindowFinder, found: Found, row: int) -> StagePlan:
         lifted=bool(found.lifted[row]),
         why=rig.why_unsound(stage, hammer, stack) if state == UNSOUND else "",
         wear=_wear_name(rig, stack, wear),
+        energy_set=energy if rig.job.hammers[hammer].set_by_energy else None,
     )
 
 
@@ -164,7 +166,8 @@ def _on_the_way(plan: StagePlan, in_drive: bool) -> StagePlan:
     if plan.verdict == PILE_RUNS and in_drive:
         none = dict.fromkeys(("compression", "tension", "compression_use", "tension_use"), 0.0)
         none |= dict.fromkeys(("blow_energy", "transferred", "shortfall"), 0.0)
-        still: dict[str, Any] = {**none, "stroke": math.nan, "set": math.inf, "blow_rate": None}
+        still: dict[str, Any] = {**none, "stroke": math.nan, "set": math.inf}
+        still |= dict.fromkeys(("blow_rate", "energy_set"))
         return replace(plan, verdict=GOES_DOWN, **still)
     if plan.verdict == NOT_REACHED:
         return replace(plan, verdict=REFUSES)

@@ -65,7 +65,7 @@ def wall(job: Job, table: dict[str, Any], typed: str) -> bool:
 def strength(job: Job, table: dict[str, Any], typed: str) -> bool:
     if "strength_at_driving" in table:
         return any(f"in place of {typed}" in note for note in job.pile.notes)
-    return same(job.pile.strength, si(typed, "stress"))
+    return same(job.pile.toe.strength, si(typed, "stress"))
 
 
 def helmet(job: Job, table: dict[str, Any], typed: str) -> bool:
@@ -122,9 +122,15 @@ def hammer_cushion_area(job: Job, table: dict[str, Any], typed: str) -> bool:
 def rule(job: Job, table: dict[str, Any], typed: str) -> bool:
     published = {"aashto": "AASHTO", "en 12699": "EN 12699"}
     name = published["aashto" if typed.startswith("aashto") else "en 12699"]
-    texts = job.limits.squeeze.text + job.limits.pull.text
+    lowest = job.limits.parts[-1]
+    texts = lowest.squeeze.text + lowest.pull.text
     detail = "monitored" not in typed or "monitored" in texts
     return (name in texts and detail) or noticed(job, "limits.rule")
+
+
+def kept(table: dict[str, Any]) -> float:
+    """What a share kept back for bending leaves of the limits."""
+    return 1 - table.get("bending", 0.0)
 
 
 def refusal(job: Job, table: dict[str, Any], typed: str) -> bool:
@@ -136,6 +142,49 @@ def noticed(job: Job, place: str) -> bool:
     return any(f"{place} has no effect" in notice for notice in job.notices)
 
 
+def diameter(job: Job, table: dict[str, Any], typed: str) -> bool:
+    """The diameter of a tapered section shows in the area of its head."""
+    ends = job.pile.section.ends
+    if ends is None:
+        return same(job.pile.section.width, si(typed, "length"))
+    return same(ends[0], math.pi * si(typed, "length") ** 2 / 4)
+
+
+def fill(job: Job, table: dict[str, Any], typed: dict[str, str]) -> bool:
+    made = job.pile.toe.fill
+    dimensions = {"strength": "stress", "modulus": "stress", "density": "density"}
+    return all(same(getattr(made, key), si(typed[key], dimensions[key])) for key in typed)
+
+
+def parts(job: Job, table: dict[str, Any], typed: list[dict[str, Any]]) -> bool:
+    """Every part has its name and length, and what else it says of its material."""
+    made = {part.name: part for part in job.pile.parts}
+    dimensions = {"length": "length", "prestress": "stress", "modulus": "stress"}
+    return all(
+        same(getattr(made[one["name"]], key), si(value, dimensions[key]))
+        for one in typed
+        for key, value in one.items()
+        if key != "name"
+    )
+
+
+def follower(job: Job, table: dict[str, Any], typed: dict[str, Any]) -> bool:
+    made = job.pile.follower
+    return same(made.length, si(typed["length"], "length")) and made.material == typed["material"]
+
+
+def plug(job: Job, table: dict[str, Any], typed: dict[str, str]) -> bool:
+    made = job.pile.toe
+    carried = si(typed["density"], "density") * made.section.core.area
+    return same(made.length, si(typed["length"], "length")) and same(made.carried, carried)
+
+
+def rake(job: Job, table: dict[str, Any], typed: str) -> bool:
+    if ":" in typed:
+        return same(math.tan(job.pile.rake), 1 / float(typed.partition(":")[2]))
+    return same(job.pile.rake, si(typed, "angle"))
+
+
 def section(name: str, dimension: str) -> Check:
     return size(lambda job: getattr(job.pile.section, name), dimension)
 
@@ -145,16 +194,23 @@ JOB_KEYS: dict[str, Check] = {
     "display": lambda job, table, typed: job.display == typed,
     "catalog.hammers": lambda job, table, typed: True,  # its rows are held against the model below
     "catalog.cushions": lambda job, table, typed: True,
-    "pile.material": lambda job, table, typed: job.pile.material == typed,
+    "pile.material": lambda job, table, typed: job.pile.toe.material == typed,
     "pile.shape": lambda job, table, typed: job.pile.section.text.lower().startswith(typed),
     "pile.length": size(lambda job: job.pile.length, "length"),
     "pile.strength": strength,
-    "pile.strength_at_driving": size(lambda job: job.pile.strength, "stress"),
-    "pile.prestress": size(lambda job: job.pile.prestress, "stress"),
-    "pile.modulus": size(lambda job: job.pile.modulus, "stress"),
-    "pile.density": size(lambda job: job.pile.density, "density"),
+    "pile.strength_at_driving": size(lambda job: job.pile.toe.strength, "stress"),
+    "pile.prestress": size(lambda job: job.pile.toe.prestress, "stress"),
+    "pile.modulus": size(lambda job: job.pile.toe.modulus, "stress"),
+    "pile.density": size(lambda job: job.pile.toe.density, "density"),
     "pile.width": width,
-    "pile.diameter": section("width", "length"),
+    "pile.diameter": diameter,
+    "pile.toe_diameter": section("width", "length"),
+    "pile.fill": fill,
+    "pile.parts": parts,
+    "pile.follower": follower,
+    "pile.plug": plug,
+    "pile.shoe_mass": size(lambda job: job.pile.shoe_mass, "mass"),
+    "pile.rake": rake,
     "pile.wall": wall,
     "pile.toe": lambda job, table, typed: job.pile.section.text.endswith(typed),
     "pile.depth": section("width", "length"),
@@ -176,19 +232,28 @@ JOB_KEYS: dict[str, Check] = {
     "hammer_cushion.area": hammer_cushion_area,
     "target.refusal": refusal,
     "limits.rule": rule,
+    "limits.bending": lambda job, table, typed: all(
+        f"less {100 * typed:g}% for bending" in limit.text or not typed
+        for part in job.limits.parts
+        for limit in (part.squeeze, part.pull)
+        if math.isfinite(limit.stress)
+    ),
     "limits.compression": lambda job, table, typed: same(
-        job.limits.compression, typed * job.pile.strength - job.pile.prestress
+        job.limits.compression,
+        kept(table) * (typed * job.pile.toe.strength - job.pile.toe.prestress),
     ),
     "limits.tension": lambda job, table, typed: same(
-        job.limits.tension, typed * job.pile.strength + job.pile.prestress
+        job.limits.tension, kept(table) * (typed * job.pile.toe.strength + job.pile.toe.prestress)
     ),
-    "limits.compression_stress": size(lambda job: job.limits.compression, "stress"),
-    "limits.tension_stress": size(lambda job: job.limits.tension, "stress"),
-    "limits.bending": lambda job, table, typed: (
-        f"less {100 * typed:g}% for bending" in (job.limits.squeeze.text)
+    "limits.compression_stress": lambda job, table, typed: same(
+        job.limits.compression, kept(table) * si(typed, "stress")
     ),
-    "limits.wall_buckling": lambda job, table, typed: (
-        f"{typed:g} of the stress at which the wall buckles" in job.limits.squeeze.text
+    "limits.tension_stress": lambda job, table, typed: same(
+        job.limits.tension, kept(table) * si(typed, "stress")
+    ),
+    "limits.wall_buckling": lambda job, table, typed: any(
+        f"{typed:g} of the stress at which the wall buckles" in part.squeeze.text
+        for part in job.limits.parts
     ),
     "search.objective": lambda job, table, typed: job.search.objective == typed,
     "search.reserve": lambda job, table, typed: job.search.reserve == typed,
@@ -260,7 +325,9 @@ def lost_keys(job: Job, text: str) -> Iterator[str]:
                         yield f"stages {place + 1}.{key}"
         elif isinstance(keys, dict):
             for key, typed in keys.items():
-                if not JOB_KEYS[f"{table}.{key}"](job, keys, typed):
+                if not JOB_KEYS[f"{table}.{key}"](job, keys, typed) and not (
+                    table == "pile" and noticed(job, f"pile.{key}")
+                ):
                     yield f"{table}.{key}"
         elif not JOB_KEYS[table](job, {}, keys):
             yield table
@@ -275,6 +342,7 @@ HAMMER_NUMBERS = {
     "efficiency": "number",
     "stroke_step": "length",
     "blow_rate_max": "rate",
+    "blow_rate_full": "rate",
     "lift_speed": "velocity",
     "rated_energy": "energy",
     "helmet_mass": "mass",
@@ -294,6 +362,11 @@ CUSHION_NUMBERS = {
     "life": "number",
 }
 AMOUNTS = {"day_rate", "mobilisation", "fuel_use", "price"}
+ENERGIES = {
+    "energy_min": lambda hammer: hammer.blow_energy(hammer.stroke_min),
+    "energy_min_share": lambda hammer: hammer.stroke_min / hammer.stroke_max,
+    "energy_step": lambda hammer: hammer.blow_energy(hammer.stroke_step),
+}
 TRUTHS = {"rides_on_pile", "available"}
 TEXTS = {"name", "kind", "use", "source"}
 CUSHION_OF_HAMMER = {
@@ -335,6 +408,9 @@ def shows(item: Hammer | CushionMaterial, name: str, cell: str, unit: str, separ
     if name in AMOUNTS and hasattr(item, name):
         plain = cell.replace(",", ".") if separator != "," else cell
         return getattr(item, name) == (float(plain), unit.replace(" ", ""))
+    if name in ENERGIES and isinstance(item, Hammer):
+        dimension = "number" if name.endswith("share") else "energy"
+        return same(ENERGIES[name](item), number(cell, unit, dimension, separator))
     if name in TRUTHS and isinstance(item, Hammer):
         return getattr(item, name) is (cell.casefold() in {"yes", "y", "true", "1"})
     if name in TEXTS and hasattr(item, name):

@@ -83,7 +83,37 @@ def pile(draw) -> dict[str, str]:
         keys["modulus"] = draw(value("stress", 10e9, 40e9))
     if draw(st.booleans()):
         keys["density"] = draw(value("density", 800, 2500))
-    return keys
+    if keys["shape"] == "round" and draw(st.booleans()):
+        keys["toe_diameter"] = draw(value("size", 0.2, 0.29))
+    if draw(st.booleans()):
+        keys["rake"] = draw(st.sampled_from(["9.5 deg", "1:6", "1 : 4.5", "0.1 rad"]))
+    if draw(st.booleans()):
+        keys["shoe_mass"] = draw(value("mass", 20.0, 300.0))
+    return keys | draw(st.sampled_from([alone, in_parts, plugged, followed]))(draw, keys)
+
+
+def alone(draw, keys: dict[str, str]) -> dict[str, object]:
+    return {}
+
+
+def in_parts(draw, keys: dict[str, str]) -> dict[str, object]:
+    del keys["length"]
+    names = draw(st.lists(words, min_size=2, max_size=3, unique_by=str.casefold))
+    own = {"modulus": draw(value("stress", 10e9, 40e9))} if draw(st.booleans()) else {}
+    return {"parts": [{"name": n, "length": draw(value("length", 13, 20))} | own for n in names]}
+
+
+def plugged(draw, keys: dict[str, str]) -> dict[str, object]:
+    if (keys["shape"] != "h" and keys.get("toe") != "open") or "perimeter" in keys:
+        return {}
+    length, density = draw(value("length", 2, 20)), draw(value("density", 1e3, 2e3))
+    return {"plug": {"length": length, "density": density}}
+
+
+def followed(draw, keys: dict[str, str]) -> dict[str, object]:
+    length = draw(value("length", 1, 5))
+    section = {"material": "steel", "shape": "pipe", "diameter": "0.4 m", "wall": "2 cm"}
+    return {"follower": {**section, "strength": "355 MPa", "length": length}}
 
 
 def thickness(draw) -> object:
@@ -145,6 +175,8 @@ def limits(draw, material: str) -> dict[str, object]:
         if material == "concrete" and not has_tension:
             known = ["aashto"]
         sides["rule"] = draw(st.sampled_from(known))
+    if draw(st.booleans()):
+        sides["bending"] = draw(st.floats(0, 0.3))
     return sides
 
 
@@ -164,7 +196,7 @@ def jobs(draw) -> dict[str, object]:
         "stages": [stage(draw, name) for name in names],
     }
     maybe = {
-        "pile_cushion": lambda: pile_cushion(draw, keys["shape"]),
+        "pile_cushion": lambda: pile_cushion(draw, "pipe" if "follower" in keys else keys["shape"]),
         "hammer_cushion": lambda: {
             "materials": ["nylon"],
             "thickness": thickness(draw),

@@ -187,7 +187,8 @@ def test_every_column_of_a_hammer_is_seen(hammers):
         "fuel_use": ("fuel_use [l / h]", "30"),
         "source": ("source", "invented"),
     }
-    rest = {"hammer_cushion_stiffness", "hammer_cushion_restitution"}
+    rest = {"hammer_cushion_stiffness", "hammer_cushion_restitution", "blow_rate_full"}
+    rest |= {"energy_min", "energy_min_share", "energy_step"}
     assert set(head) | rest == known
     [hammer], problems, _ = hammers(write(",", *map(list, zip(*head.values(), strict=True))))
     assert not problems
@@ -274,7 +275,7 @@ SHARE = "must be above 0 and at most 1"
         (
             {"kind": "hydrualic"},
             "`kind` of A",
-            "must be one of: drop, hydraulic, air",
+            "must be one of: drop, hydraulic, air, double-acting",
             "hydrualic",
             "Did you mean `hydraulic`?",
         ),
@@ -566,13 +567,13 @@ def test_kinds_that_are_not_modelled_are_left_out_with_a_notice(hammers):
 
 
 def test_a_catalogue_of_nothing_but_such_kinds_says_which_were_left_out_and_why(hammers):
-    rows = [["D", "diesel", *[""] * 5], ["V", "double acting", *[""] * 5]]
+    rows = [["D", "diesel", *[""] * 5], ["V", "vibratory", *[""] * 5]]
     found, [problem], _ = hammers(write(",", HEAD, *rows))
     assert not found
     assert problem.must == "must hold a hammer that can be used"
     assert problem.found == (
         "none: D (diesel hammers can't be computed yet); "
-        "V (double-acting hammers can't be computed yet)"
+        "V (vibratory hammers can't be computed yet)"
     )
 
 
@@ -673,3 +674,106 @@ def test_problems_of_all_files_come_in_one_error(desk):
             job=replaced(JOB, ('"24 m"', '"24"')),
         )
     assert [p.file for p in caught.value.problems] == ["job.toml", "cushions.csv", "hammers.csv"]
+
+
+# --- hammers that are set by energy --------------------------------------------------------------
+
+BY_ENERGY = {
+    "name": "name",
+    "kind": "kind",
+    "ram_mass": "ram_mass [t]",
+    "efficiency": "efficiency",
+    "rated_energy": "rated_energy [kJ]",
+    "energy_min": "energy_min [kJ]",
+    "energy_min_share": "energy_min_share",
+    "energy_step": "energy_step [kJ]",
+    "blow_rate_max": "blow_rate_max [1/min]",
+    "blow_rate_full": "blow_rate_full [1/min]",
+}
+DOUBLE = {"name": "D", "kind": "Double Acting", "ram_mass": "2", "efficiency": "0.8"}
+GRAVITY = 9.80665
+
+
+def energy_rows(*rows: dict[str, str], **columns: str) -> bytes:
+    head = BY_ENERGY | columns
+    return write(",", list(head.values()), *([row.get(key, "") for key in head] for row in rows))
+
+
+def test_an_energy_is_a_setting_with_an_equivalent_stroke(hammers):
+    row = DOUBLE | {"rated_energy": "40", "energy_min": "10", "energy_step": "5"}
+    [hammer], problems, _ = hammers(energy_rows(row))
+    assert not problems
+    assert (hammer.kind, hammer.set_by_energy) == ("double-acting", True)
+    weight = 2000 * GRAVITY
+    strokes = (hammer.stroke_min, hammer.stroke_max, hammer.stroke_step)
+    assert strokes == pytest.approx((10e3 / weight, 40e3 / weight, 5e3 / weight), rel=1e-12)
+    assert hammer.blow_energy(hammer.stroke_max) == pytest.approx(40e3, rel=1e-12)
+
+
+def test_the_least_energy_may_be_a_share_and_is_the_rated_one_where_nothing_is_said(hammers):
+    rows = [
+        DOUBLE | {"rated_energy": "40", "energy_min_share": "0.25"},
+        DOUBLE | {"name": "E", "rated_energy": "40"},
+    ]
+    found, problems, _ = hammers(energy_rows(*rows))
+    assert not problems
+    least = [hammer.blow_energy(hammer.stroke_min) for hammer in found]
+    assert least == pytest.approx([10e3, 40e3], rel=1e-12)
+
+
+def test_a_hydraulic_hammer_is_set_by_what_its_row_gives(hammers):
+    columns = {"stroke_min": "stroke_min [m]", "stroke_max": "stroke_max [m]"}
+    hydraulic = DOUBLE | {"kind": "hydraulic", "rated_energy": "40"}
+    rows = [
+        hydraulic | {"energy_min": "10"},
+        hydraulic | {"name": "E", "stroke_min": "0.2", "stroke_max": "1.2"},
+    ]
+    found, problems, _ = hammers(energy_rows(*rows, **columns))
+    assert not problems
+    assert [hammer.set_by_energy for hammer in found] == [True, False]
+
+
+@pytest.mark.parametrize(
+    ("cells", "place", "must"),
+    [
+        ({"rated_energy": ""}, "`rated_energy", "must be given for a hammer that is set by its en"),
+        ({"energy_min": "50"}, "`energy_min` of D", "must be above 0 and at most the rated energy"),
+        ({"energy_min": "0"}, "`energy_min` of D", "must be above 0 and at most the rated energy"),
+        ({"energy_min_share": "1.5"}, "`energy_min_share` of D", "must be above 0 and at most 1"),
+        ({"energy_step": "-1"}, "`energy_step` of D", "must be > 0"),
+        (
+            {"energy_min": "10", "energy_min_share": "0.5"},
+            "`energy_min` of D",
+            "must be left out where `energy_min_share` is given",
+        ),
+        ({"blow_rate_full": "40"}, "`blow_rate_full` of D", "must be given together with `blow_r"),
+        (
+            {"blow_rate_full": "60", "blow_rate_max": "50"},
+            "`blow_rate_full` of D",
+            "must be at most `blow_rate_max`",
+        ),
+        ({"kind": "drop"}, "stroke_min", "must have a column `stroke_min`"),
+    ],
+)
+def test_what_is_wrong_with_an_energy_is_told_once(hammers, cells, place, must):
+    read, problems, _ = hammers(energy_rows(DOUBLE | {"rated_energy": "40"} | cells))
+    assert not read
+    assert problems[0].place.startswith(place)
+    assert problems[0].must.startswith(must)
+    assert len(problems) == (2 if "kind" in cells else 1)
+
+
+def test_a_hammer_has_either_strokes_or_energies(hammers):
+    columns = {"stroke_min": "stroke_min [m]", "stroke_max": "stroke_max [m]"}
+    both = {"stroke_min": "0.2", "stroke_max": "1.2", "energy_min": "10"}
+    rows = [
+        DOUBLE | {"rated_energy": "40"} | both,
+        DOUBLE | {"name": "H", "kind": "hydraulic", "rated_energy": "40"} | both,
+    ]
+    read, problems, _ = hammers(energy_rows(*rows, **columns))
+    assert not read
+    assert [(p.line, p.place) for p in problems] == [
+        (2, "`stroke_min` of D"),
+        (2, "`stroke_max` of D"),
+        (3, "`energy_min` of H"),
+    ]

@@ -194,6 +194,7 @@ def test_the_echo_knows_every_key_and_every_column():
     assert set(echo.STAGE_KEYS) == set(StageKeys.model_fields)
     of_hammer = {
         *echo.HAMMER_NUMBERS,
+        *echo.ENERGIES,
         *echo.TRUTHS,
         *(echo.AMOUNTS - {"price"}),
         *echo.CUSHION_OF_HAMMER,

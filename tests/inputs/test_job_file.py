@@ -478,7 +478,7 @@ def test_defaults_by_soil_are_the_published_ones(desk):
 def test_a_strength_at_driving_takes_the_place_of_the_strength(desk):
     young = 'strength = "50 MPa"\nstrength_at_driving = "40 MPa"'
     job = desk.load(replaced(JOB, ('strength = "50 MPa"', young)))
-    assert job.pile.strength == 40e6
+    assert job.pile.toe.strength == 40e6
     assert "strength at driving 40 MPa in place of 50 MPa" in job.pile.notes
     problem = desk.problem(replaced(JOB, ('strength = "50 MPa"', young), ('"6 MPa"', '"45 MPa"')))
     assert (problem.place, problem.found) == ("pile.prestress", '"45 MPa"')

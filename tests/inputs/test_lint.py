@@ -17,7 +17,7 @@ from matchup.inputs import load_job
 from matchup.inputs.lint import check_files
 from matchup.inputs.schema import job_schema
 from matchup.inputs.starter import starter_files
-from tests.inputs.written import CUSHIONS, HAMMERS, JOB, replaced
+from tests.inputs.written import CONE, CUSHIONS, HAMMERS, JOB, LAYERS, TABLE, replaced
 
 ROOT = Path(__file__).parents[2]
 EXAMPLES = sorted((ROOT / "examples").glob("*/*.toml"))
@@ -31,6 +31,22 @@ def test_what_comes_along_is_sound_and_without_a_notice():
     kinds = [line.rpartition("sound ")[2] for line in sound]
     assert kinds == ["job"] * len(EXAMPLES) + ["cushion catalogue"] + ["hammer catalogue"] * 2
     assert notices == []
+
+
+def test_files_of_the_ground_are_known_by_their_columns_or_how_they_begin(desk):
+    ground = sorted((ROOT / "examples").glob("*/*.[cg]*[vf]"))
+    sound, notices = check_files(ground)
+    kinds = {line.rpartition("sound ")[2] for line in sound}
+    assert kinds == {"table of layers", "table of resistance", "cone test"}
+    assert notices == []
+    desk.put("layers.csv", replaced(LAYERS, ("sand", "sant")))
+    desk.put("table.csv", replaced(TABLE, ("30,1000", "-3,1000")))
+    desk.put("cone.csv", replaced(CONE, ("5.04", "x")))
+    desk.put("cone.gef", "#GEFID= 1, 1, 0\n#EOH=\n")
+    names = ["layers.csv", "table.csv", "cone.csv", "cone.gef"]
+    with pytest.raises(InputError) as caught:
+        check_files([Path(name) for name in names])
+    assert {problem.file for problem in caught.value.problems} == set(names)
 
 
 def test_problems_of_all_files_come_in_the_order_of_the_files(desk):
@@ -50,7 +66,7 @@ def test_problems_of_all_files_come_in_the_order_of_the_files(desk):
         ("cushions.csv", 3),
     ]
     first = caught.value.problems[0]
-    assert first.must == "must have the columns of a hammer or a cushion catalogue"
+    assert first.must == "must have the columns of a catalogue or of a file of the ground"
     assert (first.found, first.do) == ("a b", "Job files end in .toml.")
 
 
@@ -159,7 +175,7 @@ def uncommented(text: str) -> str:
     [
         ('material = "concrete"', 'material = "stone"', "job.pile.material is none of"),
         ('length = "24 m"', "length = 24", "job.pile.length is no string"),
-        ('length = "24 m"', "", "job.pile.length is missing"),
+        ('penetration = "21 m"', "", "job.stages[1].penetration is missing"),
         ('length = "24 m"', 'length = "24 m"\nlenght = "24 m"', "job.pile.lenght is unknown"),
         ('rule = "aashto"', 'rule = "x"', "job.limits.rule is none of"),
         ('rule = "aashto"', "tension = 85", "job.limits.tension is out of range"),
@@ -173,13 +189,14 @@ def test_the_schema_refuses_what_the_reader_refuses(old, new, fault):
 
 
 def test_the_schema_says_what_units_a_key_takes():
-    pile = SCHEMA["$defs"]["PileKeys"]["properties"]
-    assert pile["length"] == {
+    stage = SCHEMA["$defs"]["StageKeys"]["properties"]
+    assert stage["penetration"] == {
         "description": "length with its unit (m or ft), above 0",
-        "title": "Length",
+        "title": "Penetration",
         "type": "string",
     }
-    assert all("title" in one or "$ref" in one or "description" in one for one in pile.values())
+    for one in (*stage.values(), *SCHEMA["$defs"]["PileKeys"]["properties"].values()):
+        assert {"title", "$ref", "description", "anyOf"} & set(one)
 
 
 # --- starter -------------------------------------------------------------------------------------
@@ -205,8 +222,9 @@ def test_every_option_of_the_starter_can_be_put_in_force(tmp_path):
     path.write_text(text)
     job = load_job(path)
     assert len(job.hammer_cushions) == 6
-    assert job.limits.compression == pytest.approx((1 - 0.1) * 28e6)
-    assert job.pile.modulus == 34e9
+    assert job.limits.compression == 0.9 * 28e6
+    assert job.pile.toe.modulus == 34e9
+    assert [part.name for part in job.pile.column] == ["follower", "upper", "lower"]
     assert [notice.rpartition(": ")[2] for notice in job.notices] == [
         "both limits are given",
         "`shaft_damping` is given",

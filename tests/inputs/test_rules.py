@@ -15,8 +15,7 @@ from matchup.errors import Fault, InputError, ModelError, Problem, did_you_mean
 from matchup.model.cushion import Cushion, CushionMaterial, CushionSpace, Spring
 from matchup.model.hammer import Hammer
 from matchup.model.job import Search
-from matchup.model.limits import Limit, StressLimits
-from matchup.model.pile import Pile, Section
+from matchup.model.pile import Fill, Part, Pile, Section
 from matchup.model.stage import Stage
 
 OAK = CushionMaterial(
@@ -42,9 +41,10 @@ SOUND = [
         rides_on_pile=True,
     ),
     Section.square(0.4),
-    Pile("concrete", Section.square(0.4), 24.0, 35e9, 2400.0, 50e6, 6e6),
+    Part("concrete", Section.square(0.4), 24.0, 35e9, 2400.0, 50e6, 6e6, carried=100.0),
     Stage("x", 21.0, 1e6, 1e6, 4e-3, shaft_shape=((0.0, 0.0), (21.0, 1.0))),
-    StressLimits(Limit(30e6, ""), Limit(7e6, "")),
+    Fill(0.1, 35e9, 2400.0, 40e6),
+    Pile.uniform("steel", Section.square(0.1), 24.0, 210e9, 7850.0, 355e6),
     Search(reserve=0.1),
 ]
 CASES = [
@@ -53,6 +53,7 @@ CASES = [
     for field in fields(item)
     if isinstance(getattr(item, field.name), float)
 ]
+KINDS = "drop, hydraulic, air, double-acting"
 OTHER_NAMES = {"set_needed": "set"}
 
 
@@ -85,11 +86,16 @@ def test_faults_say_what_must_hold_and_what_to_do():
     with pytest.raises(ModelError) as caught:
         replace(SOUND[2], efficiency=55.0, kind="dropp")
     assert caught.value.faults == (
-        Fault("kind", "must be one of: drop, hydraulic, air", "dropp", do="Did you mean `drop`?"),
+        Fault(
+            "kind",
+            f"must be one of: {KINDS}",
+            "dropp",
+            do="Did you mean `drop`?",
+        ),
         Fault("efficiency", "must be above 0 and at most 1", 55.0, do="Write 0.55."),
     )
     assert str(caught.value) == (
-        "hammer 'Raven': kind must be one of: drop, hydraulic, air, but got 'dropp'; "
+        f"hammer 'Raven': kind must be one of: {KINDS}, but got 'dropp'; "
         "efficiency must be above 0 and at most 1, but got 55.0"
     )
 

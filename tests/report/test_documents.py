@@ -127,7 +127,9 @@ def test_a_blow_has_the_keys_agreed_on_and_traces_when_asked():
     assert "trace" not in document
     traced = result.to_dict(traces=True)
     assert_plain(traced)
-    assert set(traced["envelope"][0]) == {"distance_m", "compression_MPa", "tension_MPa"}
+    assert set(traced["envelope"][0]) == {
+        "distance_m", "compression_MPa", "tension_MPa", "compression_use", "tension_use",
+    }  # fmt: skip
     lengths = {len(column) for column in traced["trace"].values()}
     assert set(traced["trace"]) == {
         "time_ms", "head_force_kN", "head_velocity_m_s", "toe_displacement_mm",

@@ -6,7 +6,7 @@ from dataclasses import replace
 
 import pytest
 
-from matchup.model.limits import Limit, StressLimits
+from matchup.model.limits import Limit, PartLimits, StressLimits
 from matchup.report.page import page_text
 from matchup.report.ranked import check_page, ranking_page
 from matchup.report.sentences import basis, reason, searched, softer_sentence, verdict_sentence
@@ -25,7 +25,7 @@ from tests import jobs
 from tests.report.plans import STAGE, option, plan, ranking, running, sheets
 
 METRIC, US = Units("metric"), Units("us")
-LIMITS = StressLimits(Limit(1e8, "a rule"), Limit(1e8, "a rule"))
+LIMITS = StressLimits((PartLimits("", Limit(1e8, "a rule"), Limit(1e8, "a rule")),))
 JOB = jobs.small_job(limits=LIMITS)
 EARLY = replace(jobs.SOFT, name="soft clay")
 STAGED = replace(JOB, stages=(EARLY, STAGE))
@@ -300,7 +300,11 @@ def test_defaults_are_told_with_their_stages_where_they_differ():
 
 
 def test_warnings_and_notices_are_told():
-    warned = replace(JOB, limits=replace(LIMITS, warnings=("it is high",)), notices=("a thing.",))
+    warned = replace(
+        JOB,
+        limits=StressLimits((LIMITS.parts[0]._replace(warnings=("it is high",)),)),
+        notices=("a thing.",),
+    )
     assert basis(warned, METRIC)[1:] == ["Warning: it is high.", "Notice: a thing."]
 
 

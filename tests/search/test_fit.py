@@ -107,7 +107,7 @@ def test_what_the_catalogue_does_not_tell_is_held_against_nothing():
 def test_a_free_standing_pile_by_hand():
     """350 mm square, 14 m and 2 m to where it is fixed; helmet and ram, then the whole hammer."""
     pile = jobs.concrete()
-    stiffness = pile.modulus * 0.35**4 / 12
+    stiffness = pile.toe.modulus * 0.35**4 / 12
     euler = math.pi**2 * stiffness / (4 * 16**2)
     weight = 2400 * 0.35**2 * 9.80665 * 16
     own = weight / (7.8373 * stiffness / 16**2)
@@ -122,7 +122,8 @@ def test_a_free_standing_pile_by_hand():
 def test_a_section_must_tell_its_second_moment():
     from matchup.model.pile import Section
 
-    pile = replace(jobs.tube(), section=Section.h(0.012, 0.3, 0.3))
+    part = replace(jobs.tube().toe, section=Section.h(0.012, 0.3, 0.3))
+    pile = replace(jobs.tube(), parts=(part,))
     job = jobs.steel_job(pile=pile)
     with pytest.raises(ModelError, match=r"site\.inertia"):
         replace(job, site=Site(standing=Standing(2.0, 2.0)))
@@ -221,3 +222,30 @@ def test_a_window_keeps_to_the_sites_strokes():
     job = small(Site(vibration=QUIET))
     assert max(matchup.window(job).map.strokes) == pytest.approx(0.4)
     assert "strokes kept to" in matchup.window(job).to_text()
+
+
+# --- hammers set by energy, raked and spliced piles ----------------------------------------------
+
+
+def test_fewer_settings_keep_the_rates_that_they_had():
+    falling = replace(HAMMER, stroke_step=None, blow_rate_max=1.5, blow_rate_full=0.5)
+    some = falling.within(0.3, 0.8)
+    for stroke in (0.3, 0.5, 0.8):
+        assert some.blow_rate(stroke) == pytest.approx(falling.blow_rate(stroke))
+    [slowed] = sort_hammers(small(Site(blow_rate_max=1.0), falling)).hammers
+    assert [slowed.blow_rate(s) for s in (0.1, 1.2)] == [1.0, 0.5]
+
+
+def test_a_raked_pile_can_not_stand_free():
+    raked = replace(jobs.concrete(), rake=0.1)
+    with pytest.raises(ModelError, match="raked"):
+        replace(jobs.small_job(pile=raked), site=Site(standing=Standing(2.0, 2.0)))
+
+
+def test_a_helmet_takes_the_head_of_a_tapered_pile():
+    from matchup.model.pile import Section
+
+    part = replace(jobs.timber().toe, section=Section.round(0.36, 0.2))
+    job = jobs.timber_job(pile=replace(jobs.timber(), parts=(part,)))
+    assert misfits(job, replace(HAMMER, head_min=0.36, head_max=0.36)) == ()
+    assert [m.what for m in misfits(job, replace(HAMMER, head_max=0.35))] == ["helmet"]

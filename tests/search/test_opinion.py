@@ -20,7 +20,7 @@ def result():
 def test_the_danish_formula_is_asked_with_the_plan_and_the_pile(result):
     job, option = result.job, result.options[0]
     energy = option.hammer.ram_mass * 9.80665 * option.target.stroke * option.hammer.efficiency
-    stiffness, length = job.pile.modulus * 0.35**2, job.pile.length
+    stiffness, length = job.pile.toe.modulus * 0.35**2, job.pile.length
     by_hand = energy / (option.target.set + (0.5 * energy * length / stiffness) ** 0.5)
     found = second_opinion(option, job)
     assert found.resistances["Danish"] == pytest.approx(by_hand, rel=1e-12)

@@ -175,7 +175,7 @@ def reference(case: Case, masses: int = MASSES) -> Figures:
 def solver(case: Case, segments: int = SEGMENTS) -> Figures:
     """Compute the same with the solver, through the model classes."""
     area = case.area
-    pile = Pile(
+    pile = Pile.uniform(
         "timber",
         Section.other(area, 1.0, area),
         case.length,

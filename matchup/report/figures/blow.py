@@ -53,7 +53,7 @@ def blow_figure(blow: Blow, pile: Pile, units: Units) -> Figure:
         waves = figure.add_subplot(grid[1, 0])
         head = figure.add_subplot(grid[0, 0], sharex=waves)
         envelope = figure.add_subplot(grid[1, 1], sharey=waves)
-        _draw_waves(figure, waves, blow, pile, units)
+        _draw_waves(figure, waves, blow, units)
         _draw_head(head, blow, pile, units)
         _draw_envelope(envelope, blow, units)
         _tell(figure.add_subplot(grid[0, 1]), blow, units)
@@ -75,7 +75,7 @@ def _shown(si: Floats, quantity: str, units: Units) -> Floats:
     return si * (units.value(1.0, quantity) or 1.0)
 
 
-def _draw_waves(figure: Figure, axes: Axes, blow: Blow, pile: Pile, units: Units) -> None:
+def _draw_waves(figure: Figure, axes: Axes, blow: Blow, units: Units) -> None:
     """Draw force as shade over time and position, the head on top."""
     travel = blow.segments * blow.time_step
     steps = min(blow.waves.time.size, PASSAGES * blow.segments)
@@ -102,17 +102,18 @@ def _draw_waves(figure: Figure, axes: Axes, blow: Blow, pile: Pile, units: Units
     axes.set_xlim(0, ends[-1])
     axes.set_ylabel(f"distance from the head, {units.unit('length')}")
     axes.set_xlabel("time from impact, ms")
-    _draw_path(axes, travel, distance[-1], blow, pile, units)
+    _draw_path(axes, travel, distance[-1], blow, units)
     bar = figure.colorbar(shades, ax=axes, location="bottom", aspect=45, pad=0.02)
     bar.set_label(f"force in the pile, {units.unit('force')}; tension negative and hatched")
     bar.outline.set_linewidth(0.5)
 
 
-def _draw_path(axes: Axes, travel: float, toe: float, blow: Blow, pile: Pile, units: Units) -> None:
+def _draw_path(axes: Axes, travel: float, toe: float, blow: Blow, units: Units) -> None:
     """Draw the way of the front down and up again, and the ground surface."""
     down, back = 1e3 * travel, 2e3 * travel
     axes.plot([0, down, back], [0, toe, 0], color=INK, linewidth=0.8, linestyle=(0, (5, 3)))
-    surface = units.value(pile.length - blow.stage.penetration, "length") or 0.0
+    above = float(blow.envelope.distance[-1]) - blow.stage.penetration
+    surface = units.value(above, "length") or 0.0
     if surface > 0:
         axes.axhline(surface, color=INK, linewidth=0.8, linestyle=(0, (1, 2)))
         axes.annotate(
@@ -132,7 +133,7 @@ def _draw_head(axes: Axes, blow: Blow, pile: Pile, units: Units) -> None:
     trace = blow.trace
     time = 1e3 * trace.time
     force = _shown(trace.head_force, "force", units)
-    moving = _shown(pile.impedance * trace.head_velocity, "force", units)
+    moving = _shown(pile.head.impedance_at(0.0) * trace.head_velocity, "force", units)
     axes.fill_between(time, force, moving, color=PALE, linewidth=0)
     axes.plot(time, moving, color=INK, linewidth=1.1, linestyle=(0, (4, 2)))
     axes.plot(time, force, color=COMPRESSION, linewidth=1.6)
@@ -158,22 +159,22 @@ def _draw_envelope(axes: Axes, blow: Blow, units: Units) -> None:
     envelope = blow.envelope
     distance = _shown(envelope.distance, "length", units)
     sides = (
-        (1, envelope.compression, blow.compression, blow.compression_use, blow.compression_at),
-        (-1, envelope.tension, blow.tension, blow.tension_use, blow.tension_at),
+        (1, envelope.compression_use, blow.compression, blow.compression_use, blow.compression_at),
+        (-1, envelope.tension_use, blow.tension, blow.tension_use, blow.tension_at),
     )
-    for sign, stresses, peak, use, at in sides:
+    for sign, uses, peak, use, at in sides:
         colour, fill = (COMPRESSION, "#7fa9cf") if sign > 0 else (TENSION, "#f2c6a8")
-        per_stress = 100 * sign * use / peak if peak else 0.0
+        shares = 100 * sign * uses
         axes.fill_betweenx(
             distance,
             0,
-            per_stress * stresses,
+            shares,
             facecolor=fill,
             edgecolor=TENSION,
             hatch="" if sign > 0 else "//////",
             linewidth=0,
         )
-        axes.plot(per_stress * stresses, distance, color=colour, linewidth=1.6)
+        axes.plot(shares, distance, color=colour, linewidth=1.6)
         axes.axvline(100 * sign, color=colour, linewidth=2.2)
         place = units.value(at, "length") or 0.0
         axes.plot([100 * sign * use], [place], "o", color=INK, markersize=4, zorder=4)

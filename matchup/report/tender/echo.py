@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from typing import NamedTuple
 
 from matchup.model.cushion import CushionMaterial, CushionSpace
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
+from matchup.model.limits import Limit
+from matchup.model.pile import Part
 from matchup.model.stage import Stage
 from matchup.report.options import measured
 from matchup.report.shown import Units, percent
@@ -43,32 +46,57 @@ def _of(what: str, si: float | None, quantity: str, units: Units, remark: str = 
 
 
 def _pile(job: Job, units: Units) -> list[_Line]:
-    pile, section = job.pile, job.pile.section
-    strength = STRENGTHS.get(pile.material, "strength along the grain")
-    prestress = pile.prestress if pile.material == CONCRETE else None
+    pile = job.pile
+    several = len(pile.column) > 1
+    lines = [line for part in pile.column for line in _part(part, units)]
+    if several:
+        lines += [
+            _of("length", pile.length, "length", units, "of the pile, a follower left out"),
+            _of("mass", pile.mass, "mass", units, "of all that the wave runs through"),
+        ]
+    shoe = pile.shoe_mass or None
+    rake = math.degrees(pile.rake) or None
     return [
-        _Line("pile", pile.material),
+        *lines,
+        _of("driving shoe", shoe, "mass", units),
+        _Line("rake", rake, "deg", "from the vertical"),
+    ]
+
+
+def _part(part: Part, units: Units) -> list[_Line]:
+    section, name = part.section, part.name
+    strength = STRENGTHS.get(part.material, "strength along the grain")
+    prestress = part.prestress if part.material == CONCRETE else None
+    fill = part.fill
+    return [
+        _Line("pile", part.material, remark=name),
         _Line("section", section.text),
         _of("width", section.width, "size", units),
         _of("area", section.area, "area", units, "of the material"),
         _of("perimeter", section.perimeter, "size", units),
         _of("toe area", section.toe_area, "area", units),
-        _of("length", pile.length, "length", units),
-        _of("mass", pile.mass, "mass", units),
-        _of("modulus", pile.modulus, "modulus", units),
-        _of("density", pile.density, "density", units),
-        _of(strength, pile.strength, "stress", units),
+        _of("length", part.length, "length", units, name),
+        _of("mass", part.mass, "mass", units, name),
+        _of("modulus", part.modulus, "modulus", units),
+        _of("density", part.density, "density", units),
+        _of(strength, part.strength, "stress", units),
         _of("effective prestress", prestress, "stress", units),
-        _of("wave speed", pile.wave_speed, "velocity", units),
+        _of("strength of the fill", fill.strength if fill else None, "stress", units),
+        _of("modulus of the fill", fill.modulus if fill else None, "modulus", units),
+        _of("wave speed", part.wave_speed, "velocity", units),
     ]
 
 
 def _limits(job: Job, units: Units) -> list[_Line]:
-    limits = job.limits
     return [
-        _of("compression limit", limits.compression, "stress", units, limits.squeeze.text),
-        _of("tension limit", limits.tension, "stress", units, limits.pull.text),
+        _of(f"{side} limit", limit.stress, "stress", units, _source(limit, part.part))
+        for part in job.limits.parts
+        for side, limit in (("compression", part.squeeze), ("tension", part.pull))
     ]
+
+
+def _source(limit: Limit, part: str) -> str:
+    return f"{part}: {limit.text}" if part else limit.text
 
 
 def _cushions(job: Job, units: Units) -> list[_Line]:

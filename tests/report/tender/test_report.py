@@ -331,14 +331,15 @@ def test_a_drive_is_told_case_by_case_and_station_by_station():
     assert depths == pytest.approx([plan.stage.penetration for plan in plans])
 
 
-def test_a_drive_that_fails_at_its_target_is_told_without_blows():
+def test_a_drive_that_fails_at_its_target_is_told_as_far_as_it_gets():
     report = matchup.tender_report(driven_job(), detail="Plover")
     assert report.dossier.detail.failing is not None
     assert report.dossier.map.stage == report.dossier.detail.failing.stage
     files = report.files()
     assert "Why Plover can't" in read(files["report.html"]).text
     drive = book(files)["Drive"]
-    assert [row[-1] for row in drive.iter_rows(2, values_only=True)] == [None] * 3
+    plans = [plan for case in report.dossier.detail.cases for plan in case.plans]
+    assert drive.max_row == len(plans) + 1
 
 
 def test_a_drive_is_drawn_with_all_its_cases():
