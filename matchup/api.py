@@ -42,11 +42,13 @@ from matchup.report.table import Table, tabled
 from matchup.report.tender.bundle import NAMES, report_files
 from matchup.report.tender.dossier import Dossier
 from matchup.report.tender.sections import sections
+from matchup.report.together import together_document, together_page, together_table
 from matchup.search.criterion import Criterion, find_criterion
 from matchup.search.opinion import Opinion, second_opinion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers, with_odds
 from matchup.search.stroke_map import StrokeMap, map_strokes
+from matchup.search.together import Together, put_together
 from matchup.units import UnitError, parse_quantity
 
 if TYPE_CHECKING:
@@ -59,12 +61,14 @@ __all__ = [
     "DriveResult",
     "RankingResult",
     "ReportResult",
+    "TogetherResult",
     "WindowResult",
     "blow",
     "check",
     "drive",
     "load_job",
     "rank",
+    "rank_together",
     "tender_report",
     "window",
 ]
@@ -192,6 +196,49 @@ class RankingResult(_Shown):
 
 
 @dataclass(frozen=True)
+class TogetherResult(_Shown):
+    """Several jobs and the hammer that serves them all.
+
+    Parameters
+    ----------
+    together : Together
+    """
+
+    together: Together
+
+    @property
+    def best(self) -> str | None:
+        """Name of the hammer that serves all jobs best; None where none does."""
+        return self.together.best.name if self.together.best else None
+
+    def _shown_in(self, display: str | None) -> Units:
+        return _units(self.together.rankings[0].job, display)
+
+    def page(self, display: str | None = None) -> Page:
+        """Return the answer as blocks of prose and tables."""
+        return together_page(self.together, self._shown_in(display))
+
+    def figure(self, display: str | None = None) -> Figure:
+        """Refuse: there is a figure for each job, and none for all of them."""
+        must = "must be left out with several jobs; each has a figure of its own"
+        raise InputError([Problem(None, None, "plot", must, "")])
+
+    def to_frame(self) -> pd.DataFrame:
+        """Return every hammer as a row, best first."""
+        import pandas as pd
+
+        return pd.DataFrame(together_table(self.together, self._shown_in(None)).to_records())
+
+    def to_csv(self, display: str | None = None) -> str:
+        """Return the table of hammers as CSV."""
+        return together_table(self.together, self._shown_in(display)).to_csv()
+
+    def to_dict(self, display: str | None = None) -> dict[str, Any]:
+        """Return the JSON document as plain data; `display` changes its sentences alone."""
+        return together_document(self.together, self._shown_in(display))
+
+
+@dataclass(frozen=True)
 class CheckResult(RankingResult):
     """The answer for one hammer: a ranking of that hammer alone, told as yes or no."""
 
@@ -251,6 +298,8 @@ class DriveResult(CheckResult):
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""
+        if self.option.misfits:
+            return super().figure(display)
         from matchup.report.figures.drive import drive_figure
 
         told = chosen_case(self.option, self.case)
@@ -475,6 +524,52 @@ def rank(
     return RankingResult(ranking, _opinions(ranking) if formulas else ())
 
 
+def rank_together(
+    jobs: Sequence[JobLike],
+    workers: int | None = None,
+    seed: int | None = None,
+    tell: Tell | None = None,
+) -> TogetherResult:
+    """Rank the hammers of several jobs, and tell which one serves them all best.
+
+    Parameters
+    ----------
+    jobs : sequence of Job or path
+    workers : int or None
+        Threads; None takes as many as there are processors.
+    seed : int or None
+        Replaces the jobs'.
+    tell : callable or None
+        Called with the number of blows of every batch, for showing progress.
+
+    Raises
+    ------
+    InputError
+        With every problem of all the jobs' files, or where they are priced in several currencies.
+    """
+    rankings = [rank(job, workers, seed, tell).ranking for job in _jobs(jobs)]
+    return TogetherResult(put_together(rankings))
+
+
+def _jobs(jobs: Sequence[JobLike]) -> list[Job]:
+    """Return all jobs, or raise with the problems of all of them."""
+    loaded: list[Job] = []
+    problems: list[Problem] = []
+    for one in jobs:
+        try:
+            loaded.append(_job(one))
+        except InputError as error:
+            problems += error.problems
+    currencies = dict.fromkeys(job.cost.currency for job in loaded if job.cost)
+    if len(currencies) > 1:
+        must = "must be the same in all jobs; nothing is converted"
+        problems.append(Problem(None, None, "cost.currency", must, ", ".join(currencies)))
+    if problems or not jobs:
+        empty = Problem(None, None, "jobs", "must be at least one", "")
+        raise InputError(list(dict.fromkeys(problems)) or [empty])
+    return loaded
+
+
 def check(
     job: JobLike,
     hammer: str | None = None,
@@ -514,7 +609,7 @@ def check(
 def _opinions(ranking: Ranking) -> tuple[Opinion, ...]:
     """Return what dynamic formulas make of every hammer, best first."""
     everyone = (*ranking.options, *ranking.rejected)
-    return tuple(second_opinion(option, ranking.job) for option in everyone)
+    return tuple(second_opinion(o, ranking.job) for o in everyone if not o.misfits)
 
 
 def drive(
@@ -716,6 +811,8 @@ def tender_report(
 
 def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
     """Return a blow at the target, and one where the stress is highest, where they can be had."""
+    if option.misfits:
+        return ()
     plans = [option.failing or option.target]
     tightest = option.tightest or max(option.plans, key=lambda plan: plan.stress_use)
     if tightest.stage != plans[0].stage:
@@ -862,5 +959,10 @@ def _best_plan(
         raise InputError(problems)
     found = rank_hammers(replace(job, hammers=(hammer,)))
     option = (*found.options, *found.rejected)[0]
+    if option.misfits:
+        must = "must fit the pile and the site, to have a best plan"
+        raise InputError(
+            [Problem(None, None, "hammer", must, hammer.name, "`matchup check` says why.")]
+        )
     planned = next((plan for plan in option.plans if plan.stage == stage), option.target)
     return Selected(hammer, stage, option.stack, wear), planned.stroke

@@ -150,6 +150,7 @@ _UNITS: dict[str, dict[str, float]] = {
     "number": {"-": 1.0, "blows": 1.0, "%": 0.01},
     "time": {"s": 1.0, "min": 60.0, "h": 3600.0, "d": 86400.0, "hours": 3600.0, "days": 86400.0},
     "angle": {"deg": math.pi / 180, "rad": 1.0},
+    "inertia": {"m4": 1.0, "cm4": 1e-8, "mm4": 1e-12, "in4": INCH**4},
 }
 
 
@@ -179,6 +180,8 @@ QUANTITIES = {
     "unit weight": Quantity("unit weight", "kN/m3", "lbf/ft3", "kN/m3 or pcf", "18"),
     "energy": Quantity("energy", "kJ", "ft-kip", "kJ or ft-kip", "50"),
     "velocity": Quantity("velocity", "m/s", "ft/s", "m/s or ft/s", "0.5"),
+    "vibration": Quantity("velocity", "mm/s", "in/s", "mm/s or in/s", "5"),
+    "inertia": Quantity("inertia", "cm4", "in4", "cm4 or in4", "20000"),
     "damping": Quantity("damping", "s/m", "s/ft", "s/m or s/ft", "0.3"),
     "rate": Quantity("rate", "1/min", "1/min", "1/min", "40"),
     "number": Quantity("number", "-", "-", "-", "0.85"),

@@ -73,6 +73,10 @@ NAMES = {
     "days": "day",
     "deg": "degree",
     "rad": "radian",
+    "m4": "meter**4",
+    "cm4": "centimeter**4",
+    "mm4": "millimeter**4",
+    "in4": "inch**4",
 }
 """Our spellings that `pint` reads otherwise, or does not read, by the name that it knows."""
 
@@ -92,6 +96,7 @@ SI = {
     "unit weight": "newton/meter**3",
     "time": "second",
     "angle": "radian",
+    "inertia": "meter**4",
 }
 WEIGHTS = {"mass": "newton", "density": "newton/meter**3"}
 """What stands for a mass through standard gravity."""

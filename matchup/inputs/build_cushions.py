@@ -9,6 +9,7 @@ from dataclasses import replace
 from matchup.errors import ModelError, did_you_mean
 from matchup.inputs.build_pile import given_follower, given_parts
 from matchup.inputs.cushions import CushionCatalogue
+from matchup.inputs.findings import some
 from matchup.inputs.job_keys import how_to_write
 from matchup.inputs.job_text import JobText
 from matchup.inputs.schema import JobKeys, SheetRange, ThicknessRange
@@ -32,7 +33,7 @@ def check_catalogue(text: JobText, keys: JobKeys, hammers: Sequence[Hammer]) -> 
     needs = [f"[{name}]" for name in tables]
     named = [h.name for h in hammers if h.cushion is None and h.cushion_text != NO_CUSHION]
     if named:
-        needs.append(f"the hammer cushions of {_some(named)}")
+        needs.append(f"the hammer cushions of {some(named)}")
     if needs:
         path = ("catalog", "cushions")
         do = 'For example `cushions = "cushions.csv"`.'
@@ -97,7 +98,7 @@ def _materials(
             chosen[found.name] = None
         elif found is None and not catalogue.is_broken(name):
             known = catalogue.names
-            do = did_you_mean(name, known) or f"There are: {_some(known)}."
+            do = did_you_mean(name, known) or f"There are: {some(known)}."
             text.wrong((*path, place), "must be a name in the cushion catalogue", do)
     materials = tuple(filter(None, chosen.values()))
     return materials if len(materials) == len(chosen) else None
@@ -180,7 +181,7 @@ def with_helmets(text: JobText, keys: JobKeys, hammers: Sequence[Hammer]) -> tup
     path = ("helmet", "mass")
     without = [hammer.name for hammer in hammers if hammer.helmet_mass is None]
     if without and mass is None:
-        must = f"must be given: the catalogue has no helmet for {_some(without)}"
+        must = f"must be given: the catalogue has no helmet for {some(without)}"
         text.wrong(path, must, 'Write [helmet] and below it, for example, `mass = "900 kg"`.')
     if mass is not None and hammers and not without:
         text.notice(path, "has no effect: every hammer's row names its helmet")
@@ -189,9 +190,3 @@ def with_helmets(text: JobText, keys: JobKeys, hammers: Sequence[Hammer]) -> tup
         replace(hammer, helmet_mass=mass) if hammer.helmet_mass is None else hammer
         for hammer in hammers
     )
-
-
-def _some(names: Sequence[str]) -> str:
-    more = f" and {len(names) - 8} more" if len(names) > 8 else ""
-    # A quote left open in a catalogue makes names of several lines.
-    return ", ".join(" ".join(name.split()) for name in names[:8]) + more

@@ -47,6 +47,12 @@ def build_limits(text: JobText, keys: JobKeys, pile: Pile | None) -> StressLimit
             made.append(limits)
     for one in distinct:
         _note_overridden(text, one)
+        own = [
+            part
+            for number, part in enumerate(pile.column)
+            if said[min(number, len(said) - 1)].path == one.path
+        ]
+        _check_walls(text, one, own)
     return StressLimits(tuple(made)) if len(made) == len(pile.column) else None
 
 
@@ -64,6 +70,14 @@ def _part_limits(text: JobText, part: Part, one: _Said) -> PartLimits | None:
     except ModelError as error:
         text.wrong_model(error, one.path)
         return None
+
+
+def _check_walls(text: JobText, one: _Said, parts: list[Part]) -> None:
+    try:
+        if one.given is not None:
+            one.given.check_walls(parts)
+    except ModelError as error:
+        text.wrong_model(error, one.path)
 
 
 def _check_materials(text: JobText, column: list[Given], said: list[_Said]) -> None:

@@ -10,8 +10,10 @@ from itertools import pairwise
 from typing import NamedTuple
 
 from matchup.errors import ModelError, Problem
+from matchup.inputs.amounts import tidy_unit
 from matchup.inputs.findings import Findings, did_you_mean, shown_fault
 from matchup.inputs.table import RawTable, Row
+from matchup.model.cost import Amount
 from matchup.units import QUANTITIES, UnitError, parse_number, unit_factor
 
 _HEADER = re.compile(r"([^\[\]()]*?)\s*(?:[\[(]\s*([^\[\]()]*?)\s*[\])])?")
@@ -43,16 +45,20 @@ class Spec(NamedTuple):
     ----------
     name : str
     kind : str
-        ``name``, ``text``, ``yes_no``, or a quantity of the units table.
+        ``name``, ``text``, ``yes_no``, ``amount`` (its unit stays as typed), or a quantity of
+        the units table.
     required : bool
     instead : str
         Another name under which the same value may come; its values go by `name`.
+    example : str
+        Unit of an amount, for hints.
     """
 
     name: str
     kind: str
     required: bool = False
     instead: str = ""
+    example: str = ""
 
 
 @dataclass
@@ -70,6 +76,8 @@ class Record:
         number that could not be read is not a number.
     typed : dict
         The same as typed, units included.
+    units : dict
+        Units of amounts.
     places : dict
         What the file calls each column, in the order of the columns.
     extra : dict
@@ -89,6 +97,7 @@ class Record:
     label: str = ""
     values: dict[str, float | str | bool] = field(default_factory=dict)
     typed: dict[str, str] = field(default_factory=dict)
+    units: dict[str, str] = field(default_factory=dict)
     places: dict[str, str] = field(default_factory=dict)
     extra: dict[str, str] = field(default_factory=dict)
     unread: set[str] = field(default_factory=set)
@@ -107,6 +116,11 @@ class Record:
         """Return a number or None; not a number where it could not be read."""
         value = self.values.get(name, math.nan if name in self.unread else None)
         return value if isinstance(value, float) else None
+
+    def amount(self, name: str) -> Amount | None:
+        """Return an amount or None; its value is not a number where it could not be read."""
+        value = self.number(name)
+        return None if value is None else Amount(value, self.units.get(name, ""))
 
     def needed(self, name: str) -> float:
         """Return a number that every row must have; not a number where it could not be read."""
@@ -234,8 +248,12 @@ def _near_column(key: str, names: Sequence[str] | dict[str, Spec]) -> str:
 def _header_factor(
     file: str, line: int, cell: str, spec: Spec, unit: str, findings: Findings
 ) -> float | None:
-    if spec.kind not in QUANTITIES:
+    if spec.kind not in QUANTITIES and (spec.kind != "amount" or unit):
         return 1.0
+    if spec.kind == "amount":
+        do = f"Write for example `{spec.name} [{spec.example}]`."
+        findings.add(file, line, cell, "must have its unit in brackets", do=do)
+        return None
     if not unit:
         if spec.kind == "number":
             return 1.0
@@ -288,6 +306,8 @@ def _read_cell(record: Record, cell: str, column: _Known, separator: str) -> Non
         return
     unit = "" if column.unit == "-" else column.unit
     record.typed[name] = f"{cell} {unit}".strip()
+    if column.spec.kind == "amount":
+        record.units[name] = tidy_unit(unit)
     try:
         record.values[name] = _value(cell, column, separator)
     except UnitError as error:
@@ -332,7 +352,7 @@ def _check_decimal_signs(
     if table.separator == ",":
         return
     for column in known:
-        if column.spec.kind not in QUANTITIES:
+        if column.spec.kind not in (*QUANTITIES, "amount"):
             continue
         first: dict[bool, int] = {}
         for row, record in zip(table.rows, records, strict=True):

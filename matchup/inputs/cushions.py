@@ -23,6 +23,7 @@ COLUMNS = (
     Spec("worn_restitution", "number"),
     Spec("new_for", "number"),
     Spec("life", "number"),
+    Spec("price", "amount", example="EUR"),
     Spec("source", "text"),
 )
 
@@ -96,6 +97,7 @@ def _material(record: Record) -> CushionMaterial | None:
             worn_restitution=number("worn_restitution"),
             new_for=number("new_for"),
             life=number("life"),
+            price=record.amount("price"),
             source=record.text("source"),
             extra=record.extra,
         )

@@ -3,14 +3,16 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
 from matchup.errors import Fault, InputError, ModelError, Problem, did_you_mean
 from matchup.units import format_quantity
 
-__all__ = ["Findings", "did_you_mean", "shown_fault", "shown_path"]
+__all__ = ["Findings", "did_you_mean", "shown_fault", "shown_path", "some"]
+
+MOST_NAMED = 8
 
 
 @dataclass
@@ -102,3 +104,9 @@ def shown_fault(fault: Fault) -> str:
     if isinstance(fault.value, float):
         return format_quantity(fault.value, fault.quantity or "number", "metric")
     return str(fault.value)
+
+
+def some(names: Sequence[str]) -> str:
+    """Return the first of many names, and how many more there are."""
+    more = f" and {len(names) - MOST_NAMED} more" if len(names) > MOST_NAMED else ""
+    return ", ".join(names[:MOST_NAMED]) + more

@@ -39,6 +39,12 @@ COLUMNS = (
     Spec("hammer_mass", "mass", instead="hammer_weight"),
     Spec("rides_on_pile", "yes_no"),
     Spec("available", "yes_no"),
+    Spec("hammer_length", "length"),
+    Spec("head_min", "size"),
+    Spec("head_max", "size"),
+    Spec("day_rate", "amount", example="EUR"),
+    Spec("mobilisation", "amount", example="EUR"),
+    Spec("fuel_use", "amount", example="l/h"),
     Spec("source", "text"),
 )
 
@@ -56,8 +62,7 @@ def read_hammers(
 ) -> tuple[Hammer, ...]:
     """Return the hammers of a catalogue that can be used; problems go to `findings`.
 
-    Hammers of a kind that this version can't compute, or that are not available, are left out
-    with a notice.
+    Hammers of a kind that this version can't compute are left out with a notice.
 
     Parameters
     ----------
@@ -83,10 +88,7 @@ def read_hammers(
             continue
         hammer = _hammer(record, catalogue)
         findings.problems += record.problems
-        if hammer is not None and not hammer.available:
-            left_out[hammer.name] = "it is not available"
-            findings.notice(table.file, record.line, _left_out(record, left_out))
-        elif hammer is not None:
+        if hammer is not None:
             hammers.append(hammer)
             for text in note_unusual_row(record, "hammer"):
                 findings.notice(table.file, record.line, text)
@@ -195,6 +197,12 @@ def _hammer(record: Record, catalogue: CushionCatalogue | None) -> Hammer | None
             hammer_mass=number("hammer_mass"),
             rides_on_pile=record.values.get("rides_on_pile") is True,
             available=record.values.get("available") is not False,
+            hammer_length=number("hammer_length"),
+            head_min=number("head_min"),
+            head_max=number("head_max"),
+            day_rate=record.amount("day_rate"),
+            mobilisation=record.amount("mobilisation"),
+            fuel_use=record.amount("fuel_use"),
             source=record.text("source"),
             set_by_energy=_is_by_energy(record),
             extra=record.extra,

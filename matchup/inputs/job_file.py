@@ -60,10 +60,12 @@ def _stages(
 def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     """Return the job, once every part of it has been looked at."""
     from matchup.inputs import (
+        build_cost,
         build_cushions,
         build_doubt,
         build_limits,
         build_pile,
+        build_site,
         build_stages,
     )
 
@@ -81,6 +83,8 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     space = build_cushions.build_cushion_space(text, keys, pile, known)
     others = build_cushions.build_hammer_cushions(text, keys, known)
     hammers = build_cushions.with_helmets(text, keys, hammers)
+    cost = build_cost.build_cost(text, keys, hammers, space)
+    site = build_site.build_site(text, keys, hammers)
     unknown = [hammer.name for hammer in hammers if hammer.blow_rate(hammer.stroke_max) is None]
     if keys.search.objective == "time" and 0 < len(unknown) < len(hammers):
         what = f"puts {', '.join(unknown)} last: their rows give no blow rate"
@@ -103,6 +107,8 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             analysis=analysis,
             drive=drive,
             doubt=doubt,
+            cost=cost,
+            site=site,
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),

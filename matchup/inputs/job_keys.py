@@ -166,6 +166,8 @@ def _example(field: FieldInfo) -> Any:
         return get_args(literal)[0]
     if get_origin(field.annotation) is list:
         return []
+    if field.annotation is int:
+        return 1
     model = _model(field.annotation)
     return _required(model) if model else ""
 

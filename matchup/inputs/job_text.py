@@ -89,7 +89,7 @@ class JobText:
     ) -> None:
         """Note what a model object says of itself; `keys` are its fields' names in the file."""
         for fault in error.faults:
-            full = (*path, keys.get(fault.field, fault.field))
+            full = (*path, *keys.get(fault.field, fault.field).split("."))
             # Of a list, the model names the element that is wrong.
             typed = self.typed(full) if not isinstance(fault.value, Element) else ""
             self.wrong(full, fault.must, fault.do, found=typed or shown_fault(fault))

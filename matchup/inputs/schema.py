@@ -19,7 +19,9 @@ from pydantic import (
 )
 
 from matchup.errors import did_you_mean
+from matchup.inputs.amounts import read_amount
 from matchup.model.limits import RULES
+from matchup.model.vibration import RELATIONS
 from matchup.units import QUANTITIES, UnitError, example_of, parse_quantity
 
 UNREAD = object()
@@ -66,6 +68,7 @@ def _key(
 
 
 Length = Annotated[float, *_key("length")]
+LengthOrZero = Annotated[float, *_key("length", may_be_zero=True)]
 Size = Annotated[float, *_key("size")]
 SignedLength = Annotated[float, *_key("length", may_be_negative=True)]
 Thickness = Annotated[float, *_key("thickness")]
@@ -79,6 +82,10 @@ Density = Annotated[float, *_key("density")]
 Damping = Annotated[float, *_key("damping", may_be_zero=True)]
 UnitWeight = Annotated[float, *_key("unit weight")]
 Time = Annotated[float, *_key("time")]
+Rate = Annotated[float, *_key("rate")]
+PeakVelocity = Annotated[float, *_key("vibration")]
+Inertia = Annotated[float, *_key("inertia")]
+Duration = Annotated[float, *_key("time", may_be_zero=True)]
 Angle = Annotated[float, *_key("angle")]
 _SLOPE = re.compile(r"1\s*:\s*(\d+\.?\d*)", re.ASCII)
 
@@ -98,6 +105,21 @@ Rake = Annotated[
     ),
     OfQuantity("angle"),
 ]
+
+
+def _amount(what: str, example: str) -> tuple[Any, ...]:
+    """Return what makes an amount a text with its unit."""
+    text = f"{what}, at least 0: {example}"
+    return (
+        BeforeValidator(lambda value: read_amount(value, example)),
+        WithJsonSchema({"type": "string", "description": text}),
+    )
+
+
+Money = Annotated[Any, *_amount("money in the currency", "2400 EUR")]
+FuelUse = Annotated[Any, *_amount("fuel by hour of driving or MJ of blow energy", "25 l/h")]
+FuelPrice = Annotated[Any, *_amount("money for a unit of fuel", "1.6 EUR/l")]
+FuelCarbon = Annotated[Any, *_amount("carbon dioxide of a unit of fuel", "2.7 kg/l")]
 
 SHAPE_OF_SHAFT = 'must be "uniform", "triangular" or rows of depth and intensity'
 SHAPE_EXAMPLE = 'For example [["0 m", 0.2], ["12 m", 1.0]].'
@@ -189,6 +211,7 @@ class LimitsKeys(Keys):
     compression_stress: Stress | None = None
     tension_stress: Stress | None = None
     bending: float = 0.0
+    wall_buckling: Share | None = None
 
 
 class FillKeys(Keys):
@@ -375,7 +398,7 @@ class TargetKeys(Keys):
 class SearchKeys(Keys):
     """How the best option is chosen."""
 
-    objective: Literal["energy", "time"] = "energy"
+    objective: Literal["energy", "time", "cost"] = "energy"
     reserve: float = 0.0
     seed: int = 7
 
@@ -473,6 +496,50 @@ class DoubtKeys(Keys):
     strokes: Literal["adapt", "keep"] = "adapt"
 
 
+class CostKeys(Keys):
+    """What the contract pays for; money is a text with the currency behind the number."""
+
+    currency: str
+    piles: int
+    rigs: int = 1
+    shift: Time
+    move: Duration
+    rig_day: Money | None = None
+    crew_day: Money | None = None
+    mobilisation: Money | None = None
+    splices: int = 0
+    splice_time: Duration | None = None
+    splice_price: Money | None = None
+    cushion_time: Duration | None = None
+    fuel_use: FuelUse | None = None
+    fuel_price: FuelPrice | None = None
+    fuel_co2: FuelCarbon | None = None
+
+
+class VibrationKeys(Keys):
+    """What the ground may do at a place that is to be spared."""
+
+    relation: Annotated[str, WithJsonSchema({"enum": [*RELATIONS]})]
+    distance: Length
+    limit: PeakVelocity
+    soil: str | None = None
+    factor: float | None = None
+
+
+class SiteKeys(Keys):
+    """What rig and surroundings allow."""
+
+    capacity: Mass | None = None
+    capacity_with_pile: Mass | None = None
+    headroom: Length | None = None
+    above_ground: Length | None = None
+    blow_rate_max: Rate | None = None
+    buckling_safety: float | None = None
+    fixity: LengthOrZero | None = None
+    inertia: Inertia | None = None
+    vibration: VibrationKeys | None = None
+
+
 class JobKeys(Keys):
     """A job file."""
 
@@ -490,6 +557,8 @@ class JobKeys(Keys):
     search: SearchKeys = SearchKeys()
     analysis: AnalysisKeys = AnalysisKeys()
     doubt: DoubtKeys | None = None
+    cost: CostKeys | None = None
+    site: SiteKeys | None = None
 
 
 def job_schema() -> dict[str, Any]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 
 from matchup.errors import Element
+from matchup.model.cost import Amount
 from matchup.model.rules import Rules
 
 WEAR_STATES = ("new", "worn")
@@ -32,6 +33,8 @@ class CushionMaterial:
         Thickness when worn over thickness when new, in (0, 1]. [-]
     new_for, life : float or None
         Blows after which the cushion counts as worn, and after which it is replaced. [-]
+    price : Amount or None
+        Money for one sheet, or for a whole cushion of a material that comes in none.
     source : str
         Where the numbers come from.
     extra : dict
@@ -48,6 +51,7 @@ class CushionMaterial:
     worn_restitution: float | None = None
     new_for: float | None = None
     life: float | None = None
+    price: Amount | None = None
     source: str = ""
     extra: dict[str, str] = field(default_factory=dict, compare=False)
 
@@ -63,6 +67,7 @@ class CushionMaterial:
         rules.fraction("worn_restitution", self.worn_restitution)
         rules.positive("new_for", self.new_for)
         rules.positive("life", self.life)
+        rules.not_negative("price", None if self.price is None else self.price.value)
         if self.life and self.new_for:
             rules.must(not self.life < self.new_for, "life", "must be >= `new_for`", self.life)
         rules.close()

@@ -8,8 +8,9 @@ is the one of the same blow energy, ram weight times stroke, and is called equiv
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
+from matchup.model.cost import Amount
 from matchup.model.cushion import Spring
 from matchup.model.rules import Rules
 
@@ -47,6 +48,8 @@ class Hammer:
         least one. [1/s]
     set_by_energy : bool
         Whether the setting is an energy, and strokes are equivalent.
+    pace : float or None
+        Largest blow rate that is asked of the crew. [1/s]
     lift_speed : float or None
         Speed at which the ram is lifted; limits the blow rate at long strokes. [m/s]
     rated_energy : float or None
@@ -62,7 +65,15 @@ class Hammer:
     rides_on_pile : bool
         Whether the hammer's frame stands on the helmet.
     available : bool
-        A hammer that is not available is left out of a ranking, with a notice.
+        A hammer that is not available fits no job.
+    hammer_length : float or None
+        With its helmet, from the pile's head to the top. [m]
+    head_min, head_max : float or None
+        Least and largest width of a pile that the helmet takes. [m]
+    day_rate, mobilisation : Amount or None
+        Money for a day with the hammer, and for bringing it to the site and back.
+    fuel_use : Amount or None
+        Fuel by hour of driving or MJ of blow energy.
     source : str
         Where the numbers come from.
     extra : dict
@@ -78,6 +89,7 @@ class Hammer:
     stroke_step: float | None = None
     blow_rate_max: float | None = None
     blow_rate_full: float | None = None
+    pace: float | None = None
     lift_speed: float | None = None
     rated_energy: float | None = None
     helmet_mass: float | None = None
@@ -86,6 +98,12 @@ class Hammer:
     hammer_mass: float | None = None
     rides_on_pile: bool = False
     available: bool = True
+    hammer_length: float | None = None
+    head_min: float | None = None
+    head_max: float | None = None
+    day_rate: Amount | None = None
+    mobilisation: Amount | None = None
+    fuel_use: Amount | None = None
     source: str = ""
     set_by_energy: bool = False
     extra: dict[str, str] = field(default_factory=dict, compare=False)
@@ -117,6 +135,15 @@ class Hammer:
         rules.positive("rated_energy", self.rated_energy, "energy")
         rules.positive("helmet_mass", self.helmet_mass, "mass")
         rules.positive("hammer_mass", self.hammer_mass, "mass")
+        rules.positive("hammer_length", self.hammer_length, "length")
+        rules.positive("head_min", self.head_min, "size")
+        rules.positive("head_max", self.head_max, "size")
+        if self.head_min is not None and self.head_max is not None:
+            must = "must be >= `head_min`"
+            rules.must(not self.head_max < self.head_min, "head_max", must, self.head_max, "size")
+        for name in ("day_rate", "mobilisation", "fuel_use"):
+            amount = getattr(self, name)
+            rules.not_negative(name, None if amount is None else amount.value)
         if self.hammer_mass is not None:
             rules.must(
                 not 0 < self.hammer_mass < self.ram_mass,
@@ -135,6 +162,7 @@ class Hammer:
         rules.close()
 
     def _check_rates(self, rules: Rules) -> None:
+        rules.positive("pace", self.pace, "rate")
         rules.positive("lift_speed", self.lift_speed, "velocity")
         rules.positive("blow_rate_full", self.blow_rate_full, "rate")
         if self.blow_rate_full is None:
@@ -163,7 +191,20 @@ class Hammer:
         return self.ram_mass * STANDARD_GRAVITY * stroke
 
     def blow_rate(self, stroke: float) -> float | None:
-        """Return the blow rate at a stroke [1/s]; None where the catalogue does not say.
+        """Return the blow rate at a stroke [1/s]; None where the catalogue does not say."""
+        rate = self._own_rate(stroke)
+        return rate if rate is None or self.pace is None else min(rate, self.pace)
+
+    def within(self, low: float, top: float) -> Hammer:
+        """Return the hammer with its settings [m] from `low` to `top` alone."""
+        full = None if self.blow_rate_full is None else self._own_rate(top)
+        most = self.blow_rate_max if full is None else self._own_rate(low)
+        return replace(
+            self, stroke_min=low, stroke_max=top, blow_rate_max=most, blow_rate_full=full
+        )
+
+    def _own_rate(self, stroke: float) -> float | None:
+        """Return the blow rate [1/s] that nobody slows.
 
         The rate falls in a straight line between both ends of the settings, where the catalogue
         gives them. Else the ram is lifted at its speed and falls; the catalogue's largest rate is

@@ -5,15 +5,17 @@ from __future__ import annotations
 from collections import Counter
 from dataclasses import dataclass
 
+from matchup.model.cost import Cost
 from matchup.model.cushion import CushionSpace, HammerCushion
 from matchup.model.doubt import Doubt
 from matchup.model.hammer import Hammer
 from matchup.model.limits import StressLimits
 from matchup.model.pile import Pile
 from matchup.model.rules import Rules
+from matchup.model.site import Site
 from matchup.model.stage import Stage
 
-OBJECTIVES = ("energy", "time")
+OBJECTIVES = ("energy", "time", "cost")
 DAMPINGS = ("smith", "viscous")
 LARGEST_SEED = 2**31
 """Random number generators take less than 2**32, and a seed is counted up by the hammers."""
@@ -26,7 +28,8 @@ class Search:
     Parameters
     ----------
     objective : str
-        ``energy``: least blow energy at the target stage; ``time``: fastest penetration there.
+        ``energy``: least blow energy at the target stage; ``time``: fastest penetration there, in
+        a whole drive least time of it; ``cost``: least cost of the contract.
     reserve : float
         Share kept back from set and limits, in [0, 1). [-]
     seed : int
@@ -139,6 +142,10 @@ class Job:
         None for stages given by hand.
     doubt : Doubt or None
         What is in doubt; None where nothing is said of it.
+    cost : Cost or None
+        What the contract pays for.
+    site : Site or None
+        What rig and surroundings allow.
     display : str
         ``metric`` or ``us``: units of tables.
     file : str or None
@@ -160,6 +167,8 @@ class Job:
     analysis: Analysis = Analysis()
     drive: Drive | None = None
     doubt: Doubt | None = None
+    cost: Cost | None = None
+    site: Site | None = None
     display: str = "metric"
     file: str | None = None
     notices: tuple[str, ...] = ()
@@ -178,12 +187,8 @@ class Job:
         for case in self.drive.required if self.drive else ():
             known = ", ".join(sorted(cases))
             rules.must(case in cases, "ground.required", f"must be cases: {known}", case)
-        rules.must(
-            self.search.objective != "time" or any(h.blow_rate(h.stroke_max) for h in self.hammers),
-            "search.objective",
-            "must be energy where no hammer's catalogue row gives `blow_rate_max` or `lift_speed`",
-            self.search.objective,
-        )
+        self._check_objective(rules)
+        self._check_site(rules)
         for stage in self.stages:
             rules.must(
                 not stage.penetration > self.pile.length * (1 + 1e-9),
@@ -200,6 +205,62 @@ class Job:
                 f"none for {hammer.name}",
             )
         rules.close()
+
+    def _check_objective(self, rules: Rules) -> None:
+        """Hold the objective against what can be known."""
+        objective = self.search.objective
+        rules.must(
+            objective == "energy" or any(h.blow_rate(h.stroke_max) for h in self.hammers),
+            "search.objective",
+            "must be energy where no hammer's catalogue row gives `blow_rate_max` or `lift_speed`",
+            objective,
+        )
+        rules.must(
+            objective != "cost" or self.cost is not None,
+            "search.objective",
+            "must be energy or time in a job that gives no cost",
+            objective,
+        )
+        rules.must(
+            objective != "cost" or any(h.day_rate and h.mobilisation for h in self.hammers),
+            "search.objective",
+            "must be energy or time where no hammer's row gives `day_rate` and `mobilisation`",
+            objective,
+        )
+
+    def _check_site(self, rules: Rules) -> None:
+        """Hold the site against pile and stages."""
+        site = self.site
+        if site is None:
+            return
+        rules.must(
+            site.above_ground is None or not site.above_ground > self.pile.length,
+            "site.above_ground",
+            "must be at most the pile's length",
+            site.above_ground,
+            "length",
+        )
+        if site.standing is not None:
+            rules.must(
+                bool(site.standing.inertia) or all(p.section.inertia for p in self.pile.parts),
+                "site.inertia",
+                "must be given: the shape of the pile does not tell it",
+                "",
+            )
+            must = "must be left out for a raked pile, which can't stand free"
+            safety = site.standing.safety
+            rules.must(not self.pile.rake, "site.buckling_safety", must, safety)
+        if site.vibration is not None:
+            low, high = site.vibration.published.depth
+            outside = [s.penetration for s in self.stages if not low <= s.penetration <= high]
+            rules.must(
+                not outside,
+                "site.vibration.relation",
+                f"must be one for toes as deep as here; {site.vibration.relation} is for {low:g} "
+                f"to {high:g} m",
+                outside[0] if outside else 0.0,
+                "length",
+            )
 
     @property
     def courses(self) -> tuple[Course, ...]:

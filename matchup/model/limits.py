@@ -8,7 +8,7 @@ tension.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from typing import NamedTuple
 
@@ -169,6 +169,8 @@ EN 12699 as tabulated in Tomlinson and Woodward, *Pile Design and Construction P
 (prestress taken off: from memory). All as quoted second-hand."""
 
 
+STOCKY_WALL = 60.0
+"""D/t up to which the wall of a tube yields before it buckles; API RP 2A-WSD, from memory. [-]"""
 SIDES = ("compression", "tension")
 
 
@@ -186,6 +188,9 @@ class GivenLimits(NamedTuple):
     bending : float
         Share of every limit kept back for the bending of eccentric blows, which the stress
         wave of a straight bar does not show; in [0, 1). [-]
+    wall_buckling : float or None
+        Share of the stress at which a tube's wall buckles that compression may take; None does
+        not look at it. [-]
     """
 
     rule: str | None = None
@@ -194,6 +199,7 @@ class GivenLimits(NamedTuple):
     compression_stress: float | None = None
     tension_stress: float | None = None
     bending: float = 0.0
+    wall_buckling: float | None = None
 
     def side(self, side: str) -> tuple[float | None, float | None]:
         """Return fraction and stress of ``compression`` or ``tension``."""
@@ -223,6 +229,7 @@ class GivenLimits(NamedTuple):
         rules.must(fits, "rule", must, self.rule)
         do = f"Write {self.bending / 100:g}." if 1 < self.bending < 100 else ""
         rules.must(0 <= self.bending < 1, "bending", "must be >= 0 and < 1", self.bending, do=do)
+        rules.fraction("wall_buckling", self.wall_buckling)
         for side in SIDES:
             fraction, stress = self.side(side)
             rules.fraction(side, fraction)
@@ -233,6 +240,20 @@ class GivenLimits(NamedTuple):
             if unsaid and (self.rule is None or material in known):
                 why = f"; {self.rule} sets no {side} limit for {material}" if self.rule else ""
                 rules.must(False, side, f"must be given{why}", "", do=_how_to_give(side, not why))
+        rules.close()
+
+    def check_walls(self, parts: Sequence[Part]) -> None:
+        """Hold a share of wall buckling against the parts that it is meant for.
+
+        Raises
+        ------
+        ModelError
+            If none of them is a tube whose wall may buckle.
+        """
+        rules = Rules("limits")
+        must = "must be left out where no part is an empty steel tube"
+        tubes = self.wall_buckling is None or any(map(is_empty_tube, parts))
+        rules.must(tubes, "wall_buckling", must, self.wall_buckling)
         rules.close()
 
 
@@ -256,6 +277,7 @@ def stress_limits(
     compression_stress: float | None = None,
     tension_stress: float | None = None,
     bending: float = 0.0,
+    wall_buckling: float | None = None,
 ) -> StressLimits:
     """Return the limits of a pile from a named rule, fractions of strength or stresses.
 
@@ -264,7 +286,7 @@ def stress_limits(
     Parameters
     ----------
     pile : Pile
-    rule, compression, tension, compression_stress, tension_stress, bending
+    rule, compression, tension, compression_stress, tension_stress, bending, wall_buckling
         See `GivenLimits`.
 
     Raises
@@ -272,7 +294,10 @@ def stress_limits(
     ModelError
         Naming the side for which nothing, or more than one thing, is given.
     """
-    given = GivenLimits(rule, compression, tension, compression_stress, tension_stress, bending)
+    given = GivenLimits(
+        rule, compression, tension, compression_stress, tension_stress, bending, wall_buckling
+    )
+    given.check_walls(pile.parts)
     parts = tuple(part_limits(part, given) for part in pile.parts)
     if pile.follower is not None:
         parts = (part_limits(pile.follower, None), *parts)
@@ -292,6 +317,8 @@ def part_limits(part: Part, given: GivenLimits | None) -> PartLimits:
     given.check(part.material)
     squeeze, pull = _filled(part, given, *(_limit(part, given, side) for side in SIDES))
     rules = Rules("limits")
+    if given.wall_buckling is not None and is_empty_tube(part):
+        squeeze = min(squeeze, wall_limit(part, given.wall_buckling))
     for side, limit in zip(SIDES, (squeeze, pull), strict=True):
         must = f"must leave a driving stress > 0 ({limit.text})"
         positive = math.isfinite(limit.stress) and limit.stress > 0
@@ -324,6 +351,43 @@ def _filled(part: Part, given: GivenLimits, squeeze: Limit, pull: Limit) -> tupl
     share = part.section.area / part.bearing_area
     text = f"{pull.text}, the tube bearing alone"
     return squeeze, Limit(share * pull.stress, text, pull.values)
+
+
+def is_empty_tube(part: Part) -> bool:
+    """Return whether a part is a steel tube whose wall nothing holds from within."""
+    return part.material == "steel" and part.section.wall is not None and part.fill is None
+
+
+def wall_buckling_stress(part: Part) -> float:
+    """Return the stress [Pa] at which the wall of a steel tube buckles under axial compression.
+
+    Notes
+    -----
+    Yield up to D/t 60; beyond, ``fy (1.64 - 0.23 (D/t)**0.25)``, at most ``0.6 E t/D``, which is
+    half of what a perfect thin cylinder bears.
+
+    References
+    ----------
+    .. [1] API RP 2A-WSD 3.2.2b, from memory.
+    """
+    assert part.section.wall is not None
+    slenderness = part.section.width / part.section.wall
+    elastic = 0.6 * part.modulus / slenderness
+    if slenderness <= STOCKY_WALL:
+        return min(part.strength, elastic)
+    return float(min(part.strength * (1.64 - 0.23 * slenderness**0.25), elastic))
+
+
+def wall_limit(part: Part, share: float) -> Limit:
+    """Return the limit that the wall of a steel tube sets to compression."""
+    assert part.section.wall is not None
+    stress = wall_buckling_stress(part)
+    slenderness = part.section.width / part.section.wall
+    text = (
+        f"{share:g} of the stress at which the wall buckles, D/t {slenderness:.0f}; API RP 2A-WSD "
+        "3.2.2b, from memory"
+    )
+    return Limit(share * stress, text, (("wall buckling", stress),))
 
 
 def _less_bending(limit: Limit, share: float) -> Limit:
@@ -360,7 +424,22 @@ def _warnings(part: Part, compression: Limit, tension: Limit) -> tuple[str, ...]
                 f"allowance ({allowance.text})"
             )
     if part.material == "steel":
+        warnings += _warnings_of_wall(part, compression)
         for name, limit in (("compression", compression), ("tension", tension)):
             if limit.stress > part.strength:
                 warnings.append(f"the {name} limit is above the yield stress ({limit.text})")
     return tuple(warnings)
+
+
+def _warnings_of_wall(part: Part, compression: Limit) -> list[str]:
+    """Return that the wall of a thin tube may buckle before compression reaches its limit."""
+    wall = part.section.wall
+    if not is_empty_tube(part) or wall is None or part.section.width <= STOCKY_WALL * wall:
+        return []
+    if wall_buckling_stress(part) >= compression.stress:
+        return []
+    limit = wall_limit(part, 1.0)
+    return [
+        f"the wall buckles at {limit.stress / 1e6:.0f} MPa, below the compression limit ("
+        f"{limit.text.partition(', ')[2]}); `wall_buckling` keeps below that"
+    ]

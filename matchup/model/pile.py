@@ -93,6 +93,11 @@ class Section:
     ends : (float, float) or None
         Of a tapered section the areas at head and toe, with `area` and `perimeter` the means in
         between; None where it is the same throughout. [m2]
+    inertia : float or None
+        Least second moment of area, of a tapered section that of the toe; None where the shape
+        does not tell it. [m4]
+    wall : float or None
+        Of a tube. [m]
     """
 
     text: str
@@ -103,24 +108,29 @@ class Section:
     displaces: bool = True
     core: Core | None = None
     ends: tuple[float, float] | None = None
+    inertia: float | None = None
+    wall: float | None = None
 
     def __post_init__(self) -> None:
         rules = Rules("pile section")
         for name in ("area", "perimeter", "toe_area", "width"):
             rules.positive(name, getattr(self, name), "area" if "area" in name else "length")
+        rules.positive("inertia", self.inertia, "inertia")
+        rules.positive("wall", self.wall, "thickness")
         rules.close()
 
     @classmethod
     def square(cls, width: float) -> Section:
         """Return a solid square section."""
-        return cls("square", width**2, 4 * width, width**2, width)
+        return cls("square", width**2, 4 * width, width**2, width, inertia=width**4 / 12)
 
     @classmethod
     def round(cls, diameter: float, toe_diameter: float | None = None) -> Section:
         """Return a solid round section, tapered in a straight line to `toe_diameter` if given."""
         area = math.pi * diameter**2 / 4
         if toe_diameter is None:
-            return cls("round", area, math.pi * diameter, area, diameter)
+            inertia = math.pi * diameter**4 / 64
+            return cls("round", area, math.pi * diameter, area, diameter, inertia=inertia)
         rules = Rules("pile section")
         rules.positive("toe_diameter", toe_diameter, "length")
         must = "must be at most the diameter, which is that of the head"
@@ -128,7 +138,15 @@ class Section:
         rules.close()
         toe = math.pi * toe_diameter**2 / 4
         mean = math.pi / 2 * (diameter + toe_diameter)
-        return cls("round, tapered", _mean(area, toe), mean, toe, toe_diameter, ends=(area, toe))
+        return cls(
+            "round, tapered",
+            _mean(area, toe),
+            mean,
+            toe,
+            toe_diameter,
+            ends=(area, toe),
+            inertia=math.pi * toe_diameter**4 / 64,
+        )
 
     @classmethod
     def pipe(cls, diameter: float, wall: float, toe: str) -> Section:
@@ -153,6 +171,8 @@ class Section:
             diameter,
             closed,
             None if closed else core,
+            inertia=math.pi * (diameter**4 - inside**4) / 64,
+            wall=wall,
         )
 
     @classmethod

@@ -11,10 +11,12 @@ from matchup.model.cushion import Cushion
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.limits import PartLimits
+from matchup.report.bills import bill_document
 from matchup.report.doubted import odds_document
-from matchup.report.sentences import reason
+from matchup.report.sentences import misfit_text, reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, Ranking, StagePlan
+from matchup.search.tradeoff import is_beaten
 
 SCHEMA_VERSION = 1
 
@@ -101,12 +103,17 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "verdict": option.verdict,
         "governs": option.governs,
         "reason": reason(option, job, units),
+        "misfits": [
+            {"what": misfit.what, "reason": misfit_text(misfit, units)} for misfit in option.misfits
+        ],
         "cushion": cushion_document(option.stack.pile),
         "hammer_cushion": hammer_cushion(option),
         "stroke_m": number(plan.stroke),
         "energy_set_kJ": number(plan.energy_set, 1e-3),
         "stroke_window_m": None if plan.top is None else [plan.low, plan.top],
-        "schedule": [_stage_document(stage_plan) for stage_plan in option.plans],
+        "schedule": (
+            [] if option.misfits else [_stage_document(stage_plan) for stage_plan in option.plans]
+        ),
         "set_mm": number(plan.set, 1e3),
         "blows_per_25cm": blows_per_25cm(plan.set),
         "blow_energy_kJ": number(plan.blow_energy, 1e-3),
@@ -118,6 +125,8 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "blow_rate_per_min": number(plan.blow_rate, 60),
         "blows_total": number(taken.blows) if taken else None,
         "drive_minutes": number(taken.seconds, 1 / 60) if taken else None,
+        "drive_blow_energy_MJ": number(taken.energy, 1e-6) if taken else None,
+        "cost": bill_document(option.bill, job.cost),
         "runner_up": (
             None
             if option.runner_up is None
@@ -159,6 +168,7 @@ def ranking_document(ranking: Ranking, units: Units) -> dict[str, Any]:
         "limits": limits_document(job),
         "options": [
             option_document(option, job, units, place)
+            | {"unbeaten": not is_beaten(option, ranking.options)}
             for place, option in enumerate(ranking.options, 1)
         ],
         "rejected": [option_document(option, job, units, None) for option in ranking.rejected],

@@ -9,6 +9,7 @@ from math import inf
 from typing import Any
 
 from matchup.model.job import Job
+from matchup.report.bills import bill_document, bills_blocks
 from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
@@ -53,8 +54,11 @@ def drive_page(
     """
     job = ranking.job
     option = (*ranking.options, *ranking.rejected)[0]
+    page: list[Block] = [Headline(answer(option, job, units))]
+    if option.misfits:
+        return [*page, *foot(ranking, units)]
     chosen = chosen_case(option, case)
-    page: list[Block] = [Headline(answer(option, job, units)), cases_table(option, units)]
+    page.append(cases_table(option, units))
     if chosen.plans:
         page += [
             Headline(f"Case {chosen.case}, station by station:"),
@@ -64,6 +68,7 @@ def drive_page(
         page.append(Prose(tuple(lines)))
     if criterion is not None:
         page += criterion_page(criterion, job, units)
+    page += bills_blocks((option,), job, units)
     page += doubt_blocks(ranking, units)
     return [*page, *foot(ranking, units)]
 
@@ -314,14 +319,14 @@ def drive_document(ranking: Ranking, units: Units) -> dict[str, Any]:
         "schema_version": SCHEMA_VERSION,
         **checked,
         "ground": list(ranking.job.drive.basis) if ranking.job.drive else [],
-        "cases": [_case_document(drive) for drive in option.cases],
+        "cases": [_case_document(drive, ranking.job) for drive in option.cases],
         "stations": [
             _station_document(plan, ranking.job) for drive in option.cases for plan in drive.plans
         ],
     }
 
 
-def _case_document(drive: CaseDrive) -> dict[str, Any]:
+def _case_document(drive: CaseDrive, job: Job) -> dict[str, Any]:
     taken = drive.taken
     return {
         "case": drive.case,
@@ -332,7 +337,9 @@ def _case_document(drive: CaseDrive) -> dict[str, Any]:
         "goes_down_to_m": number(drive.settled),
         "blows": number(taken.blows),
         "minutes": number(taken.seconds, 1 / 60),
+        "blow_energy_MJ": number(taken.energy, 1e-6),
         "pile_cushions": taken.cushions,
+        "cost": bill_document(drive.bill, job.cost),
     }
 
 

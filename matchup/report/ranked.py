@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from matchup.model.job import Job
+from matchup.report.bills import bills_blocks
 from matchup.report.closing import closing
 from matchup.report.doubted import doubt_blocks
 from matchup.report.options import margins_table, options_table, schedule_table
@@ -35,7 +36,7 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
     if best and len(job.stages) > 1 and job.drive is None:
         which = f" of the best {len(best)}" if len(best) > 1 else ""
         page += [Headline(f"Stroke schedule{which}:"), schedule_table(best, units)]
-    page += softer_prose(ranking, units)
+    page += [*bills_blocks(ranking.options, job, units), *softer_prose(ranking, units)]
     page += doubt_blocks(ranking, units)
     if ranking.rejected:
         page.append(Prose(failures(ranking, units), "Hammers that can't, nearest miss first:"))
@@ -73,10 +74,12 @@ def check_page(ranking: Ranking, units: Units) -> Page:
     can = "Yes" if option.drives else "No"
     page: list[Block] = [
         Headline(f"{can}: {option.hammer.name} {option.verdict}; {reason(option, job, units)}."),
-        margins_table(option, ranking, units),
     ]
+    if not option.misfits:
+        page.append(margins_table(option, ranking, units))
     if len(job.stages) > 1 and option.drives and job.drive is None:
         page.append(schedule_table((option,), units))
+    page += bills_blocks((option,), job, units)
     if option.runner_up is not None:
         page.append(Prose((softer_sentence(option, job.search.objective, units),)))
     page += doubt_blocks(ranking, units)

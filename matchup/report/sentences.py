@@ -2,22 +2,28 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Sequence
 
 from matchup.model.cushion import Stack
+from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.limits import NOT_LIMITED, Limit, StressLimits
 from matchup.model.stage import Stage
+from matchup.report.bills import per_pile_text
 from matchup.report.shown import Units, share_text
+from matchup.report.siting import site_lines
 from matchup.search.cure import BEYOND, HEAVIER
 from matchup.search.option import (
+    DOES_NOT_FIT,
     NOT_ANALYSED,
     NOT_REACHED,
     PILE_RUNS,
     REDUCED,
     REFUSES,
     Cure,
+    Misfit,
     Option,
     Ranking,
     StagePlan,
@@ -42,13 +48,17 @@ def verdict_sentence(ranking: Ranking, units: Units) -> str:
     plan = best.target
     who = "the hammer" if count == 1 else f"{len(options)} of {count} hammers"
     objective, figure = "least energy", f"{units.text(plan.blow_energy, 'energy')} a blow"
-    if ranking.job.search.objective == "time":
+    asked = ranking.job.search.objective
+    if asked == "time":
         objective, speed = "fastest", units.speed(plan.speed)
         figure = "its blow rate not known" if speed is None else f"{speed:.2f} {units.speed_unit}"
     if best.slowest is not None:
         taken = best.slowest.taken
         figure += f", {taken.blows:.0f} blows"
         figure += "" if taken.seconds is None else f" in {taken.seconds / 60:.0f} min"
+    if ranking.job.cost is not None and best.bill is not None:
+        objective = "least cost" if asked == "cost" else objective
+        figure += f", {per_pile_text(best.bill, ranking.job.cost)}"
     return (
         f"{who} can drive this pile within the limits; {objective}: {best.hammer.name} at "
         f"{units.setting(best.hammer, plan.stroke)}{on_stack(best.stack, units)}, {figure}."
@@ -59,6 +69,8 @@ def _nobody(rejected: Sequence[Option]) -> str:
     """Return that no hammer can, and why the nearest can't."""
     nearest = rejected[0]
     name, count = nearest.hammer.name, len(rejected)
+    if nearest.verdict == DOES_NOT_FIT:
+        return f"{name} {DOES_NOT_FIT}." if count == 1 else f"none of the {count} hammers fits."
     if nearest.verdict == NOT_ANALYSED:
         return f"{name} {NOT_ANALYSED}." if count == 1 else f"none of {count} could be analysed."
     why = nearest.verdict if nearest.verdict == PILE_RUNS else f"it {nearest.verdict}"
@@ -99,6 +111,8 @@ def needed_set(stage: Stage, job: Job) -> float:
 
 def reason(option: Option, job: Job, units: Units) -> str:
     """Return in one sentence what an option does, or why the hammer fails and what would help."""
+    if option.misfits:
+        return "; ".join(misfit_text(misfit, units) for misfit in option.misfits)
     plan = option.failing or option.target
     at = f"{where(plan.stage, job, units)}, " if len(job.stages) > 1 else ""
     if option.verdict == PILE_RUNS:
@@ -121,12 +135,23 @@ def reason(option: Option, job: Job, units: Units) -> str:
     return f"{at}{does}; {uses}{helps}"
 
 
+def misfit_text(misfit: Misfit, units: Units) -> str:
+    """Return what is in the way of a hammer, with its figures."""
+    shown = [
+        share_text(value) if quantity == "share" else units.text(value, quantity)
+        for value, quantity in misfit.values
+    ]
+    return misfit.words.format(*shown)
+
+
 def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> str:
     """Return the stroke that explains a failure, and the set that it gives."""
     hammer = option.hammer
     stroke = f"{units.setting(hammer, plan.stroke)}{on_stack(option.stack, units)}"
     word = "setting" if hammer.set_by_energy else "stroke"
     gives = f"gives {set_text(plan.set, plan.stage, job, units)}"
+    if option.verdict in SHORT_OF_SET and _is_held(hammer, job):
+        return f"the largest stroke allowed here, {stroke}, {gives}"
     if hammer.stroke_min == hammer.stroke_max:
         return f"its only {word} of {stroke} {gives}"
     if option.verdict in SHORT_OF_SET:
@@ -137,6 +162,11 @@ def _failing_stroke(option: Option, plan: StagePlan, job: Job, units: Units) -> 
         return f"the lowest step that reaches the set, {stroke}, {gives}"
     needed = units.text(needed_set(plan.stage, job), "set")
     return f"a set of {needed} needs a {word} of {stroke}"
+
+
+def _is_held(hammer: Hammer, job: Job) -> bool:
+    """Return whether the site allows less than the hammer's own longest stroke."""
+    return any(h.name == hammer.name and h.stroke_max > hammer.stroke_max for h in job.hammers)
 
 
 def set_text(set_: float, stage: Stage, job: Job, units: Units) -> str:
@@ -226,17 +256,22 @@ def softer_sentence(option: Option, objective: str, units: Units) -> str:
     return (
         f"Softer for {option.hammer.name}: {cushions(softer.stack, units)} at "
         f"{units.setting(option.hammer, softer.target.stroke)}; {', '.join(changes)} of the limit, "
-        f"{_at_what_cost(option.target, softer.target, objective)}."
+        f"{_at_what_cost(option, softer, objective)}."
     )
 
 
-def _at_what_cost(best: StagePlan, softer: StagePlan, objective: str) -> str:
+def _at_what_cost(option: Option, runner_up: Option, objective: str) -> str:
     """Return what the runner-up takes more of than the best plan, in words."""
+    best, softer = option.target, runner_up.target
     what, ratio = "energy", softer.blow_energy / best.blow_energy
     if objective == "time":
         if not best.speed or not softer.speed:
             return "at a speed not known"
         what, ratio = "speed", softer.speed / best.speed
+    if objective == "cost":
+        if math.isinf(option.cost) or math.isinf(runner_up.cost):
+            return "at a cost not known"
+        what, ratio = "cost", runner_up.cost / option.cost
     change = f"{100 * abs(ratio - 1):.0f}%"
     if change == "0%":
         return f"at the same {what}"
@@ -270,6 +305,7 @@ def rests_on(job: Job, units: Units) -> list[str]:
             f"{1 + keep:.4g} times the one needed, stresses at most {100 * (1 - keep):.3g}% of the "
             "limits."
         )
+    lines += site_lines(job, units)
     if notes := _notes(job, units):
         lines.append(f"Taken by default: {'; '.join(notes)}.")
     return lines
@@ -319,7 +355,10 @@ def searched(ranking: Ranking, timed: bool = True) -> str:
         Whether to tell the time it took, which is never the same twice.
     """
     groups: dict[str, list[list[int]]] = {}
-    for option in (*ranking.options, *ranking.rejected):
+    everyone = [o for o in (*ranking.options, *ranking.rejected) if not o.misfits]
+    if not everyone:
+        return "Searched: nothing; no blow was computed for hammers that do not fit."
+    for option in everyone:
         numbers = [int(number) for number in re.findall(r"\d+", option.certificate)]
         groups.setdefault(re.sub(r"\d+", "#", option.certificate), []).append(numbers)
     told = []

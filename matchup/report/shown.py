@@ -26,6 +26,10 @@ DIGITS = {
     ("thickness", "us"): 2,
     ("force", "metric"): 0,
     ("force", "us"): 0,
+    ("vibration", "metric"): 1,
+    ("vibration", "us"): 2,
+    ("rate", "metric"): 0,
+    ("rate", "us"): 0,
     ("mass", "metric"): 0,
     ("mass", "us"): 0,
 }

@@ -245,8 +245,8 @@ def _cell(value: object, column: Column) -> str:
 def wrapped(text: str, width: int, indent: str = "") -> str:
     """Return a paragraph in lines of at most `width`, later lines indented.
 
-    A number and what follows it, mostly its unit, stay in one line.
+    A number and what follows it, mostly its unit, stay in one line, and so do its thousands.
     """
-    kept = re.sub(r"(?<=\d) (?=[a-zA-Z])", NO_BREAK, text)
+    kept = re.sub(r"(?<=\d) (?=[a-zA-Z]|\d{3}\b)", NO_BREAK, text)
     lines = textwrap.wrap(kept, width, subsequent_indent=indent, break_on_hyphens=False)
     return "\n".join(lines).replace(NO_BREAK, " ")

@@ -9,6 +9,7 @@ from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
+from matchup.search.bill import Bill
 from matchup.search.odds import Odds
 
 DRIVES = "drives"
@@ -21,9 +22,11 @@ PILE_RUNS = "pile runs"
 GOES_DOWN = "goes down under its weight"
 """Of a station on the way of a drive; not a failure."""
 NOT_ANALYSED = "could not be analysed"
+DOES_NOT_FIT = "does not fit"
 
 VERDICTS = (
     NOT_ANALYSED,
+    DOES_NOT_FIT,
     PILE_RUNS,
     OVER_COMPRESSION,
     OVER_TENSION,
@@ -54,12 +57,15 @@ class Taken:
         Blows that the pile cushion has taken. [-]
     cushions : int
         Pile cushions used so far, this one included.
+    energy : float
+        Of the blows, ram weight times stroke. [J]
     """
 
     blows: float = 0.0
     seconds: float | None = 0.0
     on_cushion: float = 0.0
     cushions: int = 1
+    energy: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -164,6 +170,8 @@ class CaseDrive:
     settled : float or None
         Penetration down to which the pile goes under its weight; None where the first station
         takes blows already. [m]
+    bill : Bill or None
+        Of the contract; None where the job gives no cost, or the target is not reached.
     """
 
     case: str
@@ -171,6 +179,7 @@ class CaseDrive:
     plans: tuple[StagePlan, ...]
     failing: StagePlan | None
     settled: float | None
+    bill: Bill | None = None
 
     @property
     def reaches(self) -> bool:
@@ -199,6 +208,26 @@ class CaseDrive:
         """The station with the largest use of a stress limit; None where none took a blow."""
         driven = [plan for plan in self.plans if plan.verdict != GOES_DOWN]
         return max(driven, key=lambda plan: plan.stress_use, default=None)
+
+
+@dataclass(frozen=True, slots=True)
+class Misfit:
+    """What keeps a hammer from being used on this pile and site.
+
+    Parameters
+    ----------
+    what : str
+        ``availability``, ``helmet``, ``capacity``, ``headroom``, ``blow rate``, ``stability`` or
+        ``vibration``.
+    words : str
+        A sentence with a place, ``{}``, for each value.
+    values : tuple of (value, quantity)
+        In SI; the quantity is one of the units table, or ``share``.
+    """
+
+    what: str
+    words: str
+    values: tuple[tuple[float, str], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -243,8 +272,8 @@ class Option:
     verdict : str
         One of `VERDICTS`.
     governs : str
-        ``set``, ``compression``, ``tension``, ``stroke range``, ``blow rate``, ``refusal`` or
-        ``weight``.
+        ``set``, ``compression``, ``tension``, ``stroke range``, ``blow rate``, ``refusal``,
+        ``weight`` or ``fit``.
     stack : Stack
         Cushions.
     plans : tuple of StagePlan
@@ -273,6 +302,8 @@ class Option:
         The whole drive by ground case; empty for stages given by hand.
     odds : Odds or None
         What becomes of it under the job's doubt; None where it was not looked at.
+    misfits : tuple of Misfit
+        What is in the way of a hammer that does not fit, for which no blow was computed.
     """
 
     hammer: Hammer
@@ -291,6 +322,7 @@ class Option:
     cure: Cure | None = None
     cases: tuple[CaseDrive, ...] = ()
     odds: Odds | None = None
+    misfits: tuple[Misfit, ...] = ()
 
     @property
     def tightest(self) -> StagePlan | None:
@@ -307,6 +339,15 @@ class Option:
         """The required case that takes the most blows; None for stages given by hand."""
         required = [case for case in self.cases if case.required]
         return max(required, key=lambda case: case.taken.blows, default=None)
+
+    @property
+    def bill(self) -> Bill | None:
+        """Bill of the required case that costs the most, or takes the longest where none is known.
+
+        None where the job gives no cost.
+        """
+        bills = [case.bill for case in self.cases if case.required and case.bill]
+        return max(bills, key=lambda b: (b.total or 0.0, b.pile_time or 0.0), default=None)
 
     @property
     def drives(self) -> bool:

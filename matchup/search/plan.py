@@ -17,6 +17,7 @@ import numpy as np
 from matchup.analysis.cells import OPEN, Cells, job_demands
 from matchup.analysis.rig import Rig
 from matchup.analysis.window import WindowFinder
+from matchup.search.bill import Bill, make_bill
 from matchup.search.option import (
     DRIVES,
     FINE,
@@ -29,8 +30,10 @@ from matchup.search.option import (
     REDUCED,
     REFUSES,
     VERDICTS,
+    CaseDrive,
     Option,
     StagePlan,
+    Taken,
 )
 from matchup.search.way import Walk, case_drives, stage_plan, walk
 from matchup.wave.layout import Integers
@@ -70,8 +73,8 @@ class Planner:
         self._targets: dict[Pair, tuple[StagePlan, ...]] = {}
         self._ways: dict[Pair, tuple[StagePlan, ...]] = {}
         self._objective = rig.job.search.objective
-        whole_drive_counts = rig.job.drive is not None and self._objective == "time"
-        self._cost_is_known_at_target = not whole_drive_counts
+        self._is_fast = self._objective != "energy"
+        self._cost_is_known_at_target = rig.job.drive is None or not self._is_fast
 
     # --- looking at cushions --------------------------------------------------------------------
 
@@ -158,7 +161,7 @@ class Planner:
         keys = [key for keys in per_pair for key in keys]
         cells = Cells(*np.array(keys).T)
         found = self.finder.find(cells)
-        if self._objective == "time":
+        if self._is_fast:
             works = np.flatnonzero(found.state == OPEN)
             if works.size:
                 some = cells.take(works)
@@ -175,7 +178,8 @@ class Planner:
         """Return the settings between two at which the pile goes in fastest.
 
         That is the highest: the set grows at least in proportion to the stroke, and the blow rate
-        falls at most in inverse proportion. A rate that falls in a straight line between two given
+        falls at most in inverse proportion. For the same reason it takes the least blows and the
+        least energy, and so costs the least. A rate that falls in a straight line between two given
         ones may fall faster; then every setting in between is looked at.
         """
         best = top.copy()
@@ -204,7 +208,7 @@ class Planner:
     def _walks(self, hammer: int, stack: int) -> list[Walk]:
         last = int(self.finder.last_settings(np.array([hammer]))[0])
         falls = self.rig.job.hammers[hammer].blow_rate_full is not None
-        high = self._objective == "time" and not falls
+        high = self._is_fast and not falls
         made = []
         for course, target in zip(self.courses, self._targets[hammer, stack], strict=True):
             wanted = last if high else target.at
@@ -232,7 +236,22 @@ class Planner:
         if self._cost_is_known_at_target or (hammer, stack) not in self._ways:
             return plan_cost(self.target_plan(hammer, stack), self._objective)
         taken = [plan.taken for plan in self._required(self._ways[hammer, stack]) if plan.taken]
-        return max((t.seconds if t.seconds is not None else math.inf) for t in taken)
+        return max(self._drive_cost(hammer, stack, one) for one in taken)
+
+    def _drive_cost(self, hammer: int, stack: int, taken: Taken) -> float:
+        """Return what the objective makes of a drive down to a station."""
+        bill = self._bill(hammer, stack, taken)
+        worth = taken.seconds if bill is None else bill.pile_time
+        if self._objective == "cost":
+            worth = bill.total if bill else None
+        return math.inf if worth is None else worth
+
+    def _bill(self, hammer: int, stack: int, taken: Taken) -> Bill | None:
+        job = self.rig.job
+        if job.cost is None:
+            return None
+        used = (taken.seconds, taken.energy, taken.cushions)
+        return make_bill(job.cost, job.hammers[hammer], self.rig.stacks[stack], *used)
 
     def works(self, hammer: int, stack: int) -> bool:
         """Return whether a pair has been looked at, and works at all stages of every course."""
@@ -379,9 +398,15 @@ class Planner:
             plans=plans,
             target=target,
             cost=self.cost(hammer, stack),
-            cases=case_drives(self.rig.job, plans, float(self.rig.chains.weights[hammer])),
+            cases=tuple(
+                replace(case, bill=self._bill(hammer, stack, case.taken) if case.reaches else None)
+                for case in self._cases(hammer, plans)
+            ),
             runner_up=None if softer is None else self._option(hammer, softer),
         )
+
+    def _cases(self, hammer: int, plans: tuple[StagePlan, ...]) -> tuple[CaseDrive, ...]:
+        return case_drives(self.rig.job, plans, float(self.rig.chains.weights[hammer]))
 
     def _is_reduced(self, plans: tuple[StagePlan, ...]) -> bool:
         """Return whether the stroke must stay below the target's at a stage on the way."""
@@ -395,7 +420,7 @@ class Planner:
     def _governs(self, hammer: int, target: StagePlan) -> str:
         """Return what keeps the target's stroke from being lower or, for speed, higher."""
         strokes = self.finder.strokes[hammer]
-        if self._objective == "time":
+        if self._is_fast:
             if target.at == strokes.size - 1:
                 return "stroke range"
             if target.top is not None and target.stroke < target.top:
@@ -427,7 +452,7 @@ class Planner:
             stack=self.rig.stacks[nearest],
             plans=plans if failing.stage.name in told else (*plans, failing),
             target=self.target_plan(hammer, nearest),
-            cases=case_drives(self.rig.job, plans, float(self.rig.chains.weights[hammer])),
+            cases=self._cases(hammer, plans),
             cost=math.inf,
             failing=failing,
         )
@@ -442,9 +467,9 @@ def _gains(hard: tuple[float, float], soft: tuple[float, float]) -> bool:
 def plan_cost(plan: StagePlan, objective: str) -> float:
     """Return what an objective makes of a target's plan; the least is the best.
 
-    ``energy``: blow energy [J]; ``time``: time to drive a metre, infinite where the blow rate is
-    not known [s/m].
+    ``energy``: blow energy [J]; ``time`` and ``cost``: time to drive a metre, infinite where the
+    blow rate is not known [s/m].
     """
-    if objective == "time":
+    if objective != "energy":
         return 1 / plan.speed if plan.speed else math.inf
     return plan.blow_energy

@@ -7,10 +7,12 @@ from collections.abc import Collection
 from dataclasses import replace
 
 from matchup.analysis.rig import Rig, Tell
+from matchup.errors import InputError, Problem
 from matchup.model.job import Job
 from matchup.search.cure import find_cures
 from matchup.search.doubt import find_odds
-from matchup.search.option import NOT_ANALYSED, PILE_RUNS, Option, Ranking
+from matchup.search.fit import sort_hammers
+from matchup.search.option import DOES_NOT_FIT, NOT_ANALYSED, PILE_RUNS, Option, Ranking
 from matchup.search.plan import Planner
 from matchup.search.reach import find_reach
 
@@ -28,21 +30,44 @@ def rank_hammers(job: Job, workers: int | None = None, tell: Tell | None = None)
         Threads; None takes as many as there are processors. The answer does not depend on it.
     tell : callable or None
         Called with the number of blows of every batch.
+
+    Raises
+    ------
+    InputError
+        If cost is asked for where it can't be known.
     """
+    _check_objective(job)
     started = time.perf_counter()
+    fitting = sort_hammers(job)
+    options: list[Option] = []
+    spent = 0
+    if fitting.hammers:
+        options, spent = _plan(replace(job, hammers=fitting.hammers), workers, tell)
+    driving = [option for option in options if option.drives]
+    failing = [option for option in options if not option.drives]
+    return Ranking(
+        job=replace(job, notices=(*job.notices, *fitting.notes)),
+        options=tuple(sorted(driving, key=lambda option: option.cost)),
+        rejected=(*sorted(failing, key=_distance), *fitting.unfit),
+        analyses=spent,
+        runtime=time.perf_counter() - started,
+    )
+
+
+def _plan(job: Job, workers: int | None, tell: Tell | None) -> tuple[list[Option], int]:
+    """Return the option of every hammer, and the blows that were computed for them."""
     planner = Planner(Rig(job, workers, tell))
     options = planner.options()
     options, blows_for_reach = find_reach(job, options, workers, tell)
     options, blows_for_cures = find_cures(planner, options)
-    driving = [option for option in options if option.drives]
-    failing = [option for option in options if not option.drives]
-    return Ranking(
-        job=job,
-        options=tuple(sorted(driving, key=lambda option: option.cost)),
-        rejected=tuple(sorted(failing, key=_distance)),
-        analyses=planner.rig.spent + blows_for_reach + blows_for_cures,
-        runtime=time.perf_counter() - started,
-    )
+    return options, planner.rig.spent + blows_for_reach + blows_for_cures
+
+
+def _check_objective(job: Job) -> None:
+    if job.search.objective == "cost" and job.drive is None:
+        must = "must be energy or time where stages are given by hand"
+        do = "Blows and minutes of a whole drive follow from a [ground]."
+        raise InputError([Problem(job.file, None, "search.objective", must, "cost", do)])
 
 
 def with_odds(
@@ -78,7 +103,7 @@ def with_odds(
         )
         for place, option in enumerate((*options, *rejected))
         if place < min(LOOKED_AT, len(options)) or option.hammer.name in influences
-        if option.verdict not in (PILE_RUNS, NOT_ANALYSED)
+        if option.verdict not in (PILE_RUNS, NOT_ANALYSED, DOES_NOT_FIT)
     }
     return replace(
         ranking,

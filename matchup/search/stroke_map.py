@@ -22,6 +22,7 @@ from matchup.model.cushion import Stack
 from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
+from matchup.search.fit import sort_hammers
 from matchup.wave.layout import Floats, Integers
 
 MOST_STROKES = 24
@@ -108,6 +109,11 @@ def map_strokes(
         of them. The targets come first, since they ask for the larger set; a closed cell is not
         looked at any further.
     """
+    fitting = sort_hammers(replace(job, hammers=(hammer,)))
+    if fitting.hammers:
+        (hammer,) = fitting.hammers
+    unfit = tuple(f"{o.hammer.name} {o.verdict}; `check` says why" for o in fitting.unfit)
+    job = replace(job, notices=(*job.notices, *fitting.notes, *unfit))
     looked = _stages(job) if stage is None else (stage,)
     drive = job.drive if stage is None else None
     rig = Rig(replace(job, hammers=(hammer,), stages=looked, drive=drive), workers, tell)

@@ -8,14 +8,16 @@ from collections.abc import Sequence
 from matchup.search.option import Option
 
 
-def costs(option: Option) -> tuple[float, float, float]:
-    """Return what one wants little of: blow energy [J], highest stress use [-], and time.
+def costs(option: Option) -> tuple[float, float, float, float]:
+    """Return what one wants little of: blow energy [J], highest stress use [-], time and money.
 
     Time is that of the whole drive [s], or for stages given by hand what a length of penetration
-    takes at the target [s/m]; infinite where the blow rate is not known.
+    takes at the target [s/m]; infinite where the blow rate is not known. Money is the cost of the
+    contract, infinite where it is not known.
     """
     use = max(option.compression_use, option.tension_use)
-    return option.target.blow_energy, use, _time(option)
+    total = None if option.bill is None else option.bill.total
+    return option.target.blow_energy, use, _time(option), math.inf if total is None else total
 
 
 def _time(option: Option) -> float:
@@ -27,7 +29,7 @@ def _time(option: Option) -> float:
 
 
 def is_beaten(option: Option, others: Sequence[Option]) -> bool:
-    """Return whether another option is no worse in energy, stress and time, and better in one."""
+    """Return whether another is no worse in energy, stress, time and money, and better in one."""
     mine = costs(option)
     return any(
         all(theirs <= own for theirs, own in zip(costs(other), mine, strict=True))

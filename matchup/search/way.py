@@ -276,10 +276,12 @@ def _onward(finder: WindowFinder, one: Walk, plan: StagePlan) -> Taken:
     if last.verdict == GOES_DOWN:
         weight = float(finder.rig.chains.weights[one.hammer])
         blows = (plan.stage.penetration - settled_depth(last, plan, weight)) / plan.set
+        energy = blows * plan.blow_energy
         seconds = None if plan.blow_rate is None else blows / plan.blow_rate
     else:
         halves = (0.5 * length / last.set, 0.5 * length / plan.set)
         blows = sum(halves)
+        energy = halves[0] * last.blow_energy + halves[1] * plan.blow_energy
         rates = (last.blow_rate, plan.blow_rate)
         seconds = None
         if rates[0] is not None and rates[1] is not None:
@@ -290,4 +292,5 @@ def _onward(finder: WindowFinder, one: Walk, plan: StagePlan) -> Taken:
         blows=taken.blows + blows,
         seconds=taken.seconds + seconds if known else None,  # type: ignore[operator]
         on_cushion=taken.on_cushion + blows,
+        energy=taken.energy + energy,
     )

@@ -251,6 +251,10 @@ JOB_KEYS: dict[str, Check] = {
     "limits.tension_stress": lambda job, table, typed: same(
         job.limits.tension, kept(table) * si(typed, "stress")
     ),
+    "limits.wall_buckling": lambda job, table, typed: any(
+        f"{typed:g} of the stress at which the wall buckles" in part.squeeze.text
+        for part in job.limits.parts
+    ),
     "search.objective": lambda job, table, typed: job.search.objective == typed,
     "search.reserve": lambda job, table, typed: job.search.reserve == typed,
     "search.seed": lambda job, table, typed: job.search.seed == typed,
@@ -343,6 +347,9 @@ HAMMER_NUMBERS = {
     "rated_energy": "energy",
     "helmet_mass": "mass",
     "hammer_mass": "mass",
+    "hammer_length": "length",
+    "head_min": "length",
+    "head_max": "length",
 }
 CUSHION_NUMBERS = {
     "modulus": "stress",
@@ -354,6 +361,7 @@ CUSHION_NUMBERS = {
     "new_for": "number",
     "life": "number",
 }
+AMOUNTS = {"day_rate", "mobilisation", "fuel_use", "price"}
 ENERGIES = {
     "energy_min": lambda hammer: hammer.blow_energy(hammer.stroke_min),
     "energy_min_share": lambda hammer: hammer.stroke_min / hammer.stroke_max,
@@ -397,6 +405,9 @@ def shows(item: Hammer | CushionMaterial, name: str, cell: str, unit: str, separ
     numbers = HAMMER_NUMBERS if isinstance(item, Hammer) else CUSHION_NUMBERS
     if name in numbers:
         return same(getattr(item, name), number(cell, unit, numbers[name], separator))
+    if name in AMOUNTS and hasattr(item, name):
+        plain = cell.replace(",", ".") if separator != "," else cell
+        return getattr(item, name) == (float(plain), unit.replace(" ", ""))
     if name in ENERGIES and isinstance(item, Hammer):
         dimension = "number" if name.endswith("share") else "energy"
         return same(ENERGIES[name](item), number(cell, unit, dimension, separator))

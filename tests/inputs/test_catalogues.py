@@ -14,6 +14,7 @@ from matchup.inputs.cushions import COLUMNS as CUSHION_COLUMNS
 from matchup.inputs.cushions import read_cushions
 from matchup.inputs.findings import Findings
 from matchup.inputs.hammers import COLUMNS, read_hammers
+from matchup.model.cost import Amount
 from tests import pint_units
 from tests.inputs.written import CUSHIONS, HAMMERS, JOB, replaced
 
@@ -144,11 +145,11 @@ def test_a_workbook_is_a_catalogue(hammers, tmp_path):
 
 
 def test_other_columns_are_kept_aside_with_one_notice(hammers):
-    head = [*HEAD, "plant no.", "day_rate [EUR]", "hammer_id"]
+    head = [*HEAD, "plant no.", "colour [RAL]", "hammer_id"]
     found, problems, notices = hammers(write(",", head, [*GOOD, "17", "900", "x"]))
     assert not problems
-    assert notices == ["h.csv, line 1: kept aside, not used: plant no., day_rate [EUR], hammer_id"]
-    assert found[0].extra == {"plant no.": "17", "day_rate [EUR]": "900", "hammer_id": "x"}
+    assert notices == ["h.csv, line 1: kept aside, not used: plant no., colour [RAL], hammer_id"]
+    assert found[0].extra == {"plant no.": "17", "colour [RAL]": "900", "hammer_id": "x"}
 
 
 def test_cells_without_a_header_are_kept_aside(hammers):
@@ -178,6 +179,12 @@ def test_every_column_of_a_hammer_is_seen(hammers):
         "hammer_mass": ("hammer_mass [t]", "12"),
         "rides_on_pile": ("rides_on_pile", "Yes"),
         "available": ("available", "true"),
+        "hammer_length": ("hammer_length [m]", "5.5"),
+        "head_min": ("head_min [mm]", "200"),
+        "head_max": ("head_max [in]", "24"),
+        "day_rate": ("day_rate [EUR]", "900"),
+        "mobilisation": ("mobilisation [EUR]", "4000"),
+        "fuel_use": ("fuel_use [l / h]", "30"),
         "source": ("source", "invented"),
     }
     rest = {"hammer_cushion_stiffness", "hammer_cushion_restitution", "blow_rate_full"}
@@ -191,6 +198,11 @@ def test_every_column_of_a_hammer_is_seen(hammers):
     more = (hammer.stroke_step, hammer.blow_rate_max, hammer.lift_speed, hammer.rated_energy)
     assert more == (0.1, 0.5, 0.7, 88e3)
     assert (hammer.helmet_mass, hammer.hammer_mass, hammer.rides_on_pile) == (950, 12000, True)
+    assert (hammer.hammer_length, hammer.head_min) == (5.5, 0.2)
+    assert hammer.head_max == pytest.approx(0.6096)
+    money = (hammer.day_rate, hammer.mobilisation)
+    assert money == (Amount(900, "EUR"), Amount(4000, "EUR"))
+    assert hammer.fuel_use == Amount(30, "l/h")
     assert hammer.cushion.stiffness == pytest.approx(1300e6 * 0.2 / 0.13)
     assert hammer.cushion.restitution == 0.92
     assert hammer.cushion_text == "130 mm of nylon on 2000 cm2"
@@ -213,6 +225,7 @@ def test_every_column_of_a_cushion_is_seen(cushions):
         "worn_restitution": ("worn_restitution", "0.4"),
         "new_for": ("new_for [blows]", "300"),
         "life": ("life", "1500"),
+        "price": ("price [EUR]", "24"),
         "source": ("source", "invented"),
     }
     assert set(head) == {spec.name for spec in CUSHION_COLUMNS}
@@ -225,6 +238,7 @@ def test_every_column_of_a_cushion_is_seen(cushions):
     worn = (oak.worn_modulus, oak.worn_thickness, oak.worn_restitution)
     assert worn == pytest.approx((700e6, 0.8, 0.4))
     assert (oak.new_for, oak.life) == (300, 1500)
+    assert oak.price == Amount(24, "EUR")
 
 
 # --- what is refused -----------------------------------------------------------------------------
@@ -536,7 +550,9 @@ def test_yes_and_no(hammers):
     rows = [[name, *GOOD[1:], said] for name, said in zip("ABCD", "yN1?", strict=True)]
     _, [problem], notices = hammers(write(",", head, *rows))
     assert told(problem)[1:5] == (5, "`available` of D", "must be yes or no", "?")
-    assert notices == ["h.csv, line 3: B left out; it is not available"]
+    assert not notices
+    found, _, _ = hammers(write(",", head, *rows[:3]))
+    assert [hammer.available for hammer in found] == [True, False, True]
 
 
 def test_kinds_that_are_not_modelled_are_left_out_with_a_notice(hammers):
@@ -551,13 +567,12 @@ def test_kinds_that_are_not_modelled_are_left_out_with_a_notice(hammers):
 
 
 def test_a_catalogue_of_nothing_but_such_kinds_says_which_were_left_out_and_why(hammers):
-    head = [*HEAD, "available"]
-    rows = [["D", "diesel", *[""] * 6], [*GOOD, "no"], ["V", "vibratory", *[""] * 6]]
-    found, [problem], _ = hammers(write(",", head, *rows))
+    rows = [["D", "diesel", *[""] * 5], ["V", "vibratory", *[""] * 5]]
+    found, [problem], _ = hammers(write(",", HEAD, *rows))
     assert not found
     assert problem.must == "must hold a hammer that can be used"
     assert problem.found == (
-        "none: D (diesel hammers can't be computed yet); A (it is not available); "
+        "none: D (diesel hammers can't be computed yet); "
         "V (vibratory hammers can't be computed yet)"
     )
 

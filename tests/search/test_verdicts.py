@@ -60,6 +60,7 @@ CASES: dict[str, tuple[Callable[[], Job], str, str]] = {
     ),
     "weak concrete": (lambda: limited(9e6, 9e6), o.OVER_COMPRESSION, "compression"),
     "no tension allowed": (lambda: limited(30e6, 0.2e6), o.OVER_TENSION, "tension"),
+    "a helmet too small": (lambda: one(jobs.hydraulic(3.0, head_max=0.3)), o.DOES_NOT_FIT, "fit"),
     "no ground to stand on": (
         lambda: one(jobs.hydraulic(3.0), stages=(RUNNING, jobs.FINAL)),
         o.PILE_RUNS,

@@ -19,7 +19,7 @@ from matchup.report.figures.drawing import (
 )
 from matchup.report.options import margins_table
 from matchup.report.shown import Units
-from matchup.search.option import NOT_ANALYSED, PILE_RUNS, Option, Ranking
+from matchup.search.option import DOES_NOT_FIT, NOT_ANALYSED, PILE_RUNS, Option, Ranking
 
 FURTHEST = 100.0
 """Margins beyond this are drawn at the edge. [%]"""
@@ -30,7 +30,7 @@ MARKS = (
     ("tension", "o", TENSION),
 )
 """What is asked, its marker and colour."""
-NO_BLOW = (PILE_RUNS, NOT_ANALYSED)
+NO_BLOW = (PILE_RUNS, NOT_ANALYSED, DOES_NOT_FIT)
 
 
 def margins_figure(options: Sequence[Option], ranking: Ranking, units: Units) -> Figure:

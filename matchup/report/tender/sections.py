@@ -7,6 +7,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from matchup.report.bills import bills_blocks
 from matchup.report.closing import ground
 from matchup.report.doubted import doubt_blocks
 from matchup.report.driven import answer, cases_table, chosen_case, stations_table
@@ -105,6 +106,7 @@ def _options(dossier: Dossier, units: Units) -> Section | None:
 
     blocks: list[Block] = [
         options_table(ranking.options, units, ranking.job.search.objective),
+        *bills_blocks(ranking.options, ranking.job, units),
         *softer_prose(ranking, units),
     ]
     if len(ranking.options) > 1:
@@ -150,6 +152,8 @@ def _plan(dossier: Dossier, units: Units) -> Section:
             else (f"{name}{on_stack(option.stack, units)}: {reason(option, job, units)}.")
         )
         heading = f"Driving with {name}"
+    if option.misfits:
+        return Section(heading, (Headline(told),))
     blocks: list[Block] = [Headline(told), margins_table(option, dossier.ranking, units)]
     blocks += _drive(dossier, units) if option.cases else [schedule_table((option,), units)]
     return Section(heading, tuple(blocks))
