@@ -43,7 +43,7 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
     strokes = setting_columns(_target_of, [option.target for option in options], units)
     # Where all are set by energy, the column of energies is that of the settings.
     all_by_energy = all(option.hammer.set_by_energy for option in options)
-    energy = "set at" if all_by_energy else "energy"
+    energy = "energy\nset" if all_by_energy else "energy"
     fields += [
         *(strokes[-1:] if all_by_energy else strokes),
         (Column("cushion", "pile\ncushion", wrap=12), lambda o: units.cushion(o.stack.pile)),
