@@ -20,7 +20,7 @@ from matchup.model.hammer import STANDARD_GRAVITY, Hammer
 from matchup.model.job import Analysis
 from matchup.model.pile import Pile, Section, concrete_modulus
 from matchup.model.stage import SHAFT_DAMPING, Stage
-from matchup.wave.layout import COLUMNS, LANES, Bar, Blows, Grounds
+from matchup.wave.layout import COLUMNS, Bar, Blows, Grounds
 from matchup.wave.march import march
 
 STIFF = 1e4
@@ -167,8 +167,7 @@ def hit(
         bar,
         soil(nodes) if grounds is None else grounds,
         blows,
-        np.zeros(LANES, np.int64),
-        (0, LANES),
+        np.zeros(1, np.int64),
         (least, most),
         out,
         envelope,

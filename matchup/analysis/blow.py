@@ -6,6 +6,7 @@ import math
 import os
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
+from functools import cache
 from typing import NamedTuple
 
 import numpy as np
@@ -19,7 +20,8 @@ LONGEST_BLOW = 2.0
 """A blow that has not come to rest by then is an error. [s]"""
 AUDIT_LIMIT = 0.02
 """Largest energy unaccounted for over that put in; beyond it a blow is an error. [-]"""
-GROUPS_PER_TASK = 8
+FILLS_PER_QUEUE = 8
+"""A queue is at least so many times longer than there are lanes, where there are blows enough."""
 _AT = {name: column for column, name in enumerate(COLUMNS)}
 
 
@@ -119,37 +121,32 @@ def strike(
     head, substeps = head_rows(chains, *strikes[1:])
     ground = np.ascontiguousarray(chains.ground_of[strikes.stage, strikes.hammer])
     blows = Blows(ground, substeps, head)
-    # The trace is of the first blow, so details keep the order.
-    order = _groups(substeps, None if detail else _stopping_times(chains, strikes))
+    lasting = None if detail else _stopping_times(chains, strikes)
     count = strikes.stroke.size
     longest = max(math.ceil(LONGEST_BLOW / chains.bar.step), 2 * least_steps)
     out = np.zeros((count, len(COLUMNS)))
     envelope = np.zeros((count if detail else 0, chains.depth.size, 2))
     trace = np.zeros((longest if detail else 0, 4))
 
-    def run(first: int, last: int) -> None:
+    def run(queue: Integers) -> None:
         march(
             chains.bar,
             chains.grounds,
             blows,
-            order,
-            (first, last),
+            queue,
             (least_steps, longest),
             out,
             envelope,
-            trace if first == 0 else trace[:0],
+            trace if queue[0] == 0 else trace[:0],
         )
 
     workers = workers or os.cpu_count() or 1
-    groups = order.size // LANES
-    size = LANES * min(GROUPS_PER_TASK, max(1, math.ceil(groups / workers)))
-    spans = [(first, min(first + size, order.size)) for first in range(0, order.size, size)]
-    if workers == 1 or len(spans) == 1:
-        for first, last in spans:
-            run(first, last)
+    queues = _queues(substeps, lasting, workers)
+    if workers == 1 or len(queues) == 1:
+        for queue in queues:
+            run(queue)
     else:
-        with ThreadPoolExecutor(workers) as pool:
-            list(pool.map(lambda span: run(*span), spans))
+        list(_pool(workers).map(run, queues))
     return _results(chains, strikes, out, envelope, trace)
 
 
@@ -164,8 +161,7 @@ def record_forces(chains: Chains, strikes: Strikes, steps: int) -> Floats:
     head, substeps = head_rows(chains, *strikes[1:])
     ground = np.ascontiguousarray(chains.ground_of[strikes.stage, strikes.hammer])
     forces = np.zeros((steps, chains.depth.size - 1))
-    first = np.zeros(LANES, np.int64)
-    record(chains.bar, chains.grounds, Blows(ground, substeps, head), first, forces)
+    record(chains.bar, chains.grounds, Blows(ground, substeps, head), 0, forces)
     return forces
 
 
@@ -178,19 +174,26 @@ def _stopping_times(chains: Chains, strikes: Strikes) -> Floats:
     return np.asarray(momentum * np.sqrt(strikes.stroke) / np.maximum(surplus, 1.0))
 
 
-def _groups(substeps: Integers, lasting: Floats | None) -> Integers:
-    """Return the rows in groups of `LANES` with equal sub-steps, short groups filled up.
+def _queues(substeps: Integers, lasting: Floats | None, workers: int) -> list[Integers]:
+    """Return queues of rows with equal sub-steps, several for each worker if there are many.
 
-    A group takes as long as its longest blow, so blows that last alike stand together.
+    Blows that last longest come first, so that lanes run empty at about the same time.
     """
-    order: list[Integers] = []
+    queues: list[Integers] = []
     for kind in np.unique(substeps):
         rows = np.flatnonzero(substeps == kind)
         if lasting is not None:
             rows = rows[np.argsort(-lasting[rows], kind="stable")]
-        missing = -rows.size % LANES
-        order.append(np.concatenate((rows, np.repeat(rows[-1:], missing))))
-    return np.concatenate(order).astype(np.int64) if order else np.empty(0, np.int64)
+        fills = math.ceil(rows.size / LANES)
+        parts = 1 if workers == 1 else min(fills, max(workers, fills // FILLS_PER_QUEUE))
+        queues.extend(rows[part::parts] for part in range(parts))
+    return queues
+
+
+@cache
+def _pool(workers: int) -> ThreadPoolExecutor:
+    """Return the threads, started once: starting them takes as long as a dozen blows."""
+    return ThreadPoolExecutor(workers)
 
 
 def _results(

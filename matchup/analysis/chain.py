@@ -16,13 +16,15 @@ from matchup.model.hammer import STANDARD_GRAVITY, Hammer
 from matchup.model.job import Analysis
 from matchup.model.pile import Part, Pile
 from matchup.model.stage import Stage
-from matchup.wave.layout import Bar, Blows, Floats, Grounds, Integers
+from matchup.wave.layout import SUBSTEPS, Bar, Blows, Floats, Grounds, Integers
 from matchup.wave.rest import rest
 
-CUSHIONED_TRAVEL = 0.125e-3
-"""Longest travel time of a segment under a pile cushion, about 0.5 m of concrete. [s]"""
+CUSHIONED_TRAVEL = 0.145e-3
+"""Longest travel time of a segment under a pile cushion, about 0.57 m of concrete. [s]"""
 BARE_TRAVEL = 0.08e-3
 """The same for a helmet on the pile, where the wave front is steeper: 0.4 m of steel. [s]"""
+TIMBER_TRAVEL = 0.07e-3
+"""The same for a timber pile, whose small impedance hardly damps the ringing of the helmet. [s]"""
 FEWEST_SEGMENTS = 16
 MORE_SEGMENTS = 1.5
 """A pile of several parts may be cut into so many times the segments, to round their times less."""
@@ -127,13 +129,13 @@ def enough_segments(pile: Pile, cushioned: bool, stages: Sequence[Stage] = ()) -
     """Return the number of segments that meets the accuracy asked of a blow.
 
     Found by comparing random realistic blows with refinements; the figures stand in the
-    contributor guide. A timber pile takes the finer step even under a cushion, since its small
-    impedance hardly damps the ringing of the helmet. Very stiff toes shorten the step further, so
-    that the toe spring gives way less in half a step than the pile. Of several parts, so many
-    more that the rounding of their travel times is least.
+    contributor guide. Very stiff toes shorten the step further, so that the toe spring gives way
+    less in half a step than the pile. Of several parts, so many more that the rounding of their
+    travel times is least.
     """
-    timber = any(part.material == "timber" for part in pile.column)
-    longest = CUSHIONED_TRAVEL if cushioned and not timber else BARE_TRAVEL
+    longest = CUSHIONED_TRAVEL if cushioned else BARE_TRAVEL
+    if any(part.material == "timber" for part in pile.column):
+        longest = TIMBER_TRAVEL
     for stage in stages:
         if stage.toe > 0:
             longest = min(longest, 2 * pile.toe.impedance * stage.toe_quake / stage.toe)
@@ -378,7 +380,7 @@ def head_rows(
         )
     )
     frequency = np.sqrt((unloading_1 + unloading) / helmet + unloading_1 / ram)
-    wanted = np.maximum(chains.bar.step * frequency / HEAD_ACCURACY, 1.0)
+    wanted = np.maximum(chains.bar.step * frequency / HEAD_ACCURACY, SUBSTEPS)
     substeps = (2 ** np.ceil(np.log2(wanted))).astype(np.int64)
     return np.ascontiguousarray(head), substeps
 

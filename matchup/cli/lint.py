@@ -12,12 +12,12 @@ from matchup.cli.show import show_document
 
 
 def lint(
-    files: Annotated[list[Path], Parameter(help="Job files and catalogues.", negative="")],
+    files: Annotated[list[Path], Parameter(help="Jobs, catalogues, ground files.", negative="")],
     /,
     *,
     json: Annotated[bool, Parameter(negative="", help="One JSON document on stdout.")] = False,
 ) -> int:
-    """Check job files and catalogues, several at once."""
+    """Check jobs, catalogues and files of the ground, several at once."""
     from matchup.inputs.lint import check_files
 
     sound, notices = check_files(files)

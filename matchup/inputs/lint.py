@@ -1,4 +1,4 @@
-"""Check job files and catalogues, several at once."""
+"""Check job files, catalogues and files of the ground, several at once."""
 
 from __future__ import annotations
 
@@ -10,12 +10,17 @@ from matchup.inputs.cushions import CushionCatalogue, read_cushions
 from matchup.inputs.findings import Findings, shown_path
 from matchup.inputs.hammers import read_hammers
 from matchup.inputs.job_file import load_job
+from matchup.inputs.layers import read_layers, read_resistance_table
+from matchup.inputs.sounding import is_sounding, read_sounding
 from matchup.inputs.table import read_table
 from matchup.model.hammer import NO_CUSHION
 
 JOB = "job"
 HAMMERS = "hammer catalogue"
 CUSHIONS = "cushion catalogue"
+LAYERS = "table of layers"
+RESISTANCE = "table of resistance"
+CONE = "cone test"
 
 
 def check_files(paths: Sequence[Path]) -> tuple[list[str], list[str]]:
@@ -27,7 +32,7 @@ def check_files(paths: Sequence[Path]) -> tuple[list[str], list[str]]:
     Parameters
     ----------
     paths : sequence of Path
-        Jobs end in ``.toml``; every other file is a catalogue, known by its columns.
+        Jobs end in ``.toml``; every other file is known by its columns, or by how it begins.
 
     Returns
     -------
@@ -51,6 +56,12 @@ def check_files(paths: Sequence[Path]) -> tuple[list[str], list[str]]:
         if any(h.cushion is None and h.cushion_text != NO_CUSHION for h in hammers):
             what = "names of hammer cushions not checked; give the cushion catalogue too"
             findings.notice(shown_path(path), None, what)
+    for path in _of_kind(kinds, LAYERS):
+        read_layers(path, findings)
+    for path in _of_kind(kinds, RESISTANCE):
+        read_resistance_table(path, findings)
+    for path in _of_kind(kinds, CONE):
+        read_sounding(path, findings)
     for path in _of_kind(kinds, JOB):
         try:
             findings.notices += load_job(path).notices
@@ -78,7 +89,9 @@ def _cushions(paths: Sequence[Path], findings: Findings) -> CushionCatalogue | N
 
 
 def _kind(path: Path, findings: Findings) -> str:
-    """Return what a catalogue holds, by its columns; note why where that can't be told."""
+    """Return what a file holds, by its columns; note why where that can't be told."""
+    if is_sounding(path):
+        return CONE
     table = read_table(path, findings)
     if table is None:
         return ""
@@ -87,7 +100,13 @@ def _kind(path: Path, findings: Findings) -> str:
         return HAMMERS
     if "modulus" in names or "restitution" in names:
         return CUSHIONS
-    must = "must have the columns of a hammer or a cushion catalogue"
+    if "bottom" in names and "soil" in names:
+        return LAYERS
+    if "shaft_" in names or "toe_" in names:
+        return RESISTANCE
+    if "cone" in names or "qc" in names:
+        return CONE
+    must = "must have the columns of a catalogue or of a file of the ground"
     do = "Job files end in .toml."
     findings.add(table.file, table.header.line, "", must, names[:60], do)
     return ""

@@ -25,6 +25,14 @@ _END_OF_FILE = b"\x1a"
 """With which some old programs end a text file."""
 
 
+def is_sounding(path: Path) -> bool:
+    """Return whether a file is in a format of cone tests other than a table."""
+    findings = Findings()
+    data = read_bytes(path, findings)
+    text = None if data is None or data[:2] == b"PK" else decode(str(path), data, findings)
+    return text is not None and any(begins.match(text) for begins, _ in FORMATS)
+
+
 def read_sounding(path: Path, findings: Findings, location: str | None = None) -> Sounding | None:
     """Return the cone penetration test that a file holds; problems go to `findings`.
 

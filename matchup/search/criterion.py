@@ -18,7 +18,9 @@ from matchup.wave.layout import Floats, Integers
 MULTIPLES = tuple(round(0.4 + 0.1 * i, 1) for i in range(15))
 """Of the target's resistance, for the table of sets."""
 STROKES_EACH_WAY = 3
-"""Settings told below and above the planned one."""
+"""Strokes told below and above the planned one."""
+APART = 0.1
+"""Strokes that can be set freely are told so far apart. [m]"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -116,8 +118,10 @@ def find_criterion(
 def _settings(rig: Rig, stack: int, planned: int, to_prove: bool) -> Integers:
     """Return settings around the planned one, and the one nearest to it that can prove."""
     finder = WindowFinder(rig, job_demands(rig))
-    last = finder.strokes[0].size - 1
-    at = np.arange(max(0, planned - STROKES_EACH_WAY), min(last, planned + STROKES_EACH_WAY) + 1)
+    strokes = finder.strokes[0]
+    step = 1 if strokes.size < 2 else max(1, round(APART / (strokes[1] - strokes[0])))
+    at = planned + step * np.arange(-STROKES_EACH_WAY, STROKES_EACH_WAY + 1)
+    at = at[(at >= 0) & (at < strokes.size)]
     row = len(rig.job.stages) - 1
     if not to_prove or rig.runs(row, 0):
         return at

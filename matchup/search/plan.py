@@ -102,6 +102,8 @@ class Planner:
     def _whole(self) -> str:
         if self.rig.job.cushions is None and len(self.rig.stacks) == 1:
             return "exact: no pile cushion to choose"
+        if len(self.rig.stacks) == 1:
+            return "exact: the one cushion given"
         return f"exact: all {len(self.rig.stacks)} cushions"
 
     def _study(self) -> dict[int, str]:

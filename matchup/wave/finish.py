@@ -4,34 +4,45 @@ from __future__ import annotations
 
 import math
 
-from matchup.wave.laws import compiled
+from matchup.wave.laws import compiled, larger, law, smaller
 from matchup.wave.layout import (
     BLOCK,
     DIVERGED,
     DOWN,
     FORCE_1,
     FORCE_2,
-    FORCE_MOST,
+    FORCE_NOW,
     HEAD_BLOCK,
     HEAD_V,
     HEAD_X,
+    HELMET_MASS,
     HELMET_V,
     HELMET_WEIGHT,
     HELMET_X,
+    IS_OVER,
+    LANES,
     LARGEST_1,
     LARGEST_2,
     LEAST,
-    LEAST_ALL,
+    LEAST_NOW,
+    LEAST_SEEN,
+    LEFT_OUT,
+    LITTLE,
     LOADING_1,
     LOADING_2,
     PASSED_MOST,
     PEAK,
-    PEAK_ALL,
+    PEAK_NOW,
+    PEAK_SEEN,
+    PILE_ENERGY,
+    RAM_MASS,
     RAM_V,
     RAM_WEIGHT,
     RAM_X,
+    RINGING,
+    SETTLED,
     TOE_MOST,
-    TOE_MOST_ALL,
+    TOE_SEEN,
     TOE_X,
     UNLOADING_1,
     UNLOADING_2,
@@ -40,100 +51,108 @@ from matchup.wave.layout import (
     Bar,
     Blows,
     Floats,
-    Integers,
 )
 
 QUIET_ENERGY = 0.01
 """A blow may end when the kinetic energy left is below this share of the ram's at impact and no
 extreme has grown since the last check, at `SETTLED_CHECKS` checks in a row."""
-SETTLED_CHECKS = 2
+SETTLED_CHECKS = 3
 RINGING_CHECKS = 6
-"""It may also end when ram and helmet have come to rest or left, and no extreme has grown at so
-many checks in a row: waves run up and down a pile in weak soil for long without reaching their
-extremes again."""
+"""It may also end when ram and helmet have come to rest or left, the pile head has been left alone
+and no extreme has grown at so many checks in a row: waves run up and down a pile in weak soil for
+long without reaching their extremes again, unless the helmet gives them new ones."""
+SLIGHT_FORCE = 0.1
+"""A force on the head below this share of the largest leaves it alone."""
 SLIGHT_TENSION = 0.02
 """Tension below this share of the largest compression is too slight to keep a blow going."""
 
 
 @compiled
-def catch_rebound(state: Floats, lane: int) -> float:
+def check(bar: Bar, state: Floats) -> None:
+    """Find which blows are over, and start the interval to the next check.
+
+    Checks lie one pile length of wave travel apart. Modifies `state` in place.
+    """
+    catch_rebound(state)
+    _survey(bar, state)
+    _judge(bar, state)
+
+
+@compiled
+def catch_rebound(state: Floats) -> None:
     """Take the weight off a ram, and then a helmet, that has bounced off upwards.
 
     Their second, weaker impact is not part of the blow: hammers catch the ram and hold the
     helmet, and where they do not, leaving the second impact out errs on the side of a smaller set.
-
-    Returns
-    -------
-    float
-        What the weights would have brought in the audit. [J]
+    `LEFT_OUT` takes what the weights would have brought in the audit.
     """
-    left_out = 0.0
-    ram_v = state[RAM_V + lane]
-    helmet_v = state[HELMET_V + lane]
-    if state[FORCE_1 + lane] > 0.0 or ram_v > 0.0:
-        return left_out
-    if ram_v <= helmet_v:
-        left_out += state[RAM_WEIGHT + lane] * state[RAM_X + lane]
-        state[RAM_WEIGHT + lane] = 0.0
-    is_free = state[FORCE_2 + lane] == 0.0 and helmet_v < min(0.0, state[HEAD_V + lane])
-    if is_free and state[RAM_WEIGHT + lane] == 0.0:
-        left_out += state[HELMET_WEIGHT + lane] * state[HELMET_X + lane]
-        state[HELMET_WEIGHT + lane] = 0.0
-    return left_out
+    h = state[:HEAD_BLOCK]
+    for lane in range(LANES):
+        ram_v, helmet_v = h[RAM_V + lane], h[HELMET_V + lane]
+        ram_weight, helmet_weight = h[RAM_WEIGHT + lane], h[HELMET_WEIGHT + lane]
+        bounced = (h[FORCE_1 + lane] == 0.0) & (ram_v <= 0.0)
+        ram_left = 0.0 if bounced & (ram_v <= helmet_v) else ram_weight
+        free = (h[FORCE_2 + lane] == 0.0) & (helmet_v < smaller(0.0, h[HEAD_V + lane]))
+        helmet_left = 0.0 if bounced & free & (ram_left == 0.0) else helmet_weight
+        h[LEFT_OUT + lane] = (
+            h[LEFT_OUT + lane]
+            + (ram_weight - ram_left) * h[RAM_X + lane]
+            + (helmet_weight - helmet_left) * h[HELMET_X + lane]
+        )
+        h[RAM_WEIGHT + lane] = ram_left
+        h[HELMET_WEIGHT + lane] = helmet_left
 
 
 @compiled
-def judge(bar: Bar, head: Floats, state: Floats, lane: int, calm: Integers) -> bool:
-    """Return whether the blow in `lane` is over, and start the interval to the next check.
-
-    Checks lie one pile length of wave travel apart.
-
-    Parameters
-    ----------
-    calm : (2,) int64 array
-        Checks in a row, so far, at which the blow was settled, and at which it only rang on;
-        modified in place.
-    """
-    nodes = bar.weight.size
-    peak = least = peak_all = least_all = 0.0
-    for i in range(nodes):
-        at = HEAD_BLOCK + i * BLOCK + lane
-        peak = max(peak, state[at + PEAK])
-        least = min(least, state[at + LEAST])
-        peak_all = max(peak_all, state[at + PEAK_ALL])
-        least_all = min(least_all, state[at + LEAST_ALL])
-        state[at + PEAK_ALL] = max(state[at + PEAK], state[at + PEAK_ALL])
-        state[at + LEAST_ALL] = min(state[at + LEAST], state[at + LEAST_ALL])
-        state[at + PEAK] = -math.inf
-        state[at + LEAST] = math.inf
-    tip = HEAD_BLOCK + nodes * BLOCK + lane
-    toe, toe_all = state[tip + TOE_MOST], state[tip + TOE_MOST_ALL]
-    state[tip + TOE_MOST_ALL] = max(toe, toe_all)
-    state[tip + TOE_MOST] = -math.inf
-
-    least_counted = min(least_all, -SLIGHT_TENSION * peak_all)
-    grown = peak > peak_all or toe > toe_all or least < least_counted
-    little = QUIET_ENERGY * 0.5 * head[0] * head[1] ** 2
-    hammer, pile = _energy_left(bar, head, state, lane)
-    calm[0] = calm[0] + 1 if hammer + pile < little and not grown else 0
-    calm[1] = calm[1] + 1 if hammer < little and not grown else 0
-    return bool(calm[0] >= SETTLED_CHECKS or calm[1] >= RINGING_CHECKS)
+def _survey(bar: Bar, state: Floats) -> None:
+    """Leave the extremes along the pile and its kinetic energy in the head's block."""
+    last = bar.weight.size - 1
+    h = state[:HEAD_BLOCK]
+    q = state[HEAD_BLOCK + last * BLOCK :]
+    for lane in range(LANES):
+        h[PEAK_NOW + lane] = q[PEAK + lane]
+        h[LEAST_NOW + lane] = q[LEAST + lane]
+        h[PILE_ENERGY + lane] = 0.0
+    for i in range(last):
+        q = state[HEAD_BLOCK + i * BLOCK :]
+        share = 0.5 * bar.step / bar.impedance[i]
+        for lane in range(LANES):
+            net = q[BLOCK + DOWN + lane] - q[UP + lane]
+            h[PILE_ENERGY + lane] = h[PILE_ENERGY + lane] + share * net * net
+            h[PEAK_NOW + lane] = larger(h[PEAK_NOW + lane], q[PEAK + lane])
+            h[LEAST_NOW + lane] = smaller(h[LEAST_NOW + lane], q[LEAST + lane])
 
 
 @compiled
-def _energy_left(bar: Bar, head: Floats, state: Floats, lane: int) -> tuple[float, float]:
-    """Return the kinetic energy [J] left in ram and helmet, rebound left out, and in the pile."""
-    hammer = 0.0
-    pile = 0.0
-    if state[FORCE_2 + lane] > 0.0 or state[HELMET_V + lane] > 0.0:
-        hammer += 0.5 * head[4] * state[HELMET_V + lane] ** 2
-    if state[FORCE_1 + lane] > 0.0 or state[RAM_V + lane] > 0.0:
-        hammer += 0.5 * head[0] * state[RAM_V + lane] ** 2
-    for i in range(bar.weight.size - 1):
-        at = HEAD_BLOCK + i * BLOCK + lane
-        net = state[at + BLOCK + DOWN] - state[at + UP]
-        pile += 0.5 * bar.step * net * net / bar.impedance[i]
-    return hammer, pile
+def _judge(bar: Bar, state: Floats) -> None:
+    """Say in the head's block which blows are over, and remember what this check saw."""
+    h = state[: HEAD_BLOCK + BLOCK]
+    tip = state[HEAD_BLOCK + bar.weight.size * BLOCK :]
+    for lane in range(LANES):
+        peak, least, toe = h[PEAK_NOW + lane], h[LEAST_NOW + lane], tip[TOE_MOST + lane]
+        least_counted = smaller(h[LEAST_SEEN + lane], -SLIGHT_TENSION * h[PEAK_SEEN + lane])
+        grown = (peak > h[PEAK_SEEN + lane]) | (toe > h[TOE_SEEN + lane]) | (least < least_counted)
+        hammer = _energy_left(h[RAM_MASS + lane], h[RAM_V + lane], h[FORCE_1 + lane])
+        hammer += _energy_left(h[HELMET_MASS + lane], h[HELMET_V + lane], h[FORCE_2 + lane])
+        little = h[LITTLE + lane]
+        left_alone = h[FORCE_NOW + lane] < SLIGHT_FORCE * h[HEAD_BLOCK + PEAK + lane]
+        settles = (hammer + h[PILE_ENERGY + lane] < little) & ~grown
+        rings = (hammer < little) & left_alone & ~grown
+        settled = h[SETTLED + lane] + 1.0 if settles else 0.0
+        ringing = h[RINGING + lane] + 1.0 if rings else 0.0
+        speeds = h[RAM_V + lane] * h[RAM_V + lane] + h[HELMET_V + lane] * h[HELMET_V + lane]
+        diverged = ~(speeds + h[PILE_ENERGY + lane] < math.inf)
+        over = (settled >= SETTLED_CHECKS) | (ringing >= RINGING_CHECKS) | diverged
+        h[IS_OVER + lane] = 1.0 if over else 0.0
+        h[SETTLED + lane], h[RINGING + lane] = settled, ringing
+        h[PEAK_SEEN + lane], h[LEAST_SEEN + lane], h[TOE_SEEN + lane] = peak, least, toe
+        h[FORCE_NOW + lane] = 0.0
+
+
+@law
+def _energy_left(mass: float, velocity: float, force: float) -> float:
+    """Return the kinetic energy [J] of a ram or helmet, unless it has bounced off."""
+    return 0.5 * mass * velocity * velocity if (force > 0.0) | (velocity > 0.0) else 0.0
 
 
 @compiled
@@ -203,16 +222,20 @@ def energy_taken(bar: Bar, head: Floats, state: Floats, lane: int) -> tuple[floa
 def write_result(
     bar: Bar,
     blows: Blows,
-    row: int,
+    result: tuple[int, int, int],
     state: Floats,
     lane: int,
-    step: int,
-    status: int,
     energy_at_impact: float,
     out: Floats,
     envelope: Floats,
 ) -> None:
-    """Write the result of the blow in `lane` to row `row` of `out` and `envelope`, in place."""
+    """Write the result of the blow in `lane` to its row of `out` and `envelope`, in place.
+
+    Parameters
+    ----------
+    result : (row, steps, status)
+    """
+    row, steps, status = result
     nodes = bar.weight.size
     head = blows.head[row]
     peak = 0.0
@@ -225,31 +248,32 @@ def write_result(
         area = bar.area[min(i, nodes - 2)]
         if i > 0:
             area = min(area, bar.area[i - 1])
-        if state[at + PEAK_ALL] / area > peak:
-            peak = state[at + PEAK_ALL] / area
+        if state[at + PEAK] / area > peak:
+            peak = state[at + PEAK] / area
             peak_node = i
-        if -state[at + LEAST_ALL] / area > tension:
-            tension = -state[at + LEAST_ALL] / area
+        if -state[at + LEAST] / area > tension:
+            tension = -state[at + LEAST] / area
             tension_node = i
         if envelope.shape[0] > 0:
-            envelope[row, i, 0] = state[at + PEAK_ALL]
-            envelope[row, i, 1] = state[at + LEAST_ALL]
+            envelope[row, i, 0] = state[at + PEAK]
+            envelope[row, i, 1] = state[at + LEAST]
     tip = HEAD_BLOCK + nodes * BLOCK + lane
     energy, soil_work, momentum = energy_taken(bar, head, state, lane)
     # In soft ground the pile goes so far that gravity puts in more than the ram does.
     weight = state[RAM_WEIGHT + lane] + state[HELMET_WEIGHT + lane] + bar.weight.sum()
     put_in = 0.5 * head[0] * head[1] ** 2 + weight * max(state[HEAD_X + lane], 0.0)
+    energy_at_impact += state[LEFT_OUT + lane]
     error = (energy - energy_at_impact) / put_in
     finite = math.isfinite(error) and math.isfinite(peak) and math.isfinite(state[tip + TOE_X])
     out[row, 0] = status if finite else DIVERGED
-    out[row, 1] = step
-    out[row, 2] = state[tip + TOE_MOST_ALL]
+    out[row, 1] = steps
+    out[row, 2] = state[tip + TOE_MOST]
     out[row, 3] = state[tip + TOE_X]
     out[row, 4] = peak
     out[row, 5] = peak_node
     out[row, 6] = tension
     out[row, 7] = tension_node
-    out[row, 8] = state[FORCE_MOST + lane]
+    out[row, 8] = state[HEAD_BLOCK + PEAK + lane]
     out[row, 9] = state[PASSED_MOST + lane]
     out[row, 10] = error
     out[row, 11] = state[RAM_V + lane]

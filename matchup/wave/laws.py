@@ -68,7 +68,7 @@ def cushion_force(compression: float, largest: float, loading: float, unloading:
     compression : float
         Now. [m]
     largest : float
-        Largest compression so far, this one included. [m]
+        Largest compression so far, with or without this one. [m]
     loading, unloading : float
         Stiffnesses. [N/m]
 
@@ -82,7 +82,15 @@ def cushion_force(compression: float, largest: float, loading: float, unloading:
     .. [1] E. A. L. Smith, "Pile-Driving Analysis by the Wave Equation," J. Soil Mech. Found. Div.
        ASCE, vol. 86, SM4, 1960.
     """
-    return larger(loading * largest - unloading * (largest - compression), 0.0)
+    on_unloading = unloading * (compression - _lasting(largest, loading, unloading))
+    # The steeper line lies below the other up to the largest compression, and above it beyond.
+    return larger(smaller(loading * compression, on_unloading), 0.0)
+
+
+@law
+def _lasting(largest: float, loading: float, unloading: float) -> float:
+    """Return the compression at which an unloading cushion gets free."""
+    return largest * (1.0 - loading / unloading)
 
 
 @law
@@ -110,10 +118,11 @@ def cushion_on_bar(
     float
         [N]
     """
-    on_loading = loading * approach / (1.0 + loading * give)
-    on_unloading = (loading * largest - unloading * (largest - approach)) / (1.0 + unloading * give)
-    loads = approach - give * on_loading > largest
-    return larger(on_loading if loads else on_unloading, 0.0)
+    # Stiffness with the bar in series first: it is the same in every sub-step.
+    on_loading = loading / (1.0 + loading * give) * approach
+    on_unloading = unloading / (1.0 + unloading * give)
+    on_unloading *= approach - _lasting(largest, loading, unloading)
+    return larger(smaller(on_loading, on_unloading), 0.0)
 
 
 @law
@@ -129,8 +138,9 @@ def shaft_velocity(
 
     The node has no mass: ``impedance v = push - spring(v) - drag v``, where the spring force is
     the one at the middle of the step, ``spring + half_stiffness v`` while elastic and
-    ``+-strength`` while it yields. Which branch holds is found without a division, so that only
-    one is needed.
+    ``+-strength`` while it yields. The spring force being the elastic one clipped, the root is the
+    elastic root clipped to those of yielding: the larger of two rising functions has the smaller
+    of their roots, and the smaller the larger.
 
     Parameters
     ----------
@@ -153,15 +163,8 @@ def shaft_velocity(
         [m/s]
     """
     yielding = impedance + drag
-    elastic = yielding + half_stiffness
-    free = push - spring
-    up = half_stiffness * free > (strength - spring) * elastic
-    down = half_stiffness * free < (-strength - spring) * elastic
-    top = push - strength if up else free
-    top = push + strength if down else top
-    bottom = yielding if up else elastic
-    bottom = yielding if down else bottom
-    return top / bottom
+    elastic = (push - spring) / (yielding + half_stiffness)
+    return clipped(elastic, (push - strength) / yielding, (push + strength) / yielding)
 
 
 @law
@@ -176,10 +179,8 @@ def toe_velocity(
 ) -> float:
     """Return the velocity of the toe node for one step.
 
-    The toe node carries the shaft resistance of the last half segment and the toe. The toe
-    spring is elastic up to its strength, then yields; it takes no tension, and under a toe that
-    has risen a gap stays open until the toe comes back to where it left. Newton's method on the
-    piecewise linear, monotone sum of both; four passes settle every order of yielding.
+    The toe node carries the shaft resistance of the last half segment and the toe. The root for
+    each state of the shaft spring is that of `_on_toe`; they combine as in `shaft_velocity`.
 
     Parameters
     ----------
@@ -198,18 +199,23 @@ def toe_velocity(
     float
         [m/s]
     """
-    stretch, toe_drag, toe_strength, toe_half = toe
-    velocity = (push - spring - larger(stretch, 0.0)) / (
-        impedance + drag + half_stiffness + toe_drag + toe_half
-    )
-    for _ in range(4):
-        side = spring + half_stiffness * velocity
-        static = stretch + toe_half * velocity
-        reaction = clipped(static, 0.0, toe_strength) + toe_drag * velocity
-        side_slope = half_stiffness if (side > -strength) & (side < strength) else 0.0
-        toe_slope = toe_half if (static > 0.0) & (static < toe_strength) else 0.0
-        toe_slope = toe_drag + toe_slope if reaction > 0.0 else 0.0
-        error = push - (impedance + drag) * velocity
-        error -= clipped(side, -strength, strength) + larger(reaction, 0.0)
-        velocity += error / (impedance + drag + side_slope + toe_slope)
-    return velocity
+    yielding = impedance + drag
+    elastic = _on_toe(push - spring, yielding + half_stiffness, toe)
+    low, high = _on_toe(push - strength, yielding, toe), _on_toe(push + strength, yielding, toe)
+    return clipped(elastic, low, high)
+
+
+@law
+def _on_toe(push: float, slope: float, toe: tuple[float, float, float, float]) -> float:
+    """Return the root of ``slope v + reaction(v) = push``.
+
+    The toe spring is elastic up to its strength, then yields; it takes no tension, and under a
+    toe that has risen a gap stays open until the toe comes back to where it left. Its damping
+    acts along with it, and the two together do not pull either.
+    """
+    stretch, drag, strength, half_stiffness = toe
+    without_toe = push / slope
+    elastic = (push - stretch) / (slope + drag + half_stiffness)
+    gap = push / (slope + drag)
+    yielding = (push - strength) / (slope + drag)
+    return smaller(clipped(elastic, yielding, gap), without_toe)

@@ -1,9 +1,10 @@
 """How blows lie in memory: what goes into the march, its state, and what comes out.
 
-The state of a group of blows is one flat array: the head's block, a block for each node from the
-head to the toe, the toe's block. A block is a few rows of `LANES` numbers, one for each blow of
-the group. With one array and constant offsets the compiler can prove that rows do not overlap,
-and runs the loops over lanes in vector registers.
+The state of the blows under way is one flat array: the head's block, a block for each node from the
+head to the toe, the toe's block. A block is a few rows of `LANES` numbers, one for each blow. With
+one array and constant offsets the compiler can prove that rows do not overlap, and runs the loops
+over lanes in vector registers. What is the same for all blows on a pile stays in `Bar`: the fewer
+rows, the longer a pile fits into the fastest memory.
 """
 
 from __future__ import annotations
@@ -18,26 +19,29 @@ Integers = NDArray[np.int64]
 Flags = NDArray[np.bool_]
 
 LANES = 8
+SUBSTEPS = 4
+"""Sub-steps of the head that are marched in registers; every step has a whole multiple."""
 
-# Rows of the head's block: state, then constants.
+# Rows of the head's block: state, then constants, then what the checks find and remember.
 RAM_X, RAM_V, HELMET_X, HELMET_V, HEAD_X, HEAD_V = (LANES * row for row in range(6))
 FORCE_1, FORCE_2, LARGEST_1, LARGEST_2, MEAN = (LANES * row for row in range(6, 11))
-PASSED, PASSED_MOST, FORCE_MOST = (LANES * row for row in range(11, 14))
+PASSED, PASSED_MOST, FORCE_NOW = (LANES * row for row in range(11, 14))
 LOADING_1, UNLOADING_1, LOADING_2, UNLOADING_2 = (LANES * row for row in range(14, 18))
 RAM_KICK, HELMET_KICK, RAM_WEIGHT, HELMET_WEIGHT = (LANES * row for row in range(18, 22))
-HEAD_BLOCK = LANES * 22
+RAM_MASS, HELMET_MASS, LITTLE = (LANES * row for row in range(22, 25))
+PEAK_NOW, LEAST_NOW, PILE_ENERGY, LEFT_OUT = (LANES * row for row in range(25, 29))
+PEAK_SEEN, LEAST_SEEN, TOE_SEEN = (LANES * row for row in range(29, 32))
+SETTLED, RINGING, IS_OVER = (LANES * row for row in range(32, 35))
+HEAD_BLOCK = LANES * 35
 
-# Rows of a node's block: arriving waves, the wave on its way from the node above, state, constants,
-# force extremes since the last check and before it.
+# Rows of a node's block: arriving waves, the wave on its way from the node above, state, constants.
 DOWN, UP, NEXT, SPRING, DRAG, PEAK, LEAST, WORK = (LANES * row for row in range(8))
-ABOVE, BELOW, WEIGHT, HALF, STRENGTH, SMITH, VISCOUS = (LANES * row for row in range(8, 15))
-PEAK_ALL, LEAST_ALL = (LANES * row for row in range(15, 17))
-BLOCK = LANES * 17
+HALF, STRENGTH, SMITH, VISCOUS = (LANES * row for row in range(8, 12))
+BLOCK = LANES * 12
 
-# Rows of the toe's block: spring, state, constants, displacement extremes as above.
-STRETCH, TOE_DRAG, TOE_X, TOE_V, TOE_MOST = (LANES * row for row in range(5))
-TOE_HALF, TOE_STRENGTH, TOE_SMITH, TOE_VISCOUS = (LANES * row for row in range(5, 9))
-TOE_MOST_ALL = LANES * 9
+# Rows of the toe's block: spring, wave on its way up, state, constants.
+STRETCH, TOE_DRAG, SENT_UP, TOE_X, TOE_V, TOE_MOST = (LANES * row for row in range(6))
+TOE_HALF, TOE_STRENGTH, TOE_SMITH, TOE_VISCOUS = (LANES * row for row in range(6, 10))
 TOE_BLOCK = LANES * 10
 
 ENDED, TOO_LONG, DIVERGED = 0, 1, 2
@@ -113,7 +117,7 @@ class Blows(NamedTuple):
     ground : (blows,) int64 array
         Row of `Grounds`.
     substeps : (blows,) int64 array
-        Sub-steps of the head in each step; equal within each group of `LANES` rows.
+        Sub-steps of the head in each step, rounded up to whole multiples of `SUBSTEPS`.
     head : (blows, 9) float64 array
         Ram mass [kg], impact velocity [m/s], hammer cushion's loading and unloading stiffness
         [N/m], helmet mass [kg], pile cushion's loading and unloading stiffness [N/m], weight of

@@ -17,7 +17,7 @@ from matchup.inputs import load_job
 from matchup.inputs.lint import check_files
 from matchup.inputs.schema import job_schema
 from matchup.inputs.starter import starter_files
-from tests.inputs.written import CUSHIONS, HAMMERS, JOB, replaced
+from tests.inputs.written import CONE, CUSHIONS, HAMMERS, JOB, LAYERS, TABLE, replaced
 
 ROOT = Path(__file__).parents[2]
 EXAMPLES = sorted((ROOT / "examples").glob("*/*.toml"))
@@ -31,6 +31,22 @@ def test_what_comes_along_is_sound_and_without_a_notice():
     kinds = [line.rpartition("sound ")[2] for line in sound]
     assert kinds == ["job"] * len(EXAMPLES) + ["cushion catalogue"] + ["hammer catalogue"] * 3
     assert notices == []
+
+
+def test_files_of_the_ground_are_known_by_their_columns_or_how_they_begin(desk):
+    ground = sorted((ROOT / "examples").glob("*/*.[cg]*[vf]"))
+    sound, notices = check_files(ground)
+    kinds = {line.rpartition("sound ")[2] for line in sound}
+    assert kinds == {"table of layers", "table of resistance", "cone test"}
+    assert notices == []
+    desk.put("layers.csv", replaced(LAYERS, ("sand", "sant")))
+    desk.put("table.csv", replaced(TABLE, ("30,1000", "-3,1000")))
+    desk.put("cone.csv", replaced(CONE, ("5.04", "x")))
+    desk.put("cone.gef", "#GEFID= 1, 1, 0\n#EOH=\n")
+    names = ["layers.csv", "table.csv", "cone.csv", "cone.gef"]
+    with pytest.raises(InputError) as caught:
+        check_files([Path(name) for name in names])
+    assert {problem.file for problem in caught.value.problems} == set(names)
 
 
 def test_problems_of_all_files_come_in_the_order_of_the_files(desk):
@@ -50,7 +66,7 @@ def test_problems_of_all_files_come_in_the_order_of_the_files(desk):
         ("cushions.csv", 3),
     ]
     first = caught.value.problems[0]
-    assert first.must == "must have the columns of a hammer or a cushion catalogue"
+    assert first.must == "must have the columns of a catalogue or of a file of the ground"
     assert (first.found, first.do) == ("a b", "Job files end in .toml.")
 
 

@@ -143,6 +143,15 @@ def test_a_stroke_that_breaks_a_limit_proves_nothing_and_one_that_holds_is_looke
         assert tight.strokes[column] in lower
 
 
+def test_strokes_that_can_be_set_freely_are_told_a_tenth_of_a_metre_apart():
+    free = replace(HAMMER, stroke_step=None)
+    asked = replace(job(None), hammers=(free,))
+    option = rank_hammers(asked, 1).options[0]
+    strokes = find_criterion(asked, option, 1).strokes
+    assert strokes.size >= 4
+    assert np.diff(strokes) == pytest.approx(0.1)
+
+
 def test_without_a_best_case_the_costliest_target_counts():
     stages = drives.stations(cases={"low": 0.8, "high": 1.2})
     asked = drives.job(stages, hammers=(HAMMER,))

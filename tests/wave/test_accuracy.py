@@ -74,9 +74,8 @@ def test_few_blows_have_no_reference(kind):
 
 def test_marching_twice_as_long_changes_next_to_no_extreme():
     late = np.array([ends(chain) for chain in random_chains(31, 300)])
-    # Of 300 jobs three change: two by a tension that ringing builds up after nothing has grown for
-    # six checks, one because the ram comes down once more.
-    assert np.mean(late <= 1) >= 0.98
+    # Of 900 jobs one changes: by a tension that rings up in a light timber pile.
+    assert np.mean(late <= 1) >= 0.99
     assert late.max() < 3
 
 

@@ -15,7 +15,8 @@ from matchup.analysis.blow import AUDIT_LIMIT, Strikes, strike
 from matchup.analysis.chain import build_chains
 from matchup.model.cushion import Spring
 from matchup.model.job import Analysis
-from matchup.wave.layout import COLUMNS, Bar, Grounds
+from matchup.wave.layout import COLUMNS, DIVERGED, ENDED, Bar, Blows, Grounds
+from matchup.wave.march import march
 from matchup.wave.rest import rest
 from tests.chains import (
     Chain,
@@ -268,6 +269,27 @@ def test_the_number_of_workers_changes_nothing():
     chains, batch = mixed_batch(4, 400)
     one, two = (strike(chains, batch, workers=workers).raw for workers in (1, 2))
     np.testing.assert_array_equal(one, two)
+
+
+def test_a_diverging_blow_is_caught_and_spoils_no_other():
+    # A queue longer than there are lanes; in every third blow squares run over the largest float,
+    # or there is none to begin with, and another blow takes its lane. Contacts and soil laws
+    # bound every force, so that no realistic number makes the march diverge.
+    bar = uniform_bar(20, 5e-3, 1e6)
+    good = Head(4e3, 3.0, 2e9, 600.0, 4e8, 0.8, 0.5).row()
+    rows = np.array([good] * 40)
+    rows[::3, 1] = 1e200
+    rows[::6, 1] = np.nan
+    grounds = soil(21, dict.fromkeys(range(5, 21), 50e3), 2.5e-3, 0.2, (1e8, 3e5, 0.5))
+    blows = Blows(np.zeros(40, np.int64), np.full(40, 4, np.int64), rows)
+    out = np.zeros((40, len(COLUMNS)))
+    none = np.zeros((0, 21, 2)), np.zeros((0, 4))
+    march(bar, grounds, blows, np.arange(40), (0, 100_000), out, *none)
+    is_bad = np.arange(40) % 3 == 0
+    assert np.all(out[is_bad, 0] == DIVERGED)
+    assert np.all(out[is_bad, 1] < 1000)
+    assert np.all(out[~is_bad, 0] == ENDED)
+    np.testing.assert_array_equal(out[~is_bad], np.broadcast_to(out[1], (26, len(COLUMNS))))
 
 
 def test_keeping_the_detail_of_a_blow_changes_nothing():

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from matchup.wave.layout import LANES, Blows
+from matchup.wave.layout import Blows
 from matchup.wave.record import record
 from tests import examples
 from tests.chains import Head, hit, soil, uniform_bar
@@ -21,7 +21,7 @@ def recorded(steps: int, toe: tuple[float, float, float] = (0.0, 0.0, 0.0)) -> n
     blows = Blows(np.zeros(1, np.int64), substeps, np.array([SHORT.row()]))
     forces = np.zeros((steps, SEGMENTS))
     grounds = soil(bar.weight.size, toe=toe)
-    record(bar, grounds, blows, np.zeros(LANES, np.int64), forces)
+    record(bar, grounds, blows, 0, forces)
     return forces
 
 
