@@ -8,7 +8,15 @@ from pathlib import Path
 import matchup
 
 FOLDER = Path(__file__).parents[1] / "examples" / "hollowmere_landing"
-NAMES = ("dolphin_tube", "fender_piles", "final_set", "three_stages")
+NAMES = (
+    "dolphin_tube",
+    "fender_piles",
+    "final_set",
+    "guide_piles",
+    "raked_tube",
+    "tapered_piles",
+    "three_stages",
+)
 DRIVES = ("dense_layer", "open_tube", "own_table", "soft_over_dense", "whole_drive")
 """Jobs with a [ground]."""
 

@@ -50,11 +50,14 @@ class Cut(NamedTuple):
         Distance of the nodes from the head. [m]
     part : (segments,) int64 array
         Which part of the pile's column a segment belongs to.
+    ends : (segments, 2) float64 array
+        Area that a stress is reckoned on at the upper and lower end of a segment. [m2]
     """
 
     bar: Bar
     depth: Floats
     part: Integers
+    ends: Floats
 
 
 def segment_counts(pile: Pile, segments: int) -> Integers:
@@ -92,7 +95,7 @@ def cut_bar(pile: Pile, gravity: float, segments: int) -> Cut:
     rows = np.array(
         [row for p, n in zip(pile.column, counts, strict=True) for row in _segments(p, int(n))]
     )
-    length, impedance, area, mass = rows.T
+    length, impedance, area, mass, upper, lower = rows.T
     weight = np.zeros(length.size + 1)
     weight[:-1] += 0.5 * gravity * mass
     weight[1:] += 0.5 * gravity * mass
@@ -100,29 +103,26 @@ def cut_bar(pile: Pile, gravity: float, segments: int) -> Cut:
     impedance[-1] += pile.shoe_mass / step
     depth = np.concatenate(([0.0], np.cumsum(length)))
     bar = Bar(step, impedance.copy(), area.copy(), weight)
-    return Cut(bar, depth, np.repeat(np.arange(counts.size), counts))
+    part = np.repeat(np.arange(counts.size), counts)
+    return Cut(bar, depth, part, np.column_stack((upper, lower)))
 
 
-def _segments(part: Part, count: int) -> list[tuple[float, float, float, float]]:
-    """Return length, impedance, bearing area and mass of the segments of a part, head first.
+def _segments(part: Part, count: int) -> list[tuple[float, ...]]:
+    """Return length, impedance, area, mass, and areas at both ends of a part's segments.
 
-    Of a tapered part impedance and mass are those of the mean area of a segment; the area that a
-    stress is reckoned on is that at its upper end, and of the last one that of the toe, so that
-    stresses at nodes are those of the section there.
+    Areas are those that a stress is reckoned on. Of a tapered part the first three are of the mean
+    section of a segment.
     """
     section, length = part.section, part.length / count
-    ends = np.linspace(0.0, 1.0, count + 1).tolist()
-    means = [section.area_between(a, b) / section.area for a, b in pairwise(ends)]
-    nodes = [section.area_at(share) / section.area for share in (*ends[:-2], 1.0)]
-    return [
-        (
-            length,
-            mean * part.impedance,
-            node * part.bearing_area,
-            mean * part.mass_per_length * length,
-        )
-        for mean, node in zip(means, nodes, strict=True)
-    ]
+    shares = np.linspace(0.0, 1.0, count + 1).tolist()
+    whole = part.bearing_area / section.area
+    rows = []
+    for above, below in pairwise(shares):
+        mean = section.area_between(above, below) / section.area
+        ends = [whole * section.area_at(share) for share in (above, below)]
+        mass = mean * part.mass_per_length * length
+        rows.append((length, mean * part.impedance, mean * part.bearing_area, mass, *ends))
+    return rows
 
 
 def enough_segments(pile: Pile, cushioned: bool, stages: Sequence[Stage] = ()) -> int:
@@ -224,6 +224,8 @@ class Chains:
         Along the pile, or zero. [m/s2]
     part : (segments,) int64 array
         Which part of the pile's column a segment belongs to.
+    ends : (segments, 2) float64 array
+        Area that a stress is reckoned on at the upper and lower end of a segment. [m2]
     rake : float
         [rad]
     resistances : (stages,) float64 array
@@ -241,9 +243,15 @@ class Chains:
     stages: tuple[Stage, ...]
     gravity: float
     part: Integers
+    ends: Floats
     rake: float
     resistances: Floats
     set_quakes: Floats
+
+    @property
+    def tapers(self) -> bool:
+        """Whether the section of some segment is not the same at both its ends."""
+        return bool(np.any(self.ends[:, 0] != self.ends[:, 1]))
 
 
 def build_chains(
@@ -266,7 +274,7 @@ def build_chains(
         If the state at rest can't be found.
     """
     gravity = STANDARD_GRAVITY * math.cos(pile.rake) if analysis.gravity else 0.0
-    bar, depth, part = cut_bar(pile, gravity, segments)
+    bar, depth, part, ends = cut_bar(pile, gravity, segments)
     strengths = [shaft_strengths(stage, float(depth[-1]), depth) for stage in stages]
     ground_of = np.full((len(stages), len(hammers)), -1, np.int64)
     loads = [gravity * ((h.helmet_mass or 0.0) + h.frame_mass) for h in hammers]
@@ -312,6 +320,7 @@ def build_chains(
         tuple(stages),
         gravity,
         part,
+        ends,
         pile.rake,
         np.array([stage.resistance for stage in stages]),
         np.array([set_quake(stage)[0] for stage in stages]),

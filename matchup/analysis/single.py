@@ -263,7 +263,7 @@ def _worst(chains: Chains, limits: StressLimits, envelope: Floats, side: int) ->
     node = segment + end
     force = abs(float(envelope[node, side])) if uses[segment, end] > 0 else 0.0
     return _Worst(
-        stress=force / float(chains.bar.area[segment]),
+        stress=force / float(chains.ends[segment, end]),
         use=float(uses[segment, end]),
         at=float(chains.depth[node]),
         part=limits.parts[int(chains.part[segment])].part,

@@ -35,8 +35,8 @@ def stresses_at_nodes(chains: Chains, envelope: Floats) -> Floats:
 
     At a change of section the smaller area bears the larger stress.
     """
-    area = chains.bar.area
-    smaller = np.minimum(np.append(area[:1], area), np.append(area, area[-1:]))
+    upper, lower = chains.ends.T
+    smaller = np.minimum(np.append(upper[:1], lower), np.append(upper, lower[-1:]))
     return np.asarray(_forces(envelope) / smaller[:, None])
 
 
@@ -54,10 +54,10 @@ def uses_of_segments(chains: Chains, limits: StressLimits, envelope: Floats) -> 
         At upper and lower end, in compression and in tension. [-]
     """
     stresses = np.array([(part.squeeze.stress, part.pull.stress) for part in limits.parts])
-    bearable = chains.bar.area[:, None] * stresses[chains.part]
+    bearable = chains.ends[:, :, None] * stresses[chains.part][:, None, :]
     forces = _forces(envelope)
     at_ends = np.stack((forces[..., :-1, :], forces[..., 1:, :]), axis=-2)
-    return np.asarray(at_ends / bearable[:, None, :])
+    return np.asarray(at_ends / bearable)
 
 
 def uses_at_nodes(chains: Chains, limits: StressLimits, envelope: Floats) -> Floats:
@@ -79,9 +79,9 @@ def strike_stressed(
     """Compute a batch of blows and their stresses.
 
     The solver tells the largest stress of each blow, which is enough where all parts have the same
-    limits; else every blow's envelope is held against the limits of the parts.
+    limits and none tapers; else every blow's envelope is held against the limits of the parts.
     """
-    if not limits.differ:
+    if not limits.differ and not chains.tapers:
         struck = strike(chains, strikes, workers=workers)
         return struck, Stressed(struck.compression, struck.tension)
     struck = strike(chains, strikes, detail=True, workers=workers)

@@ -449,9 +449,19 @@ class Pile:
 
     @property
     def notes(self) -> tuple[str, ...]:
-        """Which values are defaults, and their source."""
-        return tuple(
-            f"{part.name}: {note}" if len(self.column) > 1 else note
+        """Which values are defaults, and their source; what is assumed of the pile as a whole."""
+        several = len(self.column) > 1
+        told = [
+            f"{part.name}: {note}" if several else note
             for part in self.column
             for note in part.notes
-        )
+        ]
+        if several:
+            told.append("joints taken as rigid: tension passes")
+        if self.rake:
+            degrees = math.degrees(self.rake)
+            told.append(
+                f"rake {degrees:.1f} deg: weight and falling rams count by its cosine, "
+                "penetrations are along the pile"
+            )
+        return tuple(told)

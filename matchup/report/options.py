@@ -41,8 +41,12 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
     elif objective == "time":
         speed = Column(units.speed_key, f"speed\n{units.speed_unit}", 2)
         fields.append((speed, lambda o: units.speed(o.target.speed)))
+    strokes = setting_columns(_target_of, [option.target for option in options], units)
+    # Where all are set by energy, the column of energies is that of the settings.
+    all_by_energy = all(option.hammer.set_by_energy for option in options)
+    energy = "energy\nset" if all_by_energy else "energy"
     fields += [
-        *setting_columns(_target_of, [option.target for option in options], units),
+        *(strokes[-1:] if all_by_energy else strokes),
         (Column("cushion", "pile\ncushion", wrap=12), lambda o: units.cushion(o.stack.pile)),
     ]
     if any(option.stack.hammer for option in options):
@@ -51,7 +55,7 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
     fields += [
         measured("set", "set", "set", units, lambda o: o.target.set),
         (blow_count(units), lambda o: units.blow_count(o.target.set)),
-        measured("blow_energy", "energy", "energy", units, lambda o: o.target.blow_energy),
+        measured("blow_energy", energy, "energy", units, lambda o: o.target.blow_energy),
         (
             Column("compression_percent", "compr.\n% of\nlimit", 0),
             lambda o: percent(o.compression_use),
