@@ -48,7 +48,7 @@ from matchup.search.criterion import Criterion, find_criterion
 from matchup.search.fatigue import Damage, find_damage
 from matchup.search.opinion import Opinion, second_opinion
 from matchup.search.option import Option, Ranking
-from matchup.search.ranking import rank_hammers
+from matchup.search.ranking import rank_hammers, with_odds
 from matchup.search.stroke_map import StrokeMap, map_strokes
 from matchup.search.together import Together, put_together
 from matchup.units import UnitError, parse_quantity
@@ -260,7 +260,12 @@ class CheckResult(RankingResult):
         return self._with_opinions(check_page(self.ranking, units), units)
 
     def figure(self, display: str | None = None) -> Figure:
-        """Draw how far the hammer is from what is asked of it."""
+        """Draw what the hammer hangs on, or else how far it is from what is asked of it."""
+        odds = self.option.odds
+        if odds is not None and odds.influences is not None:
+            from matchup.report.figures.doubt import doubt_figure
+
+            return doubt_figure(odds)
         from matchup.report.figures.margins import margins_figure
 
         return margins_figure((self.option,), self.ranking, _units(self.job, display))
@@ -493,6 +498,7 @@ def rank(
     seed: int | None = None,
     tell: Tell | None = None,
     *,
+    samples: int | None = None,
     formulas: bool = False,
 ) -> RankingResult:
     """Rank all hammers of a job.
@@ -506,6 +512,8 @@ def rank(
         Replaces the job's.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
     formulas : bool
         Add the second opinion of dynamic formulas, which decides nothing.
 
@@ -517,7 +525,10 @@ def rank(
     job = _job(job)
     if seed is not None:
         job = replace(job, search=replace(job.search, seed=seed))
+    wanted = _samples(job, samples)
     ranking = rank_hammers(job, workers, tell)
+    if wanted:
+        ranking = with_odds(ranking, wanted, workers, tell)
     return RankingResult(ranking, _opinions(ranking) if formulas else ())
 
 
@@ -573,6 +584,7 @@ def check(
     workers: int | None = None,
     tell: Tell | None = None,
     *,
+    samples: int | None = None,
     formulas: bool = False,
 ) -> CheckResult:
     """Answer whether one hammer can drive the pile, and if not, what stops it.
@@ -586,6 +598,8 @@ def check(
         Threads; None takes as many as there are processors.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
     formulas : bool
         Add the second opinion of dynamic formulas, which decides nothing.
 
@@ -596,7 +610,7 @@ def check(
     """
     job = _job(job)
     alone = replace(job, hammers=(select_hammer(job, hammer),))
-    ranking = rank_hammers(alone, workers, tell)
+    ranking = _ranked_alone(alone, _samples(job, samples), workers, tell)
     return CheckResult(ranking, _opinions(ranking) if formulas else ())
 
 
@@ -618,6 +632,7 @@ def drive(
     hammer_cushion: str | None = None,
     case: str | None = None,
     criterion: bool = False,
+    samples: int | None = None,
 ) -> DriveResult:
     """Predict the whole drive of one hammer, station by station in every ground case.
 
@@ -637,6 +652,8 @@ def drive(
         Whose stations are shown; the answer is about all required ones.
     criterion : bool
         Add the termination criterion: which set at which stroke proves which resistance.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
 
     Raises
     ------
@@ -657,7 +674,7 @@ def drive(
     thickness = _quantity(thickness, "thickness", "thickness", problems)
     selection = Selection(hammer, None, cushion, sheets, thickness, None, hammer_cushion)
     alone = _with_selected(job, selection, problems)
-    ranking = rank_hammers(alone, workers, tell)
+    ranking = _ranked_alone(alone, _samples(job, samples), workers, tell)
     proof = None
     if criterion and ranking.options:
         proof = find_criterion(alone, ranking.options[0], workers, tell)
@@ -759,6 +776,7 @@ def tender_report(
     workers: int | None = None,
     seed: int | None = None,
     tell: Tell | None = None,
+    samples: int | None = None,
 ) -> ReportResult:
     """Compute all that a tender report tells of.
 
@@ -773,6 +791,8 @@ def tender_report(
         Replaces the job's.
     tell : callable or None
         Called with the number of blows of every batch, for showing progress.
+    samples : int or None
+        Play so many samples of the job's doubt, zero for none; None takes the job's own number.
 
     Raises
     ------
@@ -781,10 +801,15 @@ def tender_report(
     """
     job = _job(job)
     name = None if detail is None else select_hammer(job, detail).name
-    ranking = rank(job, workers, seed, tell).ranking
+    wanted = _samples(job, samples)
+    ranking = rank(job, workers, seed, tell, samples=0).ranking
     job = ranking.job
     everyone = (*ranking.options, *ranking.rejected)
-    option = next(o for o in everyone if name in (None, o.hammer.name))
+    name = name or everyone[0].hammer.name
+    if wanted:
+        ranking = with_odds(ranking, wanted, workers, tell, influences=(name,))
+        everyone = (*ranking.options, *ranking.rejected)
+    option = next(o for o in everyone if o.hammer.name == name)
     alone = replace(job, hammers=(option.hammer,))
     proof = None
     if job.drive is not None and option.drives:
@@ -819,6 +844,25 @@ def _telling_blows(job: Job, option: Option) -> tuple[Blow, ...]:
 
 def _job(job: JobLike) -> Job:
     return job if isinstance(job, Job) else load_job(job)
+
+
+def _samples(job: Job, samples: int | None) -> int:
+    """Return how many samples to play."""
+    if job.doubt is None:
+        if samples:
+            do = "For example shaft = { lognormal = { mean = 1.0, cov = 0.2 } } below [doubt]."
+            must = "must be left out, or the job must say in [doubt] what is in doubt"
+            raise InputError([Problem(job.file, None, "samples", must, str(samples), do)])
+        return 0
+    return (job.doubt.samples or 0) if samples is None else samples
+
+
+def _ranked_alone(job: Job, samples: int, workers: int | None, tell: Tell | None) -> Ranking:
+    """Return the ranking of a lone hammer, with its odds and what matters if samples are played."""
+    ranking = rank_hammers(job, workers, tell)
+    if not samples:
+        return ranking
+    return with_odds(ranking, samples, workers, tell, influences=(job.hammers[0].name,))
 
 
 def _with_selected(job: Job, selection: Selection, problems: list[Problem]) -> Job:

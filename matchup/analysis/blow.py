@@ -11,7 +11,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from matchup.analysis.chain import Chains, head_rows, set_quake
+from matchup.analysis.chain import Chains, head_rows
 from matchup.wave.layout import COLUMNS, DIVERGED, ENDED, LANES, Blows, Flags, Floats, Integers
 from matchup.wave.march import march
 from matchup.wave.record import record
@@ -169,7 +169,7 @@ def _stopping_times(chains: Chains, strikes: Strikes) -> Floats:
     """Return roughly how long blows last: the time in which resistance stops the ram's momentum."""
     hammers = chains.hammers
     momentum = np.array([h.ram_mass * h.impact_velocity(1.0) for h in hammers])[strikes.hammer]
-    resistance = np.array([stage.resistance for stage in chains.stages])[strikes.stage]
+    resistance = chains.resistances[strikes.stage]
     surplus = resistance - chains.weights[strikes.hammer]
     return np.asarray(momentum * np.sqrt(strikes.stroke) / np.maximum(surplus, 1.0))
 
@@ -199,7 +199,7 @@ def _pool(workers: int) -> ThreadPoolExecutor:
 def _results(
     chains: Chains, strikes: Strikes, out: Floats, envelope: Floats, trace: Floats
 ) -> Struck:
-    quakes = np.array([set_quake(stage)[0] for stage in chains.stages])[strikes.stage]
+    quakes = chains.set_quakes[strikes.stage]
     balance = out[:, _AT["balance"]]
     sound = (out[:, _AT["status"]] == ENDED) & (np.abs(balance) <= AUDIT_LIMIT)
     steps = int(out[0, _AT["steps"]]) if trace.size else 0

@@ -183,13 +183,13 @@ def shaft_strengths(stage: Stage, column_length: float, depth: Floats) -> Floats
     )
     shape = stage.shaft_shape or ((0.0, 1.0), (stage.penetration, 1.0))
     at, intensity = np.array(shape).T
-    # The integral of a piecewise linear function is piecewise quadratic: exact on a common grid.
-    grid = np.unique(np.concatenate((at, edges, [0.0, stage.penetration])))
-    inside = (grid >= 0) & (grid <= stage.penetration)
-    grid = grid[inside]
-    value = np.interp(grid, at, intensity, left=0.0, right=0.0)
-    total = np.concatenate(([0.0], np.cumsum(0.5 * np.diff(grid) * (value[1:] + value[:-1]))))
-    strength = stage.shaft * np.diff(np.interp(edges, grid, total)) / total[-1]
+    # The integral of a piecewise linear function is piecewise quadratic between its rows.
+    total = np.concatenate(([0.0], np.cumsum(0.5 * np.diff(at) * (intensity[1:] + intensity[:-1]))))
+    ends = np.clip(edges, max(at[0], 0.0), min(at[-1], stage.penetration))
+    row = np.clip(np.searchsorted(at, ends, side="right") - 1, 0, at.size - 2)
+    value = np.interp(ends, at, intensity)
+    upto = total[row] + 0.5 * (ends - at[row]) * (intensity[row] + value)
+    strength = stage.shaft * np.diff(upto) / (upto[-1] - upto[0])
     strength[1] += strength[0]
     strength[0] = 0.0
     return np.asarray(strength)
@@ -226,6 +226,10 @@ class Chains:
         Which part of the pile's column a segment belongs to.
     rake : float
         [rad]
+    resistances : (stages,) float64 array
+        Shaft and toe together. [N]
+    set_quakes : (stages,) float64 array
+        See `set_quake`. [m]
     """
 
     bar: Bar
@@ -238,6 +242,8 @@ class Chains:
     gravity: float
     part: Integers
     rake: float
+    resistances: Floats
+    set_quakes: Floats
 
 
 def build_chains(
@@ -307,6 +313,8 @@ def build_chains(
         gravity,
         part,
         pile.rake,
+        np.array([stage.resistance for stage in stages]),
+        np.array([set_quake(stage)[0] for stage in stages]),
     )
 
 

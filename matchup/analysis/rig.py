@@ -9,6 +9,7 @@ import numpy as np
 
 from matchup.analysis.blow import Strikes
 from matchup.analysis.chain import build_chains, enough_segments, pile_contact
+from matchup.analysis.sampling import Scales
 from matchup.analysis.stress import strike_stressed
 from matchup.model.cushion import WEAR_STATES, Cushion, Spring, Stack
 from matchup.model.job import Job
@@ -50,6 +51,8 @@ class Rig:
         Threads; None takes as many as there are processors.
     tell : callable or None
         Called with the number of blows of every batch, before it is computed.
+    scales : Scales or None
+        Factors by stage on what is not of the ground; None for none.
 
     Attributes
     ----------
@@ -65,7 +68,13 @@ class Rig:
         The same by hammer.
     """
 
-    def __init__(self, job: Job, workers: int | None = None, tell: Tell | None = None):
+    def __init__(
+        self,
+        job: Job,
+        workers: int | None = None,
+        tell: Tell | None = None,
+        scales: Scales | None = None,
+    ):
         self.job = job
         self.workers = workers
         self.tell = tell
@@ -85,6 +94,8 @@ class Rig:
         self._hammer_springs = np.array(
             [(s.stiffness, s.restitution) if s else (np.nan, np.nan) for s in others]
         )
+        self._scales = scales or Scales(*np.ones((2, len(job.stages))))
+        self._efficiencies = np.array([hammer.efficiency for hammer in job.hammers])
         self._known: dict[bytes, int] = {}
         self._answers = np.empty((0, 5))
         self._why: dict[tuple[int, int, int], str] = {}
@@ -150,9 +161,9 @@ class Rig:
             Strikes(
                 stage,
                 hammer,
-                self._stiffness[cushion, wear],
+                self._stiffness[cushion, wear] * self._scales.cushion[stage],
                 self._restitution[cushion, wear],
-                stroke,
+                stroke * self._efficiency_scale(stage, hammer),
                 *self._hammer_springs[cushion].T,
             ),
             self.job.limits,
@@ -171,6 +182,10 @@ class Rig:
         self._answers[self.spent : self.spent + stroke.size] = fresh
         self.spent += stroke.size
         self.spent_on += np.bincount(hammer, minlength=self.spent_on.size)
+
+    def _efficiency_scale(self, stage: Integers, hammer: Integers) -> Floats:
+        """Return factors on efficiency, which act on the impact like factors on the stroke."""
+        return np.minimum(self._scales.efficiency[stage], 1 / self._efficiencies[hammer])
 
     def _pick(self, rows: Integers) -> Answers:
         picked = self._answers[rows]

@@ -11,7 +11,7 @@ either side leave no gap between them.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 
 import numpy as np
 
@@ -82,14 +82,16 @@ class WindowFinder:
                 sound[rows] &= worn.sound
         return least, transferred, sound
 
-    def stresses(self, cells: Cells, at: Integers) -> tuple[Floats, Floats, Flags]:
+    def stresses(
+        self, cells: Cells, at: Integers, tested: Sequence[float] = TESTED
+    ) -> tuple[Floats, Floats, Flags]:
         """Return the largest stresses over wear states and stroke tolerance, and soundness."""
         stroke = self.stroke(cells.hammer, at)
         # One row for each wear state that counts in a cell, and of these for each tested stroke.
         counted = [cells.worn(wear) for wear in range(len(self.rig.wears))]
-        row = np.tile(np.concatenate(counted), len(TESTED))
-        wear = np.tile(np.repeat(np.arange(len(counted)), list(map(len, counted))), len(TESTED))
-        factor = np.repeat(TESTED, row.size // len(TESTED))
+        row = np.tile(np.concatenate(counted), len(tested))
+        wear = np.tile(np.repeat(np.arange(len(counted)), list(map(len, counted))), len(tested))
+        factor = np.repeat(tested, row.size // len(tested))
         some = cells.take(row)
         answers = self.rig.answer(some.stage, some.hammer, some.cushion, wear, stroke[row] * factor)
         compression, tension = np.zeros(at.size), np.zeros(at.size)
@@ -112,9 +114,9 @@ class WindowFinder:
         state[~sound] = UNSOUND
         return state
 
-    def strike(self, cells: Cells, at: Integers) -> Found:
+    def strike(self, cells: Cells, at: Integers, tested: Sequence[float] = TESTED) -> Found:
         """Return what setting number `at` does in each cell; the pile must not run there."""
-        compression, tension, sound = self.stresses(cells, at)
+        compression, tension, sound = self.stresses(cells, at, tested)
         set_, transferred, sound_too = self.sets(cells, at)
         state = self.judge(cells.stage, set_, compression, tension, sound & sound_too)
         return Found(
@@ -128,6 +130,14 @@ class WindowFinder:
             transferred=transferred,
             lifted=np.zeros(at.size, bool),
         )
+
+    def glance(self, cells: Cells, at: Integers) -> Found:
+        """Return the same, with the tolerance only where the stroke itself works."""
+        found = self.strike(cells, at, TESTED[:1])
+        rows = np.flatnonzero(found.state == OPEN)
+        if rows.size:
+            found.put(rows, self.strike(cells.take(rows), at[rows]))
+        return found
 
     def _strike_worn(self, cells: Cells, wear: int, at: Integers) -> Answers:
         """Return what setting number `at` does in one wear state."""
@@ -253,17 +263,25 @@ class WindowFinder:
 
     # --- other strokes that work ----------------------------------------------------------------
 
+    def play(self, cells: Cells, at: Integers, briefly: bool = False) -> Found:
+        """Return what given settings do, whatever comes of it; nothing where the pile runs.
+
+        With `briefly`, stresses are only those of the stroke itself where it does not work.
+        """
+        found = self._nothing(cells)
+        alive = np.flatnonzero(found.state == OPEN)
+        if alive.size:
+            look = self.glance if briefly else self.strike
+            found.put(alive, look(cells.take(alive), at[alive]))
+        return found
+
     def nearest(self, cells: Cells, wanted: Integers) -> Found:
         """Return the stroke nearest to a wanted setting that works: it, a lower, or a higher one.
 
         Where stresses break at the wanted setting, lower ones are scanned while they reach the
         set; after that, and where the set falls short, the window's lowest stroke is taken.
         """
-        found = self._nothing(cells)
-        alive = np.flatnonzero(found.state == OPEN)
-        if not alive.size:
-            return found
-        found.put(alive, self.strike(cells.take(alive), wanted[alive]))
+        found = self.play(cells, wanted, briefly=True)
         rows = np.flatnonzero((found.state == TENSION) | (found.state == COMPRESSION))
         if rows.size:
 
@@ -325,7 +343,7 @@ class WindowFinder:
         rung = 0
         while (rows := np.flatnonzero(~settled & (lengths > rung))).size:
             here = np.array([ladders[row][rung] for row in rows])
-            tried = self.strike(cells.take(rows), here)
+            tried = self.glance(cells.take(rows), here)
             before[rows] = found.at[rows]
             found.put(rows, tried)
             settled[rows] = settles(tried)

@@ -7,13 +7,15 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, Samples, show_result
 
 
 def check(
     job: Annotated[Path, Parameter(help="Job file.")],
     *,
     hammer: Annotated[str | None, Parameter(help="Name in the hammer catalogue.")] = None,
+    samples: Samples = None,
+    plot: Plot = None,
     formulas: Annotated[
         bool, Parameter(negative="", help="Add dynamic formulas as a second opinion.")
     ] = False,
@@ -23,6 +25,8 @@ def check(
     from matchup import api
 
     with Progress(common) as tell:
-        result = api.check(job, hammer, workers=common.workers, tell=tell, formulas=formulas)
-    show_result(result, common)
+        result = api.check(
+            job, hammer, workers=common.workers, tell=tell, samples=samples, formulas=formulas
+        )
+    show_result(result, common, plot=plot)
     return 0 if result.can else THE_ANSWER_IS_NO

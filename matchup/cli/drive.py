@@ -7,7 +7,7 @@ from typing import Annotated
 
 from cyclopts import Parameter
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, Samples, show_result
 
 
 def drive(
@@ -24,6 +24,7 @@ def drive(
         bool, Parameter(negative="", help="Which set at which stroke proves which resistance.")
     ] = False,
     case: Annotated[str | None, Parameter(help="Ground case whose stations are shown.")] = None,
+    samples: Samples = None,
     plot: Plot = None,
     common: Common = Common(),  # noqa: B008 - frozen
 ) -> int:
@@ -42,6 +43,7 @@ def drive(
             hammer_cushion=hammer_cushion,
             case=case,
             criterion=criterion,
+            samples=samples,
         )
     show_result(result, common, plot=plot)
     return 0 if result.can else THE_ANSWER_IS_NO

@@ -8,7 +8,7 @@ from typing import Annotated
 from cyclopts import Parameter
 from cyclopts.validators import Number
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, show_result
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Plot, Progress, Samples, show_result
 from matchup.errors import InputError, Problem
 
 
@@ -19,6 +19,7 @@ def rank(
     seed: Annotated[
         int | None, Parameter(help="Replaces the job's seed.", validator=Number(gte=0))
     ] = None,
+    samples: Samples = None,
     plot: Plot = None,
     formulas: Annotated[
         bool, Parameter(negative="", help="Add dynamic formulas as a second opinion.")
@@ -31,12 +32,20 @@ def rank(
     if more:
         _refuse("--plot", plot is not None)
         _refuse("--formulas", formulas)
+        _refuse("--samples", samples is not None)
         with Progress(common) as tell:
             together = api.rank_together((job, *more), common.workers, seed, tell)
         show_result(together, common)
         return 0 if together.best else THE_ANSWER_IS_NO
     with Progress(common) as tell:
-        result = api.rank(job, workers=common.workers, seed=seed, tell=tell, formulas=formulas)
+        result = api.rank(
+            job,
+            workers=common.workers,
+            seed=seed,
+            tell=tell,
+            samples=samples,
+            formulas=formulas,
+        )
     show_result(result, common, plot=plot)
     return 0 if result.options else THE_ANSWER_IS_NO
 

@@ -8,7 +8,7 @@ from typing import Annotated, Literal
 from cyclopts import Parameter
 from cyclopts.validators import Number
 
-from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, tell
+from matchup.cli.show import THE_ANSWER_IS_NO, Common, Progress, Samples, tell
 
 
 def report(
@@ -22,6 +22,7 @@ def report(
     seed: Annotated[
         int | None, Parameter(help="Replaces the job's seed.", validator=Number(gte=0))
     ] = None,
+    samples: Samples = None,
     display: Annotated[
         Literal["metric", "us"] | None, Parameter(help="Units of the output; default: the job's.")
     ] = None,
@@ -39,7 +40,7 @@ def report(
     if not force:
         refuse_taken(output, NAMES, "--output")
     with Progress(common) as progress:
-        result = api.tender_report(job, detail, workers, seed, progress)
+        result = api.tender_report(job, detail, workers, seed, progress, samples)
         names = result.write(output, display, force)
     print(f"wrote {', '.join(names)} to {output}")
     if PAPER not in names:

@@ -56,6 +56,14 @@ Plot = Annotated[
 ]
 """An option of the commands whose answer can be drawn."""
 
+Samples = Annotated[
+    int | None,
+    Parameter(
+        help="Play so many samples of the job's [doubt]; 0 for none.", validator=Number(gte=0)
+    ),
+]
+"""An option of the commands whose plans can be played under doubt."""
+
 
 @Parameter(name="*")
 @dataclass(frozen=True)

@@ -107,10 +107,15 @@ class SetupLaw:
         (n,) float64 array
             [-]
         """
+        share = self.share(elapsed)
+        # Without a pause an unknown set-up does not matter.
+        return np.asarray(1 + (setup - 1) * share) if share else np.ones_like(setup)
+
+    def share(self, elapsed: float) -> float:
+        """Return the share of the set-up that is regained so long after the last blow [-]."""
         if elapsed <= self.start:
-            return np.ones_like(setup)
-        share = min(math.log10(elapsed / self.start) / math.log10(self.end / self.start), 1.0)
-        return np.asarray(1 + (setup - 1) * share)
+            return 0.0
+        return min(math.log10(elapsed / self.start) / math.log10(self.end / self.start), 1.0)
 
     @property
     def text(self) -> str:

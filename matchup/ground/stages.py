@@ -222,6 +222,8 @@ class _Drive:
             case=case.name,
             after_pause=elapsed,
             setup=shaft.setup,
+            static=unit.static,
+            regained=self.law.share(elapsed),
             modes=_told(modes),
             notes=(*self.notes, *self._moment_notes(case, elapsed, modes, chosen)),
         )

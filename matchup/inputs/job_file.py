@@ -62,6 +62,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     from matchup.inputs import (
         build_cost,
         build_cushions,
+        build_doubt,
         build_fatigue,
         build_limits,
         build_pile,
@@ -73,6 +74,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     limits = build_limits.build_limits(text, keys, pile)
     stages, drive = _stages(text, keys, pile, findings)
     analysis, search = build_stages.build_settings(text, keys)
+    doubt = build_doubt.build_doubt(text, keys, stages)
 
     cushions = named_file(text, ("catalog", "cushions"), keys.catalog.cushions)
     known = read_cushions(cushions, findings) if cushions else CushionCatalogue(complete=False)
@@ -106,6 +108,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             search=search,
             analysis=analysis,
             drive=drive,
+            doubt=doubt,
             cost=cost,
             site=site,
             fatigue=fatigue,

@@ -133,10 +133,12 @@ def _holder(data: Any, path: KeyPath) -> Any:
 
 
 def _stand_in(data: dict[str, Any], unread: set[KeyPath], path: KeyPath) -> None:
-    """Replace what holds a wrong value: a whole key, or one of a stage or a part of the pile."""
+    """Replace what holds a wrong value: a whole key, or one of a stage or a part."""
     unread.add(path)
     holders = [prefix for prefix in HOLDERS if path[: len(prefix)] == prefix]
     depth = max(map(len, holders), default=0) + 2 if holders else 2
+    if path[0] == "doubt" and len(path) > 2 and isinstance(path[2], int):
+        depth = 3
     key = path[: min(len(path), depth)]
     unread.add(key)
     holder = _holder(data, key)

@@ -410,6 +410,92 @@ class AnalysisKeys(Keys):
     damping: Literal["smith", "viscous"] = "smith"
 
 
+class LognormalKeys(Keys):
+    """A lognormal factor."""
+
+    mean: float = 1.0
+    cov: float
+
+
+class TriangularKeys(Keys):
+    """A triangular factor: lower end, mode, upper end."""
+
+    low: float
+    mode: float = 1.0
+    high: float
+
+
+class UniformKeys(Keys):
+    """A uniform factor: both ends."""
+
+    low: float
+    high: float
+
+
+class FactorKeys(Keys):
+    """A factor on what the job says: one distribution, of shaft and toe between two depths."""
+
+    lognormal: LognormalKeys | None = None
+    triangular: TriangularKeys | None = None
+    uniform: UniformKeys | None = None
+    low: float | None = None
+    best: float | None = None
+    high: float | None = None
+    shape: Literal["lognormal", "triangular"] | None = None
+    from_: Length | None = Field(default=None, alias="from")
+    to: Length | None = None
+    name: str | None = None
+
+
+FACTOR_EXAMPLE = "{ lognormal = { mean = 1.0, cov = 0.2 } }"
+FactorsByDepth = Annotated[
+    Annotated[FactorKeys, Tag("range")] | Annotated[list[FactorKeys], Tag("list")],
+    _by_form(f"must be a table like {FACTOR_EXAMPLE}, or a list of such, by depth"),
+]
+PAIRS_MUST = "must be a list of two inputs and their correlation each"
+PAIRS_EXAMPLE = 'For example [["shaft", "toe", 0.5]].'
+
+
+def _read_pairs(value: Any) -> tuple[tuple[str, str, float], ...]:
+    def is_pair(row: Any) -> bool:
+        kinds = tuple(map(type, row)) if isinstance(row, list) else ()
+        return kinds in ((str, str, float), (str, str, int))
+
+    if not isinstance(value, list) or not all(map(is_pair, value)):
+        raise UnitError(PAIRS_MUST, PAIRS_EXAMPLE)
+    return tuple((first, second, float(number)) for first, second, number in value)
+
+
+_PAIR = {
+    "type": "array",
+    "prefixItems": [{"type": "string"}, {"type": "string"}, {"type": "number"}],
+    "minItems": 3,
+    "maxItems": 3,
+}
+Pairs = Annotated[
+    Any, BeforeValidator(_read_pairs), WithJsonSchema({"type": "array", "items": _PAIR})
+]
+
+
+class DoubtKeys(Keys):
+    """What is in doubt, as factors on what the job says, and how it is sampled."""
+
+    resistance: FactorsByDepth | None = None
+    shaft: FactorsByDepth | None = None
+    toe: FactorsByDepth | None = None
+    setup: FactorKeys | None = None
+    shaft_quake: FactorKeys | None = None
+    toe_quake: FactorKeys | None = None
+    shaft_damping: FactorKeys | None = None
+    toe_damping: FactorKeys | None = None
+    efficiency: FactorKeys | None = None
+    cushion_stiffness: FactorKeys | None = None
+    correlations: Pairs = ()
+    samples: int | None = None
+    standard_error: float | None = None
+    strokes: Literal["adapt", "keep"] = "adapt"
+
+
 class CostKeys(Keys):
     """What the contract pays for; money is a text with the currency behind the number."""
 
@@ -489,6 +575,7 @@ class JobKeys(Keys):
     limits: LimitsKeys
     search: SearchKeys = SearchKeys()
     analysis: AnalysisKeys = AnalysisKeys()
+    doubt: DoubtKeys | None = None
     cost: CostKeys | None = None
     site: SiteKeys | None = None
     fatigue: FatigueKeys | None = None

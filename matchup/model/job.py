@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from dataclasses import dataclass
 
 from matchup.model.cost import Cost
 from matchup.model.cushion import CushionSpace, HammerCushion
+from matchup.model.doubt import Doubt
 from matchup.model.fatigue import Fatigue
 from matchup.model.hammer import Hammer
 from matchup.model.limits import StressLimits
@@ -139,6 +141,8 @@ class Job:
     analysis : Analysis
     drive : Drive or None
         None for stages given by hand.
+    doubt : Doubt or None
+        What is in doubt; None where nothing is said of it.
     cost : Cost or None
         What the contract pays for.
     site : Site or None
@@ -165,6 +169,7 @@ class Job:
     search: Search = Search()
     analysis: Analysis = Analysis()
     drive: Drive | None = None
+    doubt: Doubt | None = None
     cost: Cost | None = None
     site: Site | None = None
     fatigue: Fatigue | None = None
@@ -179,8 +184,8 @@ class Job:
         rules.must(bool(self.hammers), "hammers", "must hold at least one hammer", "")
         rules.must(bool(self.stages), "stages", "must hold at least one stage", "")
         for name, items in (("hammers", self.hammers), ("stages", self.stages)):
-            names = [item.name for item in items]
-            twice = sorted({n for n in names if names.count(n) > 1})
+            counted = Counter(item.name for item in items)
+            twice = sorted(name for name, count in counted.items() if count > 1)
             rules.must(not twice, name, "must have different names", ", ".join(twice))
         cases = {stage.case for stage in self.stages}
         for case in self.drive.required if self.drive else ():

@@ -72,6 +72,11 @@ class Stage:
         Rest before this stage, at the same penetration as the stage before it; zero for none. [s]
     setup : float
         Shaft resistance long after driving over the one of this stage. [-]
+    static : bool
+        Whether the method gives resistance long after driving, from which that of this stage
+        follows by the set-up.
+    regained : float
+        Share of the set-up that the shaft has regained in the pause. [-]
     modes : tuple of StageMode
         Of an open section, every way in which it may go down; one of them gave `shaft` and `toe`.
     notes : tuple of str
@@ -91,6 +96,8 @@ class Stage:
     case: str = ""
     after_pause: float = 0.0
     setup: float = 1.0
+    static: bool = False
+    regained: float = 0.0
     modes: tuple[StageMode, ...] = ()
     notes: tuple[str, ...] = ()
 
@@ -108,30 +115,25 @@ class Stage:
         rules.must(
             math.isfinite(self.setup) and self.setup >= 1, "setup", "must be >= 1", self.setup
         )
-        depths = [depth for depth, _ in self.shaft_shape]
-        shares = [share for _, share in self.shaft_shape]
-        rules.must(
-            not any(a >= b for a, b in pairwise(depths)),
-            "shaft_shape",
-            "must have depths that increase",
-            ", ".join(f"{depth:g} m" for depth in depths),
-        )
-        rules.must(
-            all(math.isfinite(s) and s >= 0 for s in shares),
-            "shaft_shape",
-            "must have intensities >= 0",
-            ", ".join(f"{share:g}" for share in shares),
-        )
+        rules.must(0 <= self.regained <= 1, "regained", "must be from 0 to 1", self.regained)
         if self.shaft_shape:
-            rules.must(
-                len(self.shaft_shape) > 1
-                and not depths[0] >= self.penetration
-                and any(s > 0 for d, s in self.shaft_shape if not d > self.penetration),
-                "shaft_shape",
-                "must have two rows or more and a positive intensity within the penetration",
-                ", ".join(f"{depth:g} m: {share:g}" for depth, share in self.shaft_shape),
-            )
+            self._check_shape(rules)
         rules.close()
+
+    def _check_shape(self, rules: Rules) -> None:
+        # Texts only where they are needed: samples make stages by the ten thousand.
+        depths, shares = zip(*self.shaft_shape, strict=True)
+        if any(a >= b for a, b in pairwise(depths)):
+            found = ", ".join(f"{depth:g} m" for depth in depths)
+            rules.must(False, "shaft_shape", "must have depths that increase", found)
+        if not all(0 <= share < math.inf for share in shares):
+            found = ", ".join(f"{share:g}" for share in shares)
+            rules.must(False, "shaft_shape", "must have intensities >= 0", found)
+        inside = any(s > 0 for d, s in self.shaft_shape if not d > self.penetration)
+        if len(depths) < 2 or depths[0] >= self.penetration or not inside:
+            must = "must have two rows or more and a positive intensity within the penetration"
+            found = ", ".join(f"{depth:g} m: {share:g}" for depth, share in self.shaft_shape)
+            rules.must(False, "shaft_shape", must, found)
 
     @property
     def resistance(self) -> float:

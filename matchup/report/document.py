@@ -12,6 +12,7 @@ from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.limits import PartLimits
 from matchup.report.bills import bill_document
+from matchup.report.doubted import odds_document
 from matchup.report.sentences import misfit_text, reason
 from matchup.report.shown import Units
 from matchup.search.option import Cure, Option, Ranking, StagePlan
@@ -136,6 +137,7 @@ def option_document(option: Option, job: Job, units: Units, place: int | None) -
         "reach_ratio": number(option.reach),
         "reach_is_open": option.reach_is_open,
         "cure": cure_document(option.cure),
+        "odds": odds_document(option.odds),
     }
 
 

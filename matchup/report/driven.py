@@ -18,6 +18,7 @@ from matchup.report.document import (
     number,
     peak,
 )
+from matchup.report.doubted import doubt_blocks, minutes
 from matchup.report.options import blow_count, measured, setting_columns, stress_shares
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.proven import criterion_page
@@ -77,6 +78,7 @@ def drive_page(
         page += criterion_page(criterion, job, units)
     page += damage_blocks(damage, job.fatigue, units)
     page += bills_blocks((option,), job)
+    page += doubt_blocks(ranking, units)
     return [*page, *foot(ranking, units)]
 
 
@@ -226,11 +228,6 @@ def _which(plan: StagePlan | None) -> str | None:
     if plan is None:
         return None
     return "compression" if plan.compression_use >= plan.tension_use else "tension"
-
-
-def minutes(seconds: float | None) -> float | None:
-    """Return seconds as minutes; None where they are not known."""
-    return None if seconds is None else seconds / 60
 
 
 def stations_table(cases: tuple[CaseDrive, ...], units: Units) -> Table:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 
+from matchup.report.doubted import works_column
 from matchup.report.sentences import needed_set, where
 from matchup.report.shown import OfLimit, Units, percent, share_text
 from matchup.report.table import AtLeast, Column, Field, Row, Table, tabled
@@ -58,6 +59,7 @@ def options_table(options: Sequence[Option], units: Units, objective: str = "ene
         (Column("tension_percent", "tension\n% of\nlimit", 0), lambda o: percent(o.tension_use)),
         (GOVERNS, lambda o: o.governs),
         *_where(options, units),
+        *([works_column()] if any(option.odds for option in options) else []),
         (_window(units, keep=2), lambda o: _range(o.target, units)),
         (Column("reach", "reach", 2, keep=4), _reach),
         (Column("blows_per_minute", "blows\n/min", 0, keep=1), lambda o: _rate(o.target)),

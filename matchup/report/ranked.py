@@ -5,6 +5,7 @@ from __future__ import annotations
 from matchup.model.job import Job
 from matchup.report.bills import bills_blocks
 from matchup.report.closing import closing
+from matchup.report.doubted import doubt_blocks
 from matchup.report.options import margins_table, options_table, schedule_table
 from matchup.report.page import Block, Headline, Page, Prose
 from matchup.report.sentences import (
@@ -36,6 +37,7 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
         which = f" of the best {len(best)}" if len(best) > 1 else ""
         page += [Headline(f"Stroke schedule{which}:"), schedule_table(best, units)]
     page += [*bills_blocks(ranking.options, job), *softer_prose(ranking, units)]
+    page += doubt_blocks(ranking, units)
     if ranking.rejected:
         page.append(Prose(failures(ranking, units), "Hammers that can't, nearest miss first:"))
     return [*page, *foot(ranking, units)]
@@ -80,4 +82,5 @@ def check_page(ranking: Ranking, units: Units) -> Page:
     page += bills_blocks((option,), job)
     if option.runner_up is not None:
         page.append(Prose((softer_sentence(option, job.search.objective, units),)))
+    page += doubt_blocks(ranking, units)
     return [*page, *foot(ranking, units)]

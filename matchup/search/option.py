@@ -10,6 +10,7 @@ from matchup.model.hammer import Hammer
 from matchup.model.job import Job
 from matchup.model.stage import Stage
 from matchup.search.bill import Bill
+from matchup.search.odds import Odds
 
 DRIVES = "drives"
 REDUCED = "drives with reduced stroke"
@@ -299,6 +300,8 @@ class Option:
         What would let a failing hammer drive the pile.
     cases : tuple of CaseDrive
         The whole drive by ground case; empty for stages given by hand.
+    odds : Odds or None
+        What becomes of it under the job's doubt; None where it was not looked at.
     misfits : tuple of Misfit
         What is in the way of a hammer that does not fit, for which no blow was computed.
     """
@@ -318,6 +321,7 @@ class Option:
     reach_is_open: bool = False
     cure: Cure | None = None
     cases: tuple[CaseDrive, ...] = ()
+    odds: Odds | None = None
     misfits: tuple[Misfit, ...] = ()
 
     @property

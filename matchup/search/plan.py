@@ -209,10 +209,11 @@ class Planner:
         last = int(self.finder.last_settings(np.array([hammer]))[0])
         falls = self.rig.job.hammers[hammer].blow_rate_full is not None
         high = self._is_fast and not falls
-        return [
-            Walk(course, hammer, stack, target, last if high else target.at)
-            for course, target in zip(self.courses, self._targets[hammer, stack], strict=True)
-        ]
+        made = []
+        for course, target in zip(self.courses, self._targets[hammer, stack], strict=True):
+            wanted = last if high else target.at
+            made.append(Walk(course, hammer, stack, target, [wanted] * len(course.stages)))
+        return made
 
     def stage_plans(self, hammer: int, stack: int) -> tuple[StagePlan, ...]:
         """Return the plans of the stages looked at, in the order of the stages."""

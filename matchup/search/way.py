@@ -41,6 +41,7 @@ from matchup.search.option import (
     StagePlan,
     Taken,
 )
+from matchup.wave.layout import Integers
 
 VERDICT_OF = {
     RUNS: PILE_RUNS,
@@ -103,10 +104,12 @@ class Walk:
     course : Course
     hammer, stack : int
         Places in a rig.
-    target : StagePlan
-        Planned already, for every wear state asked for: nobody knows how worn the cushion is then.
-    wanted : int
-        Setting number to keep as near to as works.
+    target : StagePlan or None
+        Where it is planned already; None where it comes like any other stage.
+    wanted : sequence of int
+        Setting numbers, stage by stage, to keep as near to as works.
+    keeps : bool
+        Whether the wanted settings are played as they are, even where a stress limit breaks.
     plans : list of StagePlan
         Filled on the way, until a stage fails.
     taken : Taken
@@ -115,8 +118,9 @@ class Walk:
     course: Course
     hammer: int
     stack: int
-    target: StagePlan
-    wanted: int
+    target: StagePlan | None
+    wanted: Sequence[int]
+    keeps: bool = False
     plans: list[StagePlan] = field(default_factory=list)
     taken: Taken = field(default_factory=Taken)
 
@@ -124,7 +128,12 @@ class Walk:
     def goes_on(self) -> bool:
         """Whether there is a stage ahead that can be got to."""
         ahead = len(self.plans) < len(self.course.stages)
-        return ahead and (not self.plans or self.plans[-1].verdict in FINE)
+        return ahead and (not self.plans or self.passes(self.plans[-1]))
+
+    def passes(self, plan: StagePlan) -> bool:
+        """Return whether the pile gets past a stage."""
+        broken = plan.verdict in (OVER_COMPRESSION, OVER_TENSION)
+        return plan.verdict in FINE or (self.keeps and broken)
 
 
 def walk(finder: WindowFinder, walks: Sequence[Walk]) -> None:
@@ -134,31 +143,46 @@ def walk(finder: WindowFinder, walks: Sequence[Walk]) -> None:
     ----------
     finder : WindowFinder
     walks : sequence of Walk
-        Modified in place.
+        Modified in place; either all or none of them keep their strokes.
     """
-    rig = finder.rig
+    in_drive = finder.rig.job.drive is not None
     while going := [one for one in walks if one.goes_on]:
-        stages = [one.course.stages[len(one.plans)] for one in going]
-        wears = [_wear_ahead(finder, one, stage) for one, stage in zip(going, stages, strict=True)]
-        on_way = [i for i, one in enumerate(going) if stages[i] != one.course.target]
-        planned = {i: one.target for i, one in enumerate(going)}
-        if on_way:
-            cells = Cells(
-                np.array([stages[i] for i in on_way]),
-                np.array([going[i].hammer for i in on_way]),
-                np.array([going[i].stack for i in on_way]),
-                np.array([wears[i] for i in on_way]),
-            )
-            found = finder.nearest(cells, np.array([going[i].wanted for i in on_way]))
-            for row, i in enumerate(on_way):
-                planned[i] = _on_the_way(stage_plan(finder, found, row), rig.job.drive is not None)
-        for i, one in enumerate(going):
-            plan = planned[i]
-            if rig.job.drive is not None:
-                plan = replace(plan, taken=_onward(finder, one, plan))
-                assert plan.taken is not None
-                one.taken = plan.taken
+        for one, plan in zip(going, _plans_ahead(finder, going), strict=True):
+            if in_drive:
+                one.taken = _onward(finder, one, plan)
+                plan = replace(plan, taken=one.taken)
             one.plans.append(plan)
+
+
+def _plans_ahead(finder: WindowFinder, going: Sequence[Walk]) -> list[StagePlan]:
+    """Return the plans of the next stage of walks."""
+    look = _play if going[0].keeps else WindowFinder.nearest
+    stages = [one.course.stages[len(one.plans)] for one in going]
+    at_target = [stage == one.course.target for stage, one in zip(stages, going, strict=True)]
+    ahead = [one.target if there else None for one, there in zip(going, at_target, strict=True)]
+    rows = [row for row, plan in enumerate(ahead) if plan is None]
+    if rows:
+        cells = Cells(
+            np.array([stages[row] for row in rows]),
+            np.array([going[row].hammer for row in rows]),
+            np.array([going[row].stack for row in rows]),
+            np.array([_wear_ahead(finder, going[row], stages[row]) for row in rows]),
+        )
+        wanted = np.array([going[row].wanted[len(going[row].plans)] for row in rows])
+        found = look(finder, cells, wanted)
+        in_drive = finder.rig.job.drive is not None
+        for place, row in enumerate(rows):
+            plan = stage_plan(finder, found, place)
+            ahead[row] = plan if at_target[row] else _on_the_way(plan, in_drive)
+    return [plan for plan in ahead if plan is not None]
+
+
+def _play(finder: WindowFinder, cells: Cells, at: Integers) -> Found:
+    """Return what kept settings do; one that falls short ends a drive, whatever its stresses."""
+    found = finder.play(cells, at)
+    broken = (found.state == TENSION) | (found.state == COMPRESSION)
+    found.state[broken & (found.set < finder.demands.set_needed[cells.stage])] = NO_SET
+    return found
 
 
 def _on_the_way(plan: StagePlan, in_drive: bool) -> StagePlan:
@@ -178,18 +202,20 @@ def _wear_ahead(finder: WindowFinder, one: Walk, stage: int) -> int:
     """Return the wear state in which the cushion arrives at the next stage.
 
     In a drive it follows from the blows taken down to the last station, and as many more as its
-    set foretells. Where the catalogue does not say how long a cushion stays new, and for stages
-    given by hand, every wear state asked for counts.
+    set foretells. At the target every wear state asked for counts, since it must be reached with
+    a cushion of any; so it does where the catalogue does not say how long one stays new, and for
+    stages given by hand.
     """
     rig = finder.rig
     cushion = rig.stacks[one.stack].pile
-    if rig.job.drive is None or cushion is None or cushion.material.new_for is None:
+    new_for = None if cushion is None else cushion.material.new_for
+    if rig.job.drive is None or new_for is None or stage == one.course.target:
         return EVERY_WEAR
     ahead = _at_pause(one, stage, finder).on_cushion
-    if one.plans and one.plans[-1].verdict == DRIVES:
+    if one.plans and one.plans[-1].verdict != GOES_DOWN:
         last = one.plans[-1]
         ahead += (rig.job.stages[stage].penetration - last.stage.penetration) / last.set
-    wear = "new" if ahead < cushion.material.new_for else "worn"
+    wear = "new" if ahead < new_for else "worn"
     return rig.wears.index(wear) if wear in rig.wears else EVERY_WEAR
 
 
@@ -243,7 +269,7 @@ def _onward(finder: WindowFinder, one: Walk, plan: StagePlan) -> Taken:
     """
     stage = one.course.stages[len(one.plans)]
     taken = _at_pause(one, stage, finder)
-    if not one.plans or plan.verdict not in FINE or plan.verdict == GOES_DOWN:
+    if not one.plans or not one.passes(plan) or plan.verdict == GOES_DOWN:
         return taken
     last = one.plans[-1]
     length = plan.stage.penetration - last.stage.penetration

@@ -200,13 +200,13 @@ def test_no_blow_is_computed_twice(monkeypatch: pytest.MonkeyPatch) -> None:
     from matchup.analysis import rig as rig_module
 
     struck: list[tuple[float, ...]] = []
-    strike = rig_module.strike
+    strike = rig_module.strike_stressed
 
-    def counted(chains, strikes, **more):  # type: ignore[no-untyped-def]
+    def counted(chains, strikes, *more):  # type: ignore[no-untyped-def]
         struck.extend(zip(*(np.asarray(column).tolist() for column in strikes), strict=True))
-        return strike(chains, strikes, **more)
+        return strike(chains, strikes, *more)
 
-    monkeypatch.setattr(rig_module, "strike", counted)
+    monkeypatch.setattr(rig_module, "strike_stressed", counted)
     finder, windows = find(CASES["concrete, tight limits"])
     opened = np.flatnonzero(windows.state == window.OPEN)
     finder.tops(windows.cells.take(opened), windows.at[opened])

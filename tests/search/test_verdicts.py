@@ -129,17 +129,18 @@ def test_without_gravity_no_pile_runs() -> None:
 
 def spoil(monkeypatch: pytest.MonkeyPatch, hammer: str) -> None:
     """Make every blow of one hammer fail its energy audit."""
-    strike = rig_module.strike
+    strike = rig_module.strike_stressed
 
-    def spoiled(chains, strikes, **more):  # type: ignore[no-untyped-def]
-        struck = strike(chains, strikes, **more)
+    def spoiled(chains, strikes, *more):  # type: ignore[no-untyped-def]
+        struck, stressed = strike(chains, strikes, *more)
         names = np.array([h.name for h in chains.hammers])[strikes.hammer]
         bad = names == hammer
-        return replace(
+        spoiled = replace(
             struck, sound=struck.sound & ~bad, balance=np.where(bad, 0.05, struck.balance)
         )
+        return spoiled, stressed
 
-    monkeypatch.setattr(rig_module, "strike", spoiled)
+    monkeypatch.setattr(rig_module, "strike_stressed", spoiled)
 
 
 def names(options: tuple[Option, ...]) -> list[str]:

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 from matchup.report.bills import bills_blocks
 from matchup.report.closing import ground
+from matchup.report.doubted import doubt_blocks
 from matchup.report.driven import answer, cases_table, chosen_case, stations_table
 from matchup.report.one_blow import figures_table
 from matchup.report.options import margins_table, options_table, schedule_table
@@ -80,6 +81,7 @@ def sections(dossier: Dossier, units: Units) -> tuple[Section, ...]:
         _options,
         _rejected,
         _plan,
+        _doubt,
         _window,
         _blows,
         _inputs,
@@ -176,6 +178,25 @@ def _drive(dossier: Dossier, units: Units) -> list[Block]:
     if dossier.criterion is not None:
         blocks += criterion_page(dossier.criterion, dossier.job, units)
     return blocks
+
+
+def _doubt(dossier: Dossier, units: Units) -> Section | None:
+    blocks = doubt_blocks(dossier.ranking, units)
+    if not blocks:
+        return None
+    odds = dossier.detail.odds
+    if odds is not None and odds.influences is not None:
+        from matchup.report.figures.doubt import doubt_figure
+
+        blocks.append(
+            _picture(
+                "doubt",
+                doubt_figure(odds),
+                f"What {dossier.detail.hammer.name} hangs on: the drive with one input at a time "
+                "at its P10 and P90, and each input's share of the doubt.",
+            )
+        )
+    return Section("What becomes of the plans under doubt", tuple(blocks))
 
 
 def _window(dossier: Dossier, units: Units) -> Section:
