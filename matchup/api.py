@@ -27,6 +27,7 @@ from matchup.model.selection import (
     select_cell,
     select_hammer,
 )
+from matchup.report.damaged import damage_document
 from matchup.report.document import blow_document, check_document, ranking_document
 from matchup.report.driven import chosen_case, drive_document, drive_page, stations_table
 from matchup.report.files import figure_kind, refuse_taken, write_file, write_folder
@@ -44,6 +45,7 @@ from matchup.report.tender.dossier import Dossier
 from matchup.report.tender.sections import sections
 from matchup.report.together import together_document, together_page, together_table
 from matchup.search.criterion import Criterion, find_criterion
+from matchup.search.fatigue import Damage, find_damage
 from matchup.search.opinion import Opinion, second_opinion
 from matchup.search.option import Option, Ranking
 from matchup.search.ranking import rank_hammers, with_odds
@@ -287,14 +289,19 @@ class DriveResult(CheckResult):
         Whose stations are shown.
     criterion : Criterion or None
         The termination criterion, where it was asked for.
+    damage : tuple of Damage
+        By fatigue, detail by detail in every case; empty where the job does not ask for it.
     """
 
     case: str | None = None
     criterion: Criterion | None = None
+    damage: tuple[Damage, ...] = ()
 
     def page(self, display: str | None = None) -> Page:
         """Return the drive as blocks of prose and tables."""
-        return drive_page(self.ranking, _units(self.job, display), self.case, self.criterion)
+        return drive_page(
+            self.ranking, _units(self.job, display), self.case, self.criterion, self.damage
+        )
 
     def figure(self, display: str | None = None) -> Figure:
         """Draw resistance, stroke, blow count and stresses by depth, ground cases as bands."""
@@ -319,7 +326,8 @@ class DriveResult(CheckResult):
         """Return the JSON document as plain data; `display` changes its sentences alone."""
         document = drive_document(self.ranking, _units(self.job, display))
         told = None if self.criterion is None else criterion_document(self.criterion)
-        return document | {"criterion": told}
+        damage = damage_document(self.damage, self.job.fatigue)
+        return document | {"criterion": told, "fatigue": damage}
 
 
 @dataclass(frozen=True)
@@ -651,6 +659,8 @@ def drive(
     ------
     InputError
         If the job or the selection has problems, or the job has no ``[ground]``.
+    AnalysisError
+        If a blow that fatigue is counted in can't be computed.
     """
     job = _job(job)
     problems: list[Problem] = []
@@ -668,7 +678,8 @@ def drive(
     proof = None
     if criterion and ranking.options:
         proof = find_criterion(alone, ranking.options[0], workers, tell)
-    return DriveResult(ranking, case=case, criterion=proof)
+    damage = find_damage(alone, ranking.options[0]) if ranking.options else ()
+    return DriveResult(ranking, case=case, criterion=proof, damage=damage)
 
 
 def window(

@@ -63,6 +63,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
         build_cost,
         build_cushions,
         build_doubt,
+        build_fatigue,
         build_limits,
         build_pile,
         build_site,
@@ -84,6 +85,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
     others = build_cushions.build_hammer_cushions(text, keys, known)
     hammers = build_cushions.with_helmets(text, keys, hammers)
     cost = build_cost.build_cost(text, keys, hammers, space)
+    fatigue = build_fatigue.build_fatigue(text, keys, pile)
     site = build_site.build_site(text, keys, hammers)
     unknown = [hammer.name for hammer in hammers if hammer.blow_rate(hammer.stroke_max) is None]
     if keys.search.objective == "time" and 0 < len(unknown) < len(hammers):
@@ -109,6 +111,7 @@ def _build(text: JobText, keys: JobKeys, findings: Findings) -> Job:
             doubt=doubt,
             cost=cost,
             site=site,
+            fatigue=fatigue,
             display=keys.display,
             file=text.file,
             notices=tuple(findings.notices),

@@ -540,6 +540,25 @@ class SiteKeys(Keys):
     vibration: VibrationKeys | None = None
 
 
+class DetailKeys(Keys):
+    """A weld, a splice or another place that fatigue is asked of."""
+
+    name: str
+    at: LengthOrZero
+    concentration: float = 1.0
+    category: Stress | None = None
+
+
+class FatigueKeys(Keys):
+    """Fatigue of a steel pile from driving."""
+
+    category: Stress
+    partial_factor: float = 1.0
+    slope: float | None = None
+    allowed: Share = 1.0
+    details: list[DetailKeys] = []
+
+
 class JobKeys(Keys):
     """A job file."""
 
@@ -559,6 +578,7 @@ class JobKeys(Keys):
     doubt: DoubtKeys | None = None
     cost: CostKeys | None = None
     site: SiteKeys | None = None
+    fatigue: FatigueKeys | None = None
 
 
 def job_schema() -> dict[str, Any]:

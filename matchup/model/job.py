@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from matchup.model.cost import Cost
 from matchup.model.cushion import CushionSpace, HammerCushion
 from matchup.model.doubt import Doubt
+from matchup.model.fatigue import Fatigue
 from matchup.model.hammer import Hammer
 from matchup.model.limits import StressLimits
 from matchup.model.pile import Pile
@@ -146,6 +147,8 @@ class Job:
         What the contract pays for.
     site : Site or None
         What rig and surroundings allow.
+    fatigue : Fatigue or None
+        What is asked of fatigue from driving.
     display : str
         ``metric`` or ``us``: units of tables.
     file : str or None
@@ -169,6 +172,7 @@ class Job:
     doubt: Doubt | None = None
     cost: Cost | None = None
     site: Site | None = None
+    fatigue: Fatigue | None = None
     display: str = "metric"
     file: str | None = None
     notices: tuple[str, ...] = ()

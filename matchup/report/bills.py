@@ -8,7 +8,6 @@ from typing import Any
 from matchup.model.cost import Cost
 from matchup.model.job import Job
 from matchup.report.page import Block, Headline, Prose
-from matchup.report.shown import Units
 from matchup.report.table import Column, Field, Table, tabled
 from matchup.search.bill import Bill
 from matchup.search.option import Option
@@ -29,7 +28,7 @@ def per_pile_text(bill: Bill, cost: Cost) -> str:
     return f"{money(bill.per_pile)} {cost.currency} a pile"
 
 
-def bills_blocks(options: Sequence[Option], job: Job, units: Units) -> list[Block]:
+def bills_blocks(options: Sequence[Option], job: Job) -> list[Block]:
     """Return what the contract comes to with every option; nothing where that can't be told."""
     cost = job.cost
     priced = [option for option in options if option.bill is not None]
@@ -38,12 +37,12 @@ def bills_blocks(options: Sequence[Option], job: Job, units: Units) -> list[Bloc
     rigs = f" with {cost.rigs} rigs" if cost.rigs > 1 else ""
     return [
         Headline(f"The contract of {cost.piles} piles{rigs}:"),
-        bills_table(priced, cost, units),
-        Prose(tuple(basis_lines(priced, cost, units))),
+        bills_table(priced, cost),
+        Prose(tuple(basis_lines(priced, cost))),
     ]
 
 
-def bills_table(options: Sequence[Option], cost: Cost, units: Units) -> Table:
+def bills_table(options: Sequence[Option], cost: Cost) -> Table:
     """Return days, money, energy, fuel and carbon dioxide by option."""
     money_of = cost.currency
     fields: list[Field[Option]] = [
@@ -84,7 +83,7 @@ def _unbeaten(option: Option, options: Sequence[Option]) -> str | None:
     return None if is_beaten(option, options) else UNBEATEN
 
 
-def basis_lines(options: Sequence[Option], cost: Cost, units: Units) -> list[str]:
+def basis_lines(options: Sequence[Option], cost: Cost) -> list[str]:
     """Return what the figures count, and what they leave out."""
     best = _bill(options[0])
     lines = []

@@ -10,6 +10,7 @@ from typing import Any
 
 from matchup.model.job import Job
 from matchup.report.bills import bill_document, bills_blocks
+from matchup.report.damaged import damage_blocks
 from matchup.report.document import (
     SCHEMA_VERSION,
     blows_per_25cm,
@@ -26,6 +27,7 @@ from matchup.report.sentences import on_stack, reason
 from matchup.report.shown import Units, percent
 from matchup.report.table import Column, Field, Table, tabled
 from matchup.search.criterion import Criterion
+from matchup.search.fatigue import Damage
 from matchup.search.option import (
     DRIVES,
     GOES_DOWN,
@@ -41,7 +43,11 @@ VERDICTS_SHORT = {DRIVES: "", GOES_DOWN: "down"}
 
 
 def drive_page(
-    ranking: Ranking, units: Units, case: str | None = None, criterion: Criterion | None = None
+    ranking: Ranking,
+    units: Units,
+    case: str | None = None,
+    criterion: Criterion | None = None,
+    damage: Sequence[Damage] = (),
 ) -> Page:
     """Return the drive: the answer, the cases, the stations of one of them.
 
@@ -51,6 +57,8 @@ def drive_page(
         Whose stations are told; None takes the required one with the most blows, or that fails.
     criterion : Criterion or None
         Told below, where there is one.
+    damage : sequence of Damage
+        By fatigue, told below.
     """
     job = ranking.job
     option = (*ranking.options, *ranking.rejected)[0]
@@ -68,7 +76,8 @@ def drive_page(
         page.append(Prose(tuple(lines)))
     if criterion is not None:
         page += criterion_page(criterion, job, units)
-    page += bills_blocks((option,), job, units)
+    page += damage_blocks(damage, job.fatigue, units)
+    page += bills_blocks((option,), job)
     page += doubt_blocks(ranking, units)
     return [*page, *foot(ranking, units)]
 

@@ -36,7 +36,7 @@ def ranking_page(ranking: Ranking, units: Units) -> Page:
     if best and len(job.stages) > 1 and job.drive is None:
         which = f" of the best {len(best)}" if len(best) > 1 else ""
         page += [Headline(f"Stroke schedule{which}:"), schedule_table(best, units)]
-    page += [*bills_blocks(ranking.options, job, units), *softer_prose(ranking, units)]
+    page += [*bills_blocks(ranking.options, job), *softer_prose(ranking, units)]
     page += doubt_blocks(ranking, units)
     if ranking.rejected:
         page.append(Prose(failures(ranking, units), "Hammers that can't, nearest miss first:"))
@@ -79,7 +79,7 @@ def check_page(ranking: Ranking, units: Units) -> Page:
         page.append(margins_table(option, ranking, units))
     if len(job.stages) > 1 and option.drives and job.drive is None:
         page.append(schedule_table((option,), units))
-    page += bills_blocks((option,), job, units)
+    page += bills_blocks((option,), job)
     if option.runner_up is not None:
         page.append(Prose((softer_sentence(option, job.search.objective, units),)))
     page += doubt_blocks(ranking, units)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 
 from matchup.analysis.single import Blow
+from matchup.report.bills import bills_table
 from matchup.report.closing import ground
 from matchup.report.document import blow_document, ranking_document
 from matchup.report.driven import stations_table
@@ -76,6 +77,9 @@ def _sheets(dossier: Dossier, units: Units) -> list[Sheet]:
         Sheet("Drive", _drive_table(dossier, units)),
         Sheet("Window", map_table(dossier.map, units)),
     ]
+    priced = [option for option in ranking.options if option.bill is not None]
+    if job.cost is not None and priced:
+        sheets.append(Sheet("Cost", bills_table(priced, job.cost)))
     sheets += [
         Sheet(f"Blow {number}", _blow_table(blow)) for number, blow in enumerate(dossier.blows, 1)
     ]

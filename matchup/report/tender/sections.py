@@ -50,7 +50,7 @@ METHOD = (
     "For every hammer, strokes and cushions were searched for the plan that reaches the set "
     "within both stress limits, in every wear state and at 2 % more and less stroke.",
     "Not modelled: diesel and vibratory hammers, repeated blows with residual stresses, splices, "
-    "followers, bending, fatigue.",
+    "followers, bending.",
 )
 AS_PLANNED = (
     "At the planned stroke, in the wear state that decides. The plan's own figures are the worst "
@@ -106,7 +106,7 @@ def _options(dossier: Dossier, units: Units) -> Section | None:
 
     blocks: list[Block] = [
         options_table(ranking.options, units, ranking.job.search.objective),
-        *bills_blocks(ranking.options, ranking.job, units),
+        *bills_blocks(ranking.options, ranking.job),
         *softer_prose(ranking, units),
     ]
     if len(ranking.options) > 1:
