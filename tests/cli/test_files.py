@@ -79,7 +79,8 @@ def test_lint_takes_several_files_and_tells_all_problems(tmp_path):
 def test_lint_passes_what_the_project_ships():
     checked = run("lint", *EXAMPLES.glob("*.toml"), *CATALOGS.glob("*.csv"))
     assert checked.returncode == 0
-    assert checked.stdout.count("sound") == len(list(EXAMPLES.glob("*.toml"))) + 3
+    files = [*EXAMPLES.glob("*.toml"), *CATALOGS.glob("*.csv")]
+    assert len(checked.stdout.splitlines()) == len(files)
 
 
 def test_schema_accepts_the_keys_of_the_examples():
