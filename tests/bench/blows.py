@@ -43,7 +43,8 @@ def lumped_rates(segments: int):
     mass = np.full(segments + 3, PILE.mass / segments)
     mass[2] = mass[-1] = 0.5 * mass[2]
     mass[0], mass[1] = HAMMER.ram_mass, HAMMER.helmet_mass
-    stiffness = np.full(segments + 2, PILE.modulus * PILE.section.area / (PILE.length / segments))
+    axial = PILE.toe.modulus * PILE.toe.section.area
+    stiffness = np.full(segments + 2, axial / (PILE.length / segments))
     stiffness[0], stiffness[1] = HAMMER.cushion.stiffness, CUSHION.stiffness
     soil = np.zeros(segments + 3)
     soil[3:] = STAGE.shaft / segments
